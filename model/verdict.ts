@@ -1,0 +1,124 @@
+/**
+ * What a judgement says, as plain readonly data that can cross a thread. SI units; angles in degrees, dial positions, shares and
+ * differences in the unit their comment names. The wire form with units in field names is the server's.
+ */
+
+export type DialState = 'dark' | 'skipping' | 're-firing' | 'dropping-out' | 'lopsided' | 'wandering' | 'undecided' | 'steady';
+export type Grade = 'suitable' | 'conditional' | 'unsuitable' | 'undetermined';
+export type Sweep = 'up' | 'down';
+
+export interface DialRow {
+  readonly sweep: Sweep;
+  /** dial position, 0..100 % */
+  readonly position: number;
+  /** headline state; `alsoStates` lists the others that hold, in the table's order */
+  readonly state: DialState;
+  readonly alsoStates: readonly DialState[];
+  /** firings per half-cycle */
+  readonly firings: { readonly min: number; readonly mean: number; readonly max: number };
+  /** share (0..1) of observed half-cycles without a firing */
+  readonly silentShare: number;
+  /** whether the pattern repeats, and after how many half-cycles; null where it wanders */
+  readonly repeatsAfter: number | null;
+  /** half-cycles simulated before the observation, and observed */
+  readonly settled: number;
+  readonly observed: number;
+  readonly failedLatches: number;
+  readonly earlyDropOuts: number;
+  /** mean of the first firing angle over lit half-cycles and its spread (max - min), degrees; null where dark */
+  readonly firingAngle: number | null;
+  readonly firingAngleSpread: number | null;
+  /** mean over lit half-cycles of the angle during which the triac conducts, degrees */
+  readonly conductionAngle: number | null;
+  /** difference in energy between polarities over their mean, 0..2 */
+  readonly polarityDifference: number;
+  /** modulation (max - min)/(max + min) of half-cycle energy within one polarity, the larger of the two, 0..1 */
+  readonly variation: number;
+  /** mean power into all lamps, W */
+  readonly lampPower: number;
+  /** of the dimmer's line current, A */
+  readonly rmsCurrent: number;
+  readonly peakCurrent: number;
+  readonly dcCurrent: number;
+  /** the diac stayed on because the timing resistor feeds it more than its holding current */
+  readonly diacStuck: boolean;
+}
+
+export type ReasonCode =
+  | 're-fires'
+  | 'skips-half-cycles'
+  | 'drops-out'
+  | 'lopsided'
+  | 'wanders'
+  | 'never-lights'
+  | 'dark-low-on-dial'
+  | 'pop-on'
+  | 'failed-latch'
+  | 'stuck-diac'
+  | 'undecided'
+  | 'over-current-rating'
+  | 'over-peak-rating'
+  | 'over-load-rating'
+  | 'under-load-rating';
+
+export interface Reason {
+  readonly code: ReasonCode;
+  /** dial range from..to in %, both included; null where it concerns no dial position */
+  readonly dial: readonly [number, number] | null;
+  readonly detail: string;
+}
+
+export type Condition = { readonly kind: 'lowest-dial' /** dial %, */; readonly position: number; readonly detail: string };
+
+export interface PopOn {
+  /** lowest dial position lit on the way up, % ; null where it never lights */
+  readonly litFrom: number | null;
+  /** lowest dial position still lit on the way down, %; null where it never lights on the way down */
+  readonly outBelow: number | null;
+}
+
+export interface CornerResult {
+  readonly name: string;
+  readonly grade: Grade;
+}
+
+/** Work done, part of every result. */
+export interface Counters {
+  readonly halfCycles: number;
+  readonly steps: number;
+  readonly events: number;
+  readonly modesBuilt: number;
+}
+
+export interface Judgement {
+  readonly grade: Grade;
+  /** one plain sentence */
+  readonly summary: string;
+  readonly conditions: readonly Condition[];
+  readonly reasons: readonly Reason[];
+  readonly dial: readonly DialRow[];
+  readonly popOn: PopOn;
+  readonly corners: readonly CornerResult[];
+  readonly counters: Counters;
+}
+
+export interface JudgeOptions {
+  /** rising, 0..100 %, 1 to 101 positions; one position alone is judged from a fresh start on the way up only */
+  readonly dialPositions: readonly number[];
+  readonly corners: 'all' | 'nominal';
+}
+
+/** Instantaneous quantities over the last observed half-cycles of one dial position; columns of equal length. */
+export interface Waveforms {
+  readonly sweep: Sweep;
+  readonly position: number;
+  /** from the rising zero crossing that starts the window, s */
+  readonly time: Float64Array;
+  readonly mainsVoltage: Float64Array;
+  readonly lampVoltage: Float64Array;
+  readonly lampCurrent: Float64Array;
+  readonly dimmerCurrent: Float64Array;
+  /** across the timing capacitor that feeds the diac; zeros for a timed drive */
+  readonly timingVoltage: Float64Array;
+  readonly gateCurrent: Float64Array;
+}
