@@ -1,0 +1,453 @@
+/**
+ * Runs the circuit of one pairing half-cycle by half-cycle: the triac's and the diac's logic on top of the walks through the modes.
+ *
+ * The triac, besides its electrical region (open, low, on):
+ *   gated    gate current above its threshold (diac drive), or inside a gate pulse (timed drive)
+ *   latched  set when |i| passes the latching current; cleared when |i| has been below the holding current for the turn-off time
+ *   open -> low          gate comes while open: a firing
+ *   low <-> on           |i| passes the knee
+ *   low, on -> open      neither gated nor latched
+ * The diac: off until the timing voltage reaches its breakover, on until its current falls below its own holding current. While on it
+ * is the gate current.
+ *
+ * Time inside a half-cycle runs from its zero crossing, so it never loses digits however long the run.
+ */
+import { type Configuration, type Guard, OUTPUT, restingConfiguration, type Sign } from '../circuit/configuration.ts';
+import { type OpenModeSystem, triacKnee } from '../circuit/mode-system.ts';
+import type { Network } from '../circuit/network.ts';
+import type { Dimmer, PerPolarity } from '../pairing.ts';
+import {
+  DIAC_STUCK_SHARE,
+  EVENT_BUDGET,
+  EVENT_TIME,
+  GUARD_SLACK,
+  INSTANT_BUDGET,
+  LADDER_LEVELS,
+  STANDSTILL,
+  STEP_BUDGET,
+} from '../tolerances.ts';
+import { emptyHalfCycle, type HalfCycle } from './half-cycle.ts';
+import { type Mode, ModeShelf } from './mode.ts';
+import { ModeWalk } from './mode-walk.ts';
+
+/** hears of every visit to a mode: from `start` (s into the half-cycle) for `duration`, coordinates at its start */
+export interface SegmentListener {
+  segment(mode: Mode, coordinates: Float64Array, start: number, duration: number, halfCycle: number): void;
+}
+
+/** hears of the triac's opening, before it opens */
+export interface OpeningListener {
+  opening(run: DimmerRun): void;
+}
+
+const of = (p: PerPolarity, sign: Sign): number => (sign === 1 ? p.positive : p.negative);
+
+export class DimmerRun {
+  readonly network: Network;
+  readonly dimmer: Dimmer;
+  readonly halfPeriod: number;
+  /** number of the half-cycle that is running, or that runs next */
+  index = 0;
+  /** s since the half-cycle's zero crossing */
+  time = 0;
+  events = 0;
+  segmentListener: SegmentListener | null = null;
+  openingListener: OpeningListener | null = null;
+  /** with an ideal switch the triac, once fired, stays on to the end: for asking when the lamps themselves would stop */
+  readonly idealSwitch: boolean;
+
+  private readonly shared: Map<string, OpenModeSystem>;
+  private readonly shelves: Map<number, ModeShelf>;
+  private readonly walk: ModeWalk;
+  private readonly knee: number;
+  private readonly voltageSlack: number;
+  private readonly currentSlack: number;
+  private readonly coordinates: Float64Array;
+  private shelf!: ModeShelf;
+  private mode!: Mode;
+  /** state in the present mode's (mirrored) coordinates */
+  private readonly x: Float64Array;
+  private entered = 0;
+  private dial = 0;
+  private record: HalfCycle = emptyHalfCycle(0);
+
+  private gated = false;
+  private latched = false;
+  private below = false;
+  private belowDeadline = Number.POSITIVE_INFINITY;
+  private pulseLatched = false;
+  private pulseGated = false;
+  private diacSince = 0;
+  private conductionRecord: HalfCycle | null = null;
+  private conductionSince = 0;
+
+  constructor(network: Network, dimmer: Dimmer, parent?: DimmerRun) {
+    this.network = network;
+    this.dimmer = dimmer;
+    this.idealSwitch = parent !== undefined;
+    this.halfPeriod = Math.PI / network.omega;
+    this.shared = parent?.shared ?? new Map();
+    this.shelves = parent?.shelves ?? new Map();
+    this.walk = new ModeWalk(this.shortestStep());
+    this.knee = triacKnee(dimmer);
+    this.voltageSlack = GUARD_SLACK * network.peak;
+    this.currentSlack = (GUARD_SLACK * network.peak) / 1;
+    this.x = new Float64Array(network.states);
+    this.coordinates = new Float64Array(network.states + 2);
+  }
+
+  private shortestStep(): number {
+    return this.halfPeriod / 2 ** LADDER_LEVELS;
+  }
+
+  get steps(): number {
+    return this.walk.steps;
+  }
+
+  get uncertifiedSteps(): number {
+    return this.walk.uncertified;
+  }
+
+  get modesBuilt(): number {
+    let sum = 0;
+    for (const s of this.shelves.values()) sum += s.built;
+    return sum;
+  }
+
+  /** dial position 0..100 %; the state carries over. The first call starts the run from rest. */
+  setDial(position: number): void {
+    const previous = this.shelf as ModeShelf | undefined;
+    this.dial = position;
+    let shelf = this.shelves.get(position);
+    if (shelf === undefined) {
+      const { drive } = this.dimmer;
+      const resistance = drive.kind === 'diac' ? drive.fixedResistance + drive.potentiometer * (1 - position / 100) : 0;
+      shelf = new ModeShelf(this.network, this.dimmer, resistance, this.shared, this.shortestStep());
+      this.shelves.set(position, shelf);
+    }
+    this.shelf = shelf;
+    this.mode = shelf.mode(previous === undefined ? restingConfiguration(this.network) : this.mode.configuration);
+  }
+
+  /** true state at this moment (reservoir voltages positive), scaled as in Network */
+  state(into: Float64Array): void {
+    for (let k = 0; k < into.length; k++) into[k] = (this.x[k] as number) * (this.mode.flips[k] as number);
+  }
+
+  get configuration(): Configuration {
+    return this.mode.configuration;
+  }
+
+  /** takes over another run's moment; the other must be inside or between half-cycles of the same circuit */
+  takeOver(other: DimmerRun): void {
+    this.shelf = other.shelf;
+    this.dial = other.dial;
+    this.mode = other.mode;
+    this.index = other.index;
+    this.time = other.time;
+    other.walk.leave(this.x);
+    this.gated = other.gated;
+    this.latched = true;
+    this.below = false;
+    this.belowDeadline = Number.POSITIVE_INFINITY;
+    this.conductionRecord = null;
+  }
+
+  private enter(mode: Mode): void {
+    this.mode = mode;
+    this.entered = this.time;
+    const angle = this.network.omega * this.time;
+    const sign = this.index % 2 === 0 ? 1 : -1;
+    this.walk.enter(mode, this.x, sign * Math.cos(angle), sign * Math.sin(angle));
+  }
+
+  private leaveMode(): void {
+    if (this.segmentListener !== null && this.walk.elapsed > 0) {
+      this.walk.startCoordinates(this.coordinates);
+      this.segmentListener.segment(this.mode, this.coordinates, this.entered, this.walk.elapsed, this.index);
+    }
+    this.walk.leave(this.x);
+  }
+
+  private change(to: Mode): void {
+    if (to === this.mode) return;
+    this.leaveMode();
+    for (let k = 0; k < this.x.length; k++) this.x[k] = (this.x[k] as number) * (this.mode.flips[k] as number) * (to.flips[k] as number);
+    this.enter(to);
+  }
+
+  private reconfigure(part: Partial<Configuration>): void {
+    this.change(this.shelf.mode({ ...this.mode.configuration, ...part }));
+  }
+
+  private angle(): number {
+    return (this.time / this.halfPeriod) * 180;
+  }
+
+  // --- triac -----------------------------------------------------------------------------------------------------------------
+
+  private fire(): void {
+    this.record.firings.push(this.angle());
+    this.conductionRecord = this.record;
+    this.conductionSince = this.time;
+    this.latched = false;
+    this.below = false;
+    this.belowDeadline = Number.POSITIVE_INFINITY;
+    this.reconfigure({ triac: 'low', triacSign: 1 });
+  }
+
+  private open(): void {
+    this.openingListener?.opening(this);
+    const began = this.conductionRecord;
+    if (began !== null) {
+      const late = (this.record.index - began.index) * 180;
+      const end = this.angle() + late;
+      began.ends.push(end);
+      began.conduction += end - (this.conductionSince / this.halfPeriod) * 180;
+      this.conductionRecord = null;
+    }
+    this.latched = false;
+    this.below = false;
+    this.belowDeadline = Number.POSITIVE_INFINITY;
+    this.reconfigure({ triac: 'open', triacSign: 1 });
+  }
+
+  private setGate(on: boolean): void {
+    if (on === this.gated) return;
+    this.gated = on;
+    if (on) {
+      this.pulseLatched = this.latched;
+      this.pulseGated = true;
+      if (this.mode.configuration.triac === 'open') this.fire();
+      return;
+    }
+    if (!this.pulseLatched) this.record.failedLatches++;
+    if (!this.latched && this.mode.configuration.triac !== 'open') this.open();
+  }
+
+  private latch(): void {
+    this.latched = true;
+    this.pulseLatched = true;
+    this.below = false;
+    this.belowDeadline = Number.POSITIVE_INFINITY;
+  }
+
+  private fallBelowHolding(): void {
+    this.below = true;
+    if (this.idealSwitch) return;
+    this.belowDeadline = this.time + this.dimmer.turnOffTime;
+    if (this.dimmer.turnOffTime === 0) this.unlatch();
+  }
+
+  private unlatch(): void {
+    this.latched = false;
+    this.below = false;
+    this.belowDeadline = Number.POSITIVE_INFINITY;
+    if (!this.gated && this.mode.configuration.triac !== 'open') this.open();
+  }
+
+  /** the triac's current left its window */
+  private triacCrossed(side: 0 | 1): void {
+    const { triac, triacSign } = this.mode.configuration;
+    if (triac === 'low') {
+      const sign: Sign = side === 1 ? 1 : -1;
+      this.reconfigure({ triac: 'on', triacSign: sign });
+      if (this.latched && of(this.dimmer.holdingCurrent, sign) <= this.knee) {
+        this.below = false;
+        this.belowDeadline = Number.POSITIVE_INFINITY;
+      }
+      return;
+    }
+    const falling = (side === 0) === (triacSign === 1);
+    if (!falling) {
+      // only an unlatched triac has the latching current, only one below holding the holding current, as its far bound
+      if (this.latched) {
+        this.below = false;
+        this.belowDeadline = Number.POSITIVE_INFINITY;
+      } else this.latch();
+      return;
+    }
+    const atKnee = !this.latched || this.below || of(this.dimmer.holdingCurrent, triacSign) <= this.knee;
+    if (atKnee) this.reconfigure({ triac: 'low', triacSign: 1 });
+    if (this.latched && !this.below) this.fallBelowHolding();
+  }
+
+  private watchTriac(g: number): number {
+    const { triac, triacSign } = this.mode.configuration;
+    if (triac === 'open') return g;
+    let from: number;
+    let to: number;
+    if (triac === 'low') {
+      from = -this.knee;
+      to = this.knee;
+    } else {
+      const holding = of(this.dimmer.holdingCurrent, triacSign);
+      from = this.latched && !this.below ? holding : this.knee;
+      to = Number.POSITIVE_INFINITY;
+      if (!this.latched) to = of(this.dimmer.latchingCurrent, triacSign);
+      else if (this.below) to = holding;
+      if (triacSign === -1) [from, to] = [-to, -from];
+    }
+    return this.watchOutput(g, OUTPUT.triacCurrent, from, to, this.currentSlack);
+  }
+
+  // --- diac ------------------------------------------------------------------------------------------------------------------
+
+  private gateReached(): boolean {
+    const { drive } = this.dimmer;
+    return drive.kind === 'diac' && Math.abs(this.walk.value(OUTPUT.diacCurrent)) > drive.gateThreshold;
+  }
+
+  private diacCrossed(side: 0 | 1): void {
+    const { drive } = this.dimmer;
+    if (drive.kind !== 'diac') return;
+    const { diac, diacSign } = this.mode.configuration;
+    if (!diac) {
+      this.diacSince = this.time;
+      this.pulseGated = false;
+      this.reconfigure({ diac: true, diacSign: side === 1 ? 1 : -1 });
+      if (this.gateReached()) this.setGate(true);
+      return;
+    }
+    const falling = (side === 0) === (diacSign === 1);
+    if (!falling) {
+      this.setGate(true);
+      return;
+    }
+    const ends = !this.gated || drive.gateThreshold <= drive.diacHoldingCurrent;
+    if (this.gated) this.setGate(false);
+    if (ends) this.endDump();
+  }
+
+  private endDump(): void {
+    if (!this.pulseGated) this.record.failedLatches++;
+    if (this.time - this.diacSince > DIAC_STUCK_SHARE * this.halfPeriod) this.record.diacStuck = true;
+    this.reconfigure({ diac: false, diacSign: 1 });
+  }
+
+  private watchDiac(g: number): number {
+    const { drive } = this.dimmer;
+    const timing = this.network.timing;
+    if (drive.kind !== 'diac' || timing === null) return g;
+    const { diac, diacSign } = this.mode.configuration;
+    if (!diac) {
+      const upward = timing.orientation === 1 ? drive.breakover.positive : drive.breakover.negative;
+      const downward = timing.orientation === 1 ? drive.breakover.negative : drive.breakover.positive;
+      return this.watchOutput(g, OUTPUT.timingVoltage, -downward, upward, this.voltageSlack);
+    }
+    const hold = drive.diacHoldingCurrent;
+    let from = this.gated ? Math.max(drive.gateThreshold, hold) : hold;
+    let to = this.gated ? Number.POSITIVE_INFINITY : drive.gateThreshold;
+    if (!this.gated && drive.gateThreshold <= hold) to = Number.POSITIVE_INFINITY;
+    if (diacSign === -1) [from, to] = [-to, -from];
+    return this.watchOutput(g, OUTPUT.diacCurrent, from, to, this.currentSlack);
+  }
+
+  // --- guards ----------------------------------------------------------------------------------------------------------------
+
+  private watchOutput(g: number, output: number, from: number, to: number, slack: number): number {
+    const { walk } = this;
+    walk.output[g] = output;
+    walk.lower[g] = from;
+    walk.upper[g] = to;
+    walk.slack[g] = slack;
+    return g + 1;
+  }
+
+  private diacGuard = -1;
+
+  private setGuards(): void {
+    const guards = this.mode.guards;
+    for (let g = 0; g < guards.length; g++) {
+      const guard = guards[g] as Guard;
+      this.watchOutput(g, guard.output, guard.lower, guard.upper, this.voltageSlack);
+    }
+    const afterDiac = this.watchDiac(guards.length);
+    this.diacGuard = afterDiac > guards.length ? guards.length : -1;
+    this.walk.guardCount = this.watchTriac(afterDiac);
+  }
+
+  private crossed(): void {
+    this.events++;
+    const g = this.walk.crossedGuard;
+    const side = this.walk.crossedSide;
+    if (g < this.mode.guards.length) this.change(this.shelf.beyond(this.mode, g, side));
+    else if (g === this.diacGuard) this.diacCrossed(side);
+    else this.triacCrossed(side);
+  }
+
+  /** switches at one instant until every part is in its window; false when that does not end */
+  private settleInstant(): boolean {
+    this.setGuards();
+    for (let k = 0; k < INSTANT_BUDGET; k++) {
+      if (this.walk.outside() < 0) return true;
+      this.crossed();
+      this.setGuards();
+    }
+    return false;
+  }
+
+  // --- timed drive -----------------------------------------------------------------------------------------------------------
+
+  /** times at which the gate switches in a half-cycle: on, off, on, off, ...; nothing for a diac drive */
+  private gateTimes(): number[] {
+    const { drive } = this.dimmer;
+    if (drive.kind !== 'timed') return [];
+    const angle = drive.firingAngleLow + ((drive.firingAngleFull - drive.firingAngleLow) * this.dial) / 100;
+    const first = (angle / 180) * this.halfPeriod;
+    if (drive.pulses === 'held') return [first, this.halfPeriod];
+    const times: number[] = [];
+    for (let at = first; at < this.halfPeriod; at += drive.pulseSpacing) {
+      times.push(at, Math.min(at + drive.gatePulse, this.halfPeriod));
+      if (drive.pulses === 'single') break;
+    }
+    return times;
+  }
+
+  // --- half-cycle ------------------------------------------------------------------------------------------------------------
+
+  /** Runs on to the end of the half-cycle. "undecided": a budget ran out; the run cannot go on. */
+  finishHalfCycle(): { readonly outcome: 'done' | 'undecided'; readonly record: HalfCycle } {
+    const record = emptyHalfCycle(this.index);
+    this.record = record;
+    const gateTimes = this.gateTimes();
+    let nextGate = 0;
+    while (nextGate < gateTimes.length && (gateTimes[nextGate] as number) < this.time) nextGate++;
+    const eventsBefore = this.events;
+    const stepsBefore = this.walk.steps;
+    let standing = 0;
+    this.enter(this.mode);
+    for (;;) {
+      if (!this.settleInstant()) return { outcome: 'undecided', record };
+      if (this.events - eventsBefore > EVENT_BUDGET) return { outcome: 'undecided', record };
+      const gateAt = nextGate < gateTimes.length ? (gateTimes[nextGate] as number) : Number.POSITIVE_INFINITY;
+      const until = Math.min(this.halfPeriod, gateAt, this.belowDeadline);
+      const before = this.time;
+      const budget = STEP_BUDGET - (this.walk.steps - stepsBefore);
+      const outcome = this.walk.walk(until - this.entered, budget, standing > STANDSTILL);
+      this.time = this.entered + this.walk.elapsed;
+      if (outcome === 'out-of-steps') return { outcome: 'undecided', record };
+      if (outcome === 'crossed') {
+        standing = this.time - before <= EVENT_TIME ? standing + 1 : 0;
+        this.crossed();
+        continue;
+      }
+      standing = 0;
+      this.time = until;
+      if (until === this.belowDeadline) this.unlatch();
+      if (until === gateAt) {
+        this.events++;
+        this.setGate(nextGate % 2 === 0);
+        nextGate++;
+      }
+      if (until === this.halfPeriod) break;
+    }
+    this.leaveMode();
+    if (this.mode.configuration.diac && this.halfPeriod - this.diacSince > DIAC_STUCK_SHARE * this.halfPeriod) record.diacStuck = true;
+    this.time = 0;
+    this.index++;
+    this.belowDeadline -= this.halfPeriod;
+    this.diacSince -= this.halfPeriod;
+    return { outcome: 'done', record };
+  }
+}

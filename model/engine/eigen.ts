@@ -1,0 +1,354 @@
+/**
+ * Eigenvalues and eigenvectors of a small real matrix: Householder reduction to Hessenberg form, the shifted QR iteration in complex
+ * arithmetic, back substitution (Golub & Van Loan, Matrix Computations, ch. 7). The result is a real basis: one column per real
+ * eigenvalue and two per complex pair, so that the system is diagonal but for a rotation per pair.
+ */
+import { DEFECT_NUDGES, MODE_CONDITION } from '../tolerances.ts';
+
+export interface ModalBasis {
+  /** number of real eigenvalues (they come first) and of complex pairs */
+  readonly reals: number;
+  readonly pairs: number;
+  /** per eigenvalue or pair: real part and (positive) imaginary part, 1/s */
+  readonly decay: Float64Array;
+  readonly rotation: Float64Array;
+  /** n x n, row-major: state = basis * modal; for a pair the two columns belong to the real and imaginary part of its coordinate */
+  readonly basis: Float64Array;
+  /** inverse of `basis` */
+  readonly inverse: Float64Array;
+  /** Frobenius condition of the basis over n: how much rounding is amplified */
+  readonly condition: number;
+}
+
+const at = (a: Float64Array, k: number): number => a[k] as number;
+
+/** reduces h (n x n) to upper Hessenberg form and accumulates the orthogonal transformation in q */
+function toHessenberg(h: Float64Array, q: Float64Array, n: number): void {
+  const v = new Float64Array(n);
+  for (let k = 0; k < n - 2; k++) {
+    let norm = 0;
+    for (let r = k + 1; r < n; r++) norm += at(h, r * n + k) ** 2;
+    norm = Math.sqrt(norm);
+    let below = 0;
+    for (let r = k + 2; r < n; r++) below += Math.abs(at(h, r * n + k));
+    if (below === 0) continue;
+    const head = at(h, (k + 1) * n + k);
+    const pivot = head >= 0 ? head + norm : head - norm;
+    let square = pivot * pivot;
+    v[k + 1] = pivot;
+    for (let r = k + 2; r < n; r++) {
+      v[r] = at(h, r * n + k);
+      square += at(v, r) ** 2;
+    }
+    const beta = 2 / square;
+    for (let c = 0; c < n; c++) {
+      let dot = 0;
+      for (let r = k + 1; r < n; r++) dot += at(v, r) * at(h, r * n + c);
+      dot *= beta;
+      for (let r = k + 1; r < n; r++) h[r * n + c] = at(h, r * n + c) - dot * at(v, r);
+    }
+    for (const m of [h, q]) {
+      for (let r = 0; r < n; r++) {
+        let dot = 0;
+        for (let c = k + 1; c < n; c++) dot += at(v, c) * at(m, r * n + c);
+        dot *= beta;
+        for (let c = k + 1; c < n; c++) m[r * n + c] = at(m, r * n + c) - dot * at(v, c);
+      }
+    }
+    for (let r = k + 2; r < n; r++) h[r * n + k] = 0;
+  }
+}
+
+/** the eigenvalue of the trailing 2 x 2 block that lies nearer its last diagonal entry: [re, im] */
+function wilkinsonShift(re: Float64Array, im: Float64Array, n: number, hi: number): [number, number] {
+  const a = (hi - 1) * n + hi - 1;
+  const b = a + 1;
+  const c = hi * n + hi - 1;
+  const d = c + 1;
+  const halfRe = (at(re, a) - at(re, d)) / 2;
+  const halfIm = (at(im, a) - at(im, d)) / 2;
+  const bcRe = at(re, b) * at(re, c) - at(im, b) * at(im, c);
+  const bcIm = at(re, b) * at(im, c) + at(im, b) * at(re, c);
+  const sqRe = halfRe * halfRe - halfIm * halfIm + bcRe;
+  const sqIm = 2 * halfRe * halfIm + bcIm;
+  const size = Math.hypot(sqRe, sqIm);
+  let rootRe = Math.sqrt((size + Math.abs(sqRe)) / 2);
+  let rootIm = rootRe === 0 ? 0 : sqIm / (2 * rootRe);
+  if (sqRe < 0) [rootRe, rootIm] = [Math.abs(rootIm), sqIm < 0 ? -rootRe : rootRe];
+  if (halfRe * rootRe + halfIm * rootIm > 0) {
+    rootRe = -rootRe;
+    rootIm = -rootIm;
+  }
+  return [at(re, d) + halfRe + rootRe, at(im, d) + halfIm + rootIm];
+}
+
+/** one explicit QR step on rows lo..hi with a shift, by complex Givens rotations, accumulated in (qRe, qIm) */
+function qrStep(
+  re: Float64Array,
+  im: Float64Array,
+  qRe: Float64Array,
+  qIm: Float64Array,
+  n: number,
+  lo: number,
+  hi: number,
+  shift: [number, number],
+): void {
+  for (let k = 0; k < n; k++) {
+    re[k * n + k] = at(re, k * n + k) - shift[0];
+    im[k * n + k] = at(im, k * n + k) - shift[1];
+  }
+  const cos = new Float64Array(n);
+  const sinRe = new Float64Array(n);
+  const sinIm = new Float64Array(n);
+  for (let k = lo; k < hi; k++) {
+    const p = k * n + k;
+    const s = p + n;
+    const top = Math.hypot(at(re, p), at(im, p));
+    const bottom = Math.hypot(at(re, s), at(im, s));
+    const length = Math.hypot(top, bottom);
+    if (length === 0) {
+      cos[k] = 1;
+      continue;
+    }
+    // rotation [c, s; -conj(s), c] with c real that annuls the subdiagonal
+    const phaseRe = top === 0 ? 1 : at(re, p) / top;
+    const phaseIm = top === 0 ? 0 : at(im, p) / top;
+    const c = top / length;
+    const sr = (phaseRe * at(re, s) + phaseIm * at(im, s)) / length;
+    const si = (phaseIm * at(re, s) - phaseRe * at(im, s)) / length;
+    cos[k] = c;
+    sinRe[k] = sr;
+    sinIm[k] = si;
+    for (let j = k; j < n; j++) {
+      const u = k * n + j;
+      const w = u + n;
+      const ur = at(re, u);
+      const ui = at(im, u);
+      const wr = at(re, w);
+      const wi = at(im, w);
+      re[u] = c * ur + sr * wr - si * wi;
+      im[u] = c * ui + sr * wi + si * wr;
+      re[w] = c * wr - sr * ur - si * ui;
+      im[w] = c * wi - sr * ui + si * ur;
+    }
+  }
+  const rotateColumns = (mRe: Float64Array, mIm: Float64Array, k: number, rows: number): void => {
+    const c = at(cos, k);
+    const sr = at(sinRe, k);
+    const si = at(sinIm, k);
+    for (let r = 0; r < rows; r++) {
+      const u = r * n + k;
+      const ur = at(mRe, u);
+      const ui = at(mIm, u);
+      const wr = at(mRe, u + 1);
+      const wi = at(mIm, u + 1);
+      mRe[u] = c * ur + sr * wr + si * wi;
+      mIm[u] = c * ui + sr * wi - si * wr;
+      mRe[u + 1] = c * wr - sr * ur + si * ui;
+      mIm[u + 1] = c * wi - sr * ui - si * ur;
+    }
+  };
+  for (let k = lo; k < hi; k++) {
+    rotateColumns(re, im, k, Math.min(k + 2, hi + 1));
+    rotateColumns(qRe, qIm, k, n);
+  }
+  for (let k = 0; k < n; k++) {
+    re[k * n + k] = at(re, k * n + k) + shift[0];
+    im[k * n + k] = at(im, k * n + k) + shift[1];
+  }
+}
+
+/** makes (re, im) upper triangular by unitary transformations, accumulated in (qRe, qIm) */
+function toTriangular(re: Float64Array, im: Float64Array, qRe: Float64Array, qIm: Float64Array, n: number): void {
+  let hi = n - 1;
+  let tries = 0;
+  while (hi > 0) {
+    let lo = hi;
+    while (lo > 0) {
+      const sub = lo * n + lo - 1;
+      const neighbours =
+        Math.abs(at(re, lo * n + lo)) + Math.abs(at(im, lo * n + lo)) + Math.abs(at(re, sub - n)) + Math.abs(at(im, sub - n));
+      if (Math.abs(at(re, sub)) + Math.abs(at(im, sub)) <= 1.2e-16 * neighbours) {
+        re[sub] = 0;
+        im[sub] = 0;
+        break;
+      }
+      lo--;
+    }
+    if (lo === hi) {
+      hi--;
+      tries = 0;
+      continue;
+    }
+    tries++;
+    if (tries > 100) throw new Error('QR iteration did not converge');
+    const shift: [number, number] =
+      tries % 11 === 10 ? [at(re, hi * n + hi) + Math.abs(at(re, hi * n + hi - 1)), at(im, hi * n + hi)] : wilkinsonShift(re, im, n, hi);
+    qrStep(re, im, qRe, qIm, n, lo, hi, shift);
+  }
+}
+
+/** real inverse by Gauss-Jordan with partial pivoting */
+function invert(matrix: Float64Array, n: number): Float64Array {
+  const m = Float64Array.from(matrix);
+  const inverse = new Float64Array(n * n);
+  for (let k = 0; k < n; k++) inverse[k * n + k] = 1;
+  for (let k = 0; k < n; k++) {
+    let pivot = k;
+    for (let r = k + 1; r < n; r++) if (Math.abs(at(m, r * n + k)) > Math.abs(at(m, pivot * n + k))) pivot = r;
+    for (const x of [m, inverse]) {
+      if (pivot === k) break;
+      for (let c = 0; c < n; c++) {
+        const t = at(x, k * n + c);
+        x[k * n + c] = at(x, pivot * n + c);
+        x[pivot * n + c] = t;
+      }
+    }
+    const head = 1 / at(m, k * n + k);
+    for (let c = 0; c < n; c++) {
+      m[k * n + c] = at(m, k * n + c) * head;
+      inverse[k * n + c] = at(inverse, k * n + c) * head;
+    }
+    for (let r = 0; r < n; r++) {
+      const factor = r === k ? 0 : at(m, r * n + k);
+      if (factor === 0) continue;
+      for (let c = 0; c < n; c++) {
+        m[r * n + c] = at(m, r * n + c) - factor * at(m, k * n + c);
+        inverse[r * n + c] = at(inverse, r * n + c) - factor * at(inverse, k * n + c);
+      }
+    }
+  }
+  return inverse;
+}
+
+function norm(matrix: Float64Array): number {
+  let sum = 0;
+  for (const x of matrix) sum += x * x;
+  return Math.sqrt(sum);
+}
+
+/** eigenvector of the triangular (re, im) for its k-th diagonal entry, in the original coordinates: [re, im] columns, largest entry real */
+function eigenvector(
+  re: Float64Array,
+  im: Float64Array,
+  qRe: Float64Array,
+  qIm: Float64Array,
+  n: number,
+  k: number,
+  smallest: number,
+): [Float64Array, Float64Array] {
+  const yRe = new Float64Array(n);
+  const yIm = new Float64Array(n);
+  yRe[k] = 1;
+  for (let i = k - 1; i >= 0; i--) {
+    let sRe = 0;
+    let sIm = 0;
+    for (let j = i + 1; j <= k; j++) {
+      const t = i * n + j;
+      sRe += at(re, t) * at(yRe, j) - at(im, t) * at(yIm, j);
+      sIm += at(re, t) * at(yIm, j) + at(im, t) * at(yRe, j);
+    }
+    let dRe = at(re, k * n + k) - at(re, i * n + i);
+    let dIm = at(im, k * n + k) - at(im, i * n + i);
+    if (Math.hypot(dRe, dIm) < smallest) [dRe, dIm] = [smallest, 0];
+    const square = dRe * dRe + dIm * dIm;
+    yRe[i] = (sRe * dRe + sIm * dIm) / square;
+    yIm[i] = (sIm * dRe - sRe * dIm) / square;
+  }
+  const vRe = new Float64Array(n);
+  const vIm = new Float64Array(n);
+  let largest = 0;
+  let largestAt = 0;
+  for (let r = 0; r < n; r++) {
+    for (let j = 0; j <= k; j++) {
+      const t = r * n + j;
+      vRe[r] = at(vRe, r) + at(qRe, t) * at(yRe, j) - at(qIm, t) * at(yIm, j);
+      vIm[r] = at(vIm, r) + at(qRe, t) * at(yIm, j) + at(qIm, t) * at(yRe, j);
+    }
+    const size = Math.hypot(at(vRe, r), at(vIm, r));
+    if (size > largest) {
+      largest = size;
+      largestAt = r;
+    }
+  }
+  const pRe = at(vRe, largestAt) / (largest * largest);
+  const pIm = -at(vIm, largestAt) / (largest * largest);
+  for (let r = 0; r < n; r++) {
+    const a = at(vRe, r);
+    const b = at(vIm, r);
+    vRe[r] = a * pRe - b * pIm;
+    vIm[r] = a * pIm + b * pRe;
+  }
+  return [vRe, vIm];
+}
+
+function decompose(matrix: Float64Array, n: number): ModalBasis {
+  const h = Float64Array.from(matrix);
+  const q = new Float64Array(n * n);
+  for (let k = 0; k < n; k++) q[k * n + k] = 1;
+  toHessenberg(h, q, n);
+  const im = new Float64Array(n * n);
+  const qIm = new Float64Array(n * n);
+  toTriangular(h, im, q, qIm, n);
+  const size = norm(matrix);
+  const realBelow = 1e-13 * size;
+  const reals: number[] = [];
+  const pairs: number[] = [];
+  for (let k = 0; k < n; k++) {
+    const imag = at(im, k * n + k);
+    if (Math.abs(imag) <= realBelow) reals.push(k);
+    else if (imag > 0) pairs.push(k);
+  }
+  // a pair may straddle the threshold by rounding: complete the count from the nearest leftovers
+  for (let k = 0; reals.length + 2 * pairs.length < n && k < n; k++) {
+    if (!reals.includes(k) && !pairs.includes(k) && at(im, k * n + k) < 0) {
+      const partner = pairs.some((p) => Math.abs(at(h, p * n + p) - at(h, k * n + k)) < 1e-6 * size);
+      if (!partner) reals.push(k);
+    }
+  }
+  const count = reals.length + pairs.length;
+  const decay = new Float64Array(count);
+  const rotation = new Float64Array(count);
+  const basis = new Float64Array(n * n);
+  const smallest = 1e-16 * size || 1e-300;
+  [...reals, ...pairs].forEach((k, mode) => {
+    const [vRe, vIm] = eigenvector(h, im, q, qIm, n, k, smallest);
+    decay[mode] = at(h, k * n + k);
+    const isPair = mode >= reals.length;
+    rotation[mode] = isPair ? at(im, k * n + k) : 0;
+    const column = isPair ? reals.length + 2 * (mode - reals.length) : mode;
+    for (let r = 0; r < n; r++) {
+      basis[r * n + column] = isPair ? 2 * at(vRe, r) : at(vRe, r);
+      if (isPair) basis[r * n + column + 1] = -2 * at(vIm, r);
+    }
+  });
+  const inverse = invert(basis, n);
+  return { reals: reals.length, pairs: pairs.length, decay, rotation, basis, inverse, condition: (norm(basis) * norm(inverse)) / n };
+}
+
+/** a fixed pattern of numbers between -1 and 1 without structure of its own, so that a nudge by it splits any defect */
+function pattern(r: number, c: number): number {
+  return ((r * 31 + c * 17 + r * c * 7 + 5) % 23) / 11.5 - 1;
+}
+
+/**
+ * Modal basis of a real n x n matrix (row-major). Where the eigenvectors are nearly parallel (critical damping, equal twins) the
+ * matrix is nudged by a tiny share of itself, which separates them at an error far below any tolerance.
+ */
+export function modalBasis(matrix: Float64Array, n: number): ModalBasis {
+  let best = decompose(matrix, n);
+  const complete = (m: ModalBasis): boolean => m.reals + 2 * m.pairs === n;
+  for (const nudge of DEFECT_NUDGES) {
+    if (complete(best) && best.condition < MODE_CONDITION) return best;
+    const nudged = Float64Array.from(matrix);
+    for (let r = 0; r < n; r++) {
+      for (let c = 0; c < n; c++) {
+        const size = Math.sqrt(Math.abs(at(matrix, r * n + r) * at(matrix, c * n + c)));
+        nudged[r * n + c] = at(nudged, r * n + c) + nudge * size * pattern(r, c);
+      }
+    }
+    const apart = decompose(nudged, n);
+    if (complete(apart) && (!complete(best) || apart.condition < best.condition)) best = apart;
+  }
+  return best;
+}

@@ -1,0 +1,300 @@
+/**
+ * A mode: one configuration's linear system in modal coordinates, ready to be stepped. Between switchings the state is
+ *   x(t) = basis * z(t) + (particular solution of the mains sine) + (constant particular solution),
+ * where each modal coordinate only decays or rotates. The mains is carried as one more undamped pair (cos wt, sin wt), so every output
+ * is one dot product with the coordinates plus a constant.
+ *
+ * Steps come from a ladder h = shortest * 2^level. For each level the mode holds the factor of every coordinate, and how far one
+ * coordinate of unit size can stray from the chord over such a step: |lambda|^2 h^2 / 8 where that is small ("slow", a bound on the
+ * curvature), or its whole range where it is not ("fast").
+ */
+import { type Change, type Configuration, type Guard, groupGuards, linearKey, signKey } from '../circuit/configuration.ts';
+import { closeModeSystem, GROUP_CONSTANTS, type ModeSystem, type OpenModeSystem, openModeSystem } from '../circuit/mode-system.ts';
+import type { Network } from '../circuit/network.ts';
+import type { Dimmer } from '../pairing.ts';
+import { LADDER_LEVELS } from '../tolerances.ts';
+import { type ModalBasis, modalBasis } from './eigen.ts';
+
+export const LEVELS = LADDER_LEVELS + 1;
+/** largest |lambda| h that still counts as slow: there |lambda|^2 h^2 / 8 is 1, the range of a decaying coordinate */
+const SLOW_LIMIT = Math.sqrt(8);
+
+/** what mirrored modes share */
+export interface LinearMode {
+  readonly states: number;
+  readonly outputs: number;
+  readonly modal: ModalBasis;
+  /** coordinates: reals, pairs (re, im), mains (cos, sin) */
+  readonly coordinates: number;
+  /** terms: reals, pairs, mains: what has a size of its own */
+  readonly terms: number;
+  readonly decay: Float64Array;
+  readonly rotation: Float64Array;
+  /** outputs x coordinates */
+  readonly outputRows: Float64Array;
+  /** outputs x terms: size of an output's share of each term of unit size */
+  readonly outputSizes: Float64Array;
+  /** particular solution of the mains: x = driveCos * cos wt + driveSin * sin wt */
+  readonly driveCos: Float64Array;
+  readonly driveSin: Float64Array;
+  /** constants x states, and constants x outputs */
+  readonly constantStates: Float64Array;
+  readonly constantOutputs: Float64Array;
+  /** levels x coordinates (a pair: re, im of its factor), levels x terms */
+  readonly factors: Float64Array;
+  readonly sizes: Float64Array;
+  readonly strayingSlow: Float64Array;
+  readonly strayingFast: Float64Array;
+  /** number of fast terms per level */
+  readonly fastTerms: Uint8Array;
+}
+
+export interface Mode {
+  readonly linear: LinearMode;
+  readonly configuration: Configuration;
+  /** constant particular solution of the states, and the constant part of every output, with this mode's signs */
+  readonly restState: Float64Array;
+  readonly restOutput: Float64Array;
+  /** -1 for each state that is held mirrored (a reservoir whose bridge conducts in the negative half-cycle) */
+  readonly flips: Float64Array;
+  readonly guards: readonly Guard[];
+  /** modes reached by crossing a guard, filled in as they are met: [2 g] below its lower bound, [2 g + 1] above its upper */
+  readonly neighbours: (Mode | undefined)[];
+  /** level at which the previous visit's first step was accepted: where the next visit starts trying */
+  startLevel: number;
+}
+
+function steadyAnswers(system: ModeSystem, modal: ModalBasis, omega: number) {
+  const n = system.states;
+  const beta = (column: number): Float64Array => {
+    const b = new Float64Array(n);
+    for (let r = 0; r < n; r++) {
+      let sum = 0;
+      for (let c = 0; c < n; c++) sum += (modal.inverse[r * n + c] as number) * (system.rows[c * system.columns + column] as number);
+      b[r] = sum;
+    }
+    return b;
+  };
+  const back = (z: Float64Array): Float64Array => {
+    const x = new Float64Array(n);
+    for (let r = 0; r < n; r++) {
+      let sum = 0;
+      for (let c = 0; c < n; c++) sum += (modal.basis[r * n + c] as number) * (z[c] as number);
+      x[r] = sum;
+    }
+    return x;
+  };
+  // (j omega - Lambda) Z = beta, real coordinates and 2 x 2 blocks; x = Im(X e^{j omega t}) = Re X sin + Im X cos
+  const b = beta(n);
+  const zRe = new Float64Array(n);
+  const zIm = new Float64Array(n);
+  const divide = (k: number, pRe: number, pIm: number, qRe: number, qIm: number): void => {
+    const square = qRe * qRe + qIm * qIm;
+    zRe[k] = (pRe * qRe + pIm * qIm) / square;
+    zIm[k] = (pIm * qRe - pRe * qIm) / square;
+  };
+  for (let k = 0; k < modal.reals; k++) divide(k, b[k] as number, 0, -(modal.decay[k] as number), omega);
+  for (let p = 0; p < modal.pairs; p++) {
+    const k = modal.reals + 2 * p;
+    const d = modal.decay[modal.reals + p] as number;
+    const q = modal.rotation[modal.reals + p] as number;
+    const b1 = b[k] as number;
+    const b2 = b[k + 1] as number;
+    const detRe = d * d - omega * omega + q * q;
+    const detIm = -2 * d * omega;
+    divide(k, -d * b1 - q * b2, omega * b1, detRe, detIm);
+    divide(k + 1, q * b1 - d * b2, omega * b2, detRe, detIm);
+  }
+  const driveSin = back(zRe);
+  const driveCos = back(zIm);
+  const constantStates = new Float64Array(system.constants * n);
+  for (let k = 0; k < system.constants; k++) {
+    const c = beta(n + 1 + k);
+    const z = new Float64Array(n);
+    for (let r = 0; r < modal.reals; r++) z[r] = (c[r] as number) === 0 ? 0 : -(c[r] as number) / (modal.decay[r] as number);
+    for (let p = 0; p < modal.pairs; p++) {
+      const r = modal.reals + 2 * p;
+      const d = modal.decay[modal.reals + p] as number;
+      const q = modal.rotation[modal.reals + p] as number;
+      const c1 = c[r] as number;
+      const c2 = c[r + 1] as number;
+      z[r] = -(d * c1 + q * c2) / (d * d + q * q);
+      z[r + 1] = -(d * c2 - q * c1) / (d * d + q * q);
+    }
+    constantStates.set(back(z), k * n);
+  }
+  return { driveSin, driveCos, constantStates };
+}
+
+export function linearMode(system: ModeSystem, omega: number, shortest: number): LinearMode {
+  const n = system.states;
+  const { columns, outputs, constants } = system;
+  const matrix = new Float64Array(n * n);
+  for (let r = 0; r < n; r++) for (let c = 0; c < n; c++) matrix[r * n + c] = system.rows[r * columns + c] as number;
+  const modal = modalBasis(matrix, n);
+  const { reals, pairs } = modal;
+  const terms = reals + pairs + 1;
+  const coordinates = n + 2;
+  const decay = new Float64Array(terms);
+  const rotation = new Float64Array(terms);
+  decay.set(modal.decay);
+  rotation.set(modal.rotation);
+  rotation[terms - 1] = omega;
+  const { driveSin, driveCos, constantStates } = steadyAnswers(system, modal, omega);
+
+  const outputRows = new Float64Array(outputs * coordinates);
+  const outputSizes = new Float64Array(outputs * terms);
+  const constantOutputs = new Float64Array(constants * outputs);
+  for (let o = 0; o < outputs; o++) {
+    const row = (n + o) * columns;
+    const onto = (of: Float64Array, from: number, stride: number): number => {
+      let sum = 0;
+      for (let c = 0; c < n; c++) sum += (system.rows[row + c] as number) * (of[from + c * stride] as number);
+      return sum;
+    };
+    const out = o * coordinates;
+    for (let k = 0; k < n; k++) outputRows[out + k] = onto(modal.basis, k, n);
+    outputRows[out + n] = onto(driveCos, 0, 1);
+    outputRows[out + n + 1] = onto(driveSin, 0, 1) + (system.rows[row + n] as number);
+    for (let t = 0; t < reals; t++) outputSizes[o * terms + t] = Math.abs(outputRows[out + t] as number);
+    for (let t = reals; t < terms; t++) {
+      const k = reals + 2 * (t - reals);
+      outputSizes[o * terms + t] = Math.hypot(outputRows[out + k] as number, outputRows[out + k + 1] as number);
+    }
+    for (let k = 0; k < constants; k++) {
+      constantOutputs[k * outputs + o] = onto(constantStates, k * n, 1) + (system.rows[row + n + 1 + k] as number);
+    }
+  }
+
+  const factors = new Float64Array(LEVELS * coordinates);
+  const sizes = new Float64Array(LEVELS * terms);
+  const strayingSlow = new Float64Array(LEVELS * terms);
+  const strayingFast = new Float64Array(LEVELS * terms);
+  const fastTerms = new Uint8Array(LEVELS);
+  for (let t = 0; t < terms; t++) {
+    const d = decay[t] as number;
+    const q = rotation[t] as number;
+    const speed = Math.hypot(d, q);
+    const k = t < reals ? t : reals + 2 * (t - reals);
+    for (let level = 0; level < LEVELS; level++) {
+      const h = shortest * 2 ** level;
+      const size = Math.exp(d * h);
+      sizes[level * terms + t] = size;
+      if (t < reals) factors[level * coordinates + k] = size;
+      else {
+        factors[level * coordinates + k] = size * Math.cos(q * h);
+        factors[level * coordinates + k + 1] = size * Math.sin(q * h);
+      }
+      const growth = Math.max(1, size);
+      if (speed * h <= SLOW_LIMIT) strayingSlow[level * terms + t] = (growth * (speed * h) ** 2) / 8;
+      else {
+        strayingFast[level * terms + t] = q === 0 ? growth : 2 * growth;
+        fastTerms[level] = (fastTerms[level] as number) + 1;
+      }
+    }
+  }
+  return {
+    states: n,
+    outputs,
+    modal,
+    coordinates,
+    terms,
+    decay,
+    rotation,
+    outputRows,
+    outputSizes,
+    driveCos,
+    driveSin,
+    constantStates,
+    constantOutputs,
+    factors,
+    sizes,
+    strayingSlow,
+    strayingFast,
+    fastTerms,
+  };
+}
+
+/** The modes of one circuit at one dial position, built when first met. `shared` holds what does not depend on the dial. */
+export class ModeShelf {
+  private readonly network: Network;
+  private readonly dimmer: Dimmer;
+  private readonly timingResistance: number;
+  private readonly shared: Map<string, OpenModeSystem>;
+  private readonly shortest: number;
+  private readonly linear = new Map<string, LinearMode>();
+  private readonly modes = new Map<string, Mode>();
+  built = 0;
+
+  constructor(network: Network, dimmer: Dimmer, timingResistance: number, shared: Map<string, OpenModeSystem>, shortest: number) {
+    this.network = network;
+    this.dimmer = dimmer;
+    this.timingResistance = timingResistance;
+    this.shared = shared;
+    this.shortest = shortest;
+  }
+
+  private linearFor(configuration: Configuration, key: string): LinearMode {
+    const known = this.linear.get(key);
+    if (known !== undefined) return known;
+    let open = this.shared.get(key);
+    if (open === undefined) {
+      open = openModeSystem(this.network, this.dimmer, configuration);
+      this.shared.set(key, open);
+    }
+    const made = linearMode(closeModeSystem(open, this.timingResistance), this.network.omega, this.shortest);
+    this.linear.set(key, made);
+    this.built++;
+    return made;
+  }
+
+  mode(configuration: Configuration): Mode {
+    const key = linearKey(configuration);
+    const fullKey = `${key}|${signKey(configuration)}`;
+    const known = this.modes.get(fullKey);
+    if (known !== undefined) return known;
+    const linear = this.linearFor(configuration, key);
+    const { states, outputs } = linear;
+    const signs = [configuration.triacSign, configuration.diacSign, ...configuration.groups.map((g) => g.sign)];
+    const restState = new Float64Array(states);
+    const restOutput = new Float64Array(outputs);
+    signs.forEach((sign, k) => {
+      for (let s = 0; s < states; s++) restState[s] = (restState[s] as number) + sign * (linear.constantStates[k * states + s] as number);
+      for (let o = 0; o < outputs; o++)
+        restOutput[o] = (restOutput[o] as number) + sign * (linear.constantOutputs[k * outputs + o] as number);
+    });
+    const flips = new Float64Array(states).fill(1);
+    this.network.groups.forEach((part, k) => {
+      if (part.reservoir !== null) flips[part.reservoir.state] = signs[GROUP_CONSTANTS + k] as number;
+    });
+    const guards = groupGuards(this.network, configuration);
+    const made: Mode = {
+      linear,
+      configuration,
+      restState,
+      restOutput,
+      flips,
+      guards,
+      neighbours: new Array(2 * guards.length).fill(undefined),
+      startLevel: 6,
+    };
+    this.modes.set(fullKey, made);
+    return made;
+  }
+
+  changed(from: Mode, change: Change): Mode {
+    return this.mode(change(from.configuration));
+  }
+
+  /** the mode beyond a group guard's bound; side 0 below its lower bound, 1 above its upper */
+  beyond(from: Mode, guard: number, side: 0 | 1): Mode {
+    const known = from.neighbours[2 * guard + side];
+    if (known !== undefined) return known;
+    const g = from.guards[guard] as Guard;
+    const change = side === 0 ? g.belowLower : g.aboveUpper;
+    if (change === null) throw new Error('crossed a guard that has nothing beyond it');
+    const next = this.changed(from, change);
+    from.neighbours[2 * guard + side] = next;
+    return next;
+  }
+}

@@ -1,0 +1,69 @@
+/**
+ * Every tolerance, cap, threshold and fixed circuit constant of the model, each with its unit, its reason and what changing it does.
+ */
+
+// --- fixed parts of the circuit -------------------------------------------------------------------------------------------------
+
+/** Ohm, from the lamp line to neutral: the lamp line has no direct-current path while every bridge blocks and the triac is off.
+ * 1 GOhm takes 0.3 uA; at 1 MOhm it would fire the diac of an unloaded dimmer. */
+export const LINE_LEAKAGE = 1e9;
+/** Ohm, across a reservoir capacitor: keeps a constant-current drain from being a pure integrator. Discharges 10 uF in three hours. */
+export const RESERVOIR_LEAKAGE = 1e9;
+/** Ohm, stands for an absent ("null") inductor loss where two inductors would meet with nothing else at the node. Larger only stiffens. */
+export const ABSENT_LOSS = 1e6;
+/** V, both diodes of a bridge together (common practice, 0.7 V each) */
+export const BRIDGE_DROP = 1.4;
+/** F, at the input of a lamp whose curve falls and that has no input capacitor: a falling curve without any capacitance has several
+ * operating points at once. 100 pF is the wiring inside a lamp (from memory); it only decides which one is taken, within nanoseconds. */
+export const STRAY_CAPACITANCE = 100e-12;
+/** share of the minimum voltage over which a reservoir's drain fades out; a hard edge would chatter there */
+export const DRAIN_FADE = 0.1;
+/** ratio of neighbouring breakpoints of a constant-power drain's chords; 1.12 keeps each chord within 0.33 % of P/v (half of that
+ * after centring), 1.2 within 0.84 % */
+export const DRAIN_RATIO = 1.12;
+/** a constant-power drain is tabulated up to this multiple of the mains peak; a ring charges a reservoir to at most about twice */
+export const DRAIN_SPAN = 2.5;
+/** V, span over which an active bleeder starts, and over which it lets go */
+export const BLEEDER_START = 5;
+export const BLEEDER_RELEASE = 2;
+/** V, span over which a curve whose first point is at 0 V with a current rises to it, inside the bridge's drop */
+export const CURVE_START = 1;
+
+// --- event location -------------------------------------------------------------------------------------------------------------
+
+/** the shortest step is the half-cycle over 2^LADDER_LEVELS (76 ns at 50 Hz): a double crossing inside one such step cannot matter,
+ * since nothing in the circuit's logic is faster */
+export const LADDER_LEVELS = 17;
+/** a half-cycle with more events than this is undecided; the busiest honest ones seen hold a few hundred */
+export const EVENT_BUDGET = 4_000;
+/** a half-cycle with more trial steps than this is undecided (the shortest step everywhere would be 131,072) */
+export const STEP_BUDGET = 200_000;
+/** switchings at one instant before the circuit is given up as inconsistent (a 64-point curve can be walked end to end) */
+export const INSTANT_BUDGET = 400;
+/** s, bracket at which an event counts as located; 0.1 us is required, rounding of a 10 ms time is 1e-18 s */
+export const EVENT_TIME = 1e-12;
+/** events in a row without time passing before one shortest step is taken whatever the guards say (a graze at rounding level) */
+export const STANDSTILL = 20;
+/** share of the half-cycle after which a conducting diac counts as stuck; a dump takes some tens of microseconds */
+export const DIAC_STUCK_SHARE = 0.25;
+/** relative: a guard nearer its bound than this times the quantity's scale counts as on the bound, and its slope decides */
+export const GUARD_SLACK = 1e-9;
+
+// --- decomposition --------------------------------------------------------------------------------------------------------------
+
+/** condition of the eigenvector matrix above which the system matrix is nudged apart (see DEFECT_NUDGES); rounding errors reach about
+ * 2e-16 times this */
+export const MODE_CONDITION = 1e8;
+/** relative change of the matrix entries that separates the eigenvalues of a defective matrix (critical damping, equal twins); the
+ * smallest that brings the condition down is used, and it is an error of that size in the components */
+export const DEFECT_NUDGES: readonly number[] = [1e-11, 1e-9, 1e-7];
+
+// --- settling and observing -----------------------------------------------------------------------------------------------------
+
+/** longest repeating pattern looked for, half-cycles */
+export const LONGEST_PERIOD = 8;
+/** a pattern repeats when every state returns to within this share of its largest recent value, several half-cycles running */
+export const REPEAT_TOLERANCE = 1e-6;
+/** half-cycles simulated before observing a pattern that does not repeat, and half-cycles observed then */
+export const SETTLE_HALF_CYCLES = 60;
+export const OBSERVE_HALF_CYCLES = 60;
