@@ -1,0 +1,81 @@
+/**
+ * The HTTP application as a function of what it depends on: the one ordered list of plugins and routes. It opens nothing, listens
+ * nowhere and knows no environment; main.ts does that.
+ */
+import type { IncomingMessage, ServerResponse } from 'node:http';
+import Fastify, { type FastifyBaseLogger, type FastifyInstance, type RawServerDefault } from 'fastify';
+import type { ZodTypeProvider } from 'fastify-type-provider-zod';
+import type { VerdictStore } from '../db/verdicts.ts';
+import { createMetrics } from './metrics.ts';
+import { documentCalls } from './plugins/call-documents.ts';
+import { countRequests } from './plugins/request-counting.ts';
+import { identifyRequests, newRequestId } from './plugins/request-ids.ts';
+import { validateBySchema } from './plugins/schema-validation.ts';
+import { addSecurityHeaders } from './plugins/security-headers.ts';
+import { refuseWhileStopping } from './plugins/stopping.ts';
+import { clientErrorText, replyToError, sendProblem } from './problem-replies.ts';
+import { healthRoutes } from './routes/health.ts';
+import { metricsRoute } from './routes/metrics.ts';
+import { verdictWaveformRoutes } from './routes/verdict-waveforms.ts';
+import { verdictRoutes } from './routes/verdicts.ts';
+import type { Simulation } from './simulation/simulation.ts';
+
+export interface AppDependencies {
+  readonly logger: FastifyBaseLogger;
+  readonly simulation: Simulation;
+  readonly verdicts: VerdictStore;
+  /** whether the record answers a read */
+  readonly isRecordReadable: () => boolean;
+  readonly simulationLoad: () => { readonly threads: number; readonly waiting: number; readonly completed: number };
+  readonly now: () => Date;
+}
+
+export type App = FastifyInstance<RawServerDefault, IncomingMessage, ServerResponse, FastifyBaseLogger, ZodTypeProvider>;
+
+/** bytes; the largest honest pairing (12 groups of 64 points, 101 dial positions) is under 60 KiB */
+const BODY_LIMIT = 1024 * 1024;
+/** ms; stopping waits for idle connections no longer than this */
+const KEEP_ALIVE_TIMEOUT = 5_000;
+/** ms for a request's bytes to arrive in full */
+const REQUEST_TIMEOUT = 30_000;
+
+export async function buildApp(dependencies: AppDependencies): Promise<App> {
+  const { logger } = dependencies;
+  const app: App = Fastify({
+    loggerInstance: logger,
+    bodyLimit: BODY_LIMIT,
+    keepAliveTimeout: KEEP_ALIVE_TIMEOUT,
+    requestTimeout: REQUEST_TIMEOUT,
+    forceCloseConnections: 'idle',
+    // plugins/stopping.ts answers for itself, with a problem document
+    return503OnClosing: false,
+    requestIdHeader: false,
+    genReqId: newRequestId,
+    routerOptions: { maxParamLength: 500 },
+    frameworkErrors: (error, request, reply) => void replyToError(error, request, reply),
+    clientErrorHandler(error, socket) {
+      if (socket.writable && !socket.destroyed) socket.end(clientErrorText(logger, error));
+    },
+  });
+  const metrics = createMetrics();
+
+  app.setErrorHandler(replyToError);
+  app.setNotFoundHandler((request, reply) =>
+    sendProblem(reply, 'no-such-call', `There is no ${request.method} at this path. /docs lists the calls.`),
+  );
+  // Fastify reads text/plain by itself; every body here is JSON.
+  app.removeContentTypeParser('text/plain');
+
+  identifyRequests(app);
+  refuseWhileStopping(app);
+  countRequests(app, metrics);
+  await addSecurityHeaders(app);
+  validateBySchema(app);
+  await documentCalls(app);
+
+  await app.register(healthRoutes(dependencies));
+  await app.register(metricsRoute(dependencies, metrics));
+  await app.register(verdictRoutes(dependencies, metrics));
+  await app.register(verdictWaveformRoutes(dependencies));
+  return app;
+}

@@ -1,0 +1,63 @@
+/** The process: environment, record, threads, HTTP, and the sequence in which they stop. */
+import { join } from 'node:path';
+import closeWithGrace from 'close-with-grace';
+import pino from 'pino';
+import { closeRecord, isRecordReadable, openRecord } from '../db/record.ts';
+import { verdictStore } from '../db/verdicts.ts';
+import { buildApp } from './app.ts';
+import { type Environment, parseEnvironment, printable } from './environment.ts';
+import { runStopStages, type StopStage } from './shutdown.ts';
+import { startSimulationPool } from './simulation/simulation-pool.ts';
+
+/** ms for what comes after the running requests: ending threads, writing the log of the record back */
+const SHORT_STAGE = 5_000;
+
+const parsed = parseEnvironment(process.env);
+if (parsed.ok) {
+  await start(parsed.environment);
+} else {
+  for (const problem of parsed.problems) console.error(problem);
+  console.error('The service did not start. .env.example documents every variable.');
+  process.exitCode = 1;
+}
+
+async function start(environment: Environment): Promise<void> {
+  const logger = pino({ level: environment.logLevel });
+  const now = () => new Date();
+  try {
+    const record = openRecord(join(environment.dataFolder, 'holdfast.sqlite'), now);
+    const simulation = startSimulationPool({ threads: environment.workers, queueLimit: environment.queueLimit });
+    const app = await buildApp({
+      logger,
+      simulation,
+      verdicts: verdictStore(record),
+      isRecordReadable: () => isRecordReadable(record),
+      simulationLoad: simulation.load,
+      now,
+    });
+    stopOnSignal(environment.stopDeadline_s, logger, [
+      // Stops listening, refuses what still arrives, waits for what runs; each answer closes its connection.
+      { name: 'answer running requests', deadline_ms: environment.stopDeadline_s * 1000, act: () => app.close() },
+      { name: 'end simulation threads', deadline_ms: SHORT_STAGE, act: simulation.close, orElse: simulation.destroy },
+      { name: 'check the record in and close it', deadline_ms: SHORT_STAGE, act: () => closeRecord(record) },
+    ]);
+    const address = await app.listen({ host: environment.host, port: environment.port });
+    logger.info({ ...printable(environment), address, reference: `${address}/docs` }, 'serving');
+  } catch (error) {
+    logger.fatal({ err: error }, 'the service did not start');
+    process.exitCode = 1;
+    // Threads and timers may be up already.
+    logger.flush();
+    process.exit();
+  }
+}
+
+function stopOnSignal(stopDeadline_s: number, logger: pino.Logger, stages: readonly StopStage[]): void {
+  const delay = stopDeadline_s * 1000 + stages.length * SHORT_STAGE;
+  closeWithGrace({ delay, logger }, async ({ signal, err }) => {
+    if (err !== undefined) logger.fatal({ err }, 'stopping after an unexpected error');
+    else logger.info({ signal }, 'stopping');
+    const clean = await runStopStages(stages, logger);
+    logger.info({ clean }, 'stopped');
+  });
+}

@@ -1,0 +1,60 @@
+/** Sends problem documents, and turns every error that Fastify or a handler raises into one. */
+import type { FastifyBaseLogger, FastifyError, FastifyReply, FastifyRequest } from 'fastify';
+import { PROBLEMS, type ProblemCode, problemDocument } from './problems.ts';
+import type { Issue } from './schemas/wire-parsing.ts';
+
+/** Raised by the validator: everything that is wrong with one part of a request. */
+export class RequestInvalid extends Error {
+  readonly issues: readonly Issue[];
+  constructor(issues: readonly Issue[]) {
+    super('The request is not valid.');
+    this.issues = issues;
+  }
+}
+
+interface Extras {
+  readonly issues?: readonly Issue[];
+  readonly retryAfter_s?: number;
+}
+
+export function sendProblem(reply: FastifyReply, code: ProblemCode, detail: string, extras: Extras = {}): FastifyReply {
+  if (extras.retryAfter_s !== undefined) reply.header('retry-after', extras.retryAfter_s);
+  const document = problemDocument(code, detail, reply.request.id, extras.issues);
+  // As text: a problem must reach the client even where the call's response schemas have no place for it.
+  return reply.code(PROBLEMS[code].status).type('application/problem+json').send(JSON.stringify(document));
+}
+
+const CODES_OF_FASTIFY: { readonly [code: string]: readonly [ProblemCode, string] } = {
+  FST_ERR_CTP_INVALID_MEDIA_TYPE: ['unsupported-media-type', 'Send the body as application/json.'],
+  FST_ERR_CTP_INVALID_CONTENT_LENGTH: ['malformed-http', 'The body is not as long as Content-Length says.'],
+  FST_ERR_CTP_BODY_TOO_LARGE: ['body-too-large', 'Send at most 1 MiB (1,048,576 bytes).'],
+  FST_ERR_CTP_EMPTY_JSON_BODY: ['malformed-json', 'The body is empty: send a JSON object.'],
+  FST_ERR_CTP_INVALID_JSON_BODY: ['malformed-json', 'The body cannot be read as JSON.'],
+  FST_ERR_BAD_URL: ['malformed-http', 'The URL cannot be decoded.'],
+};
+
+export function replyToError(error: FastifyError | RequestInvalid, request: FastifyRequest, reply: FastifyReply): FastifyReply {
+  if (error instanceof RequestInvalid) {
+    const count = error.issues.length;
+    const detail = count === 1 ? 'One thing is wrong with it.' : `${count} things are wrong with it.`;
+    return sendProblem(reply, 'invalid-request', detail, { issues: error.issues });
+  }
+  const [code, detail] = CODES_OF_FASTIFY[error.code] ?? [];
+  if (code !== undefined && detail !== undefined) return sendProblem(reply, code, detail);
+  if (error instanceof SyntaxError && error.statusCode === 400) {
+    return sendProblem(reply, 'malformed-json', 'The body cannot be read as JSON.');
+  }
+  if (error.statusCode !== undefined && error.statusCode >= 400 && error.statusCode < 500) {
+    request.log.warn({ err: error }, 'request refused');
+    return sendProblem(reply, 'malformed-http', 'The request cannot be read.');
+  }
+  request.log.error({ err: error }, 'request failed');
+  return sendProblem(reply, 'internal', 'The request could not be answered. It is logged under requestId.');
+}
+
+/** The answer to bytes that are not HTTP at all, below any route. */
+export function clientErrorText(log: FastifyBaseLogger, error: Error & { readonly code?: string }): string {
+  log.debug({ err: error }, 'connection refused');
+  const body = JSON.stringify(problemDocument('malformed-http', 'The request cannot be read as HTTP.', 'none'));
+  return `HTTP/1.1 400 Bad Request\r\nContent-Type: application/problem+json\r\nContent-Length: ${Buffer.byteLength(body)}\r\nConnection: close\r\n\r\n${body}`;
+}

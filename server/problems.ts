@@ -1,0 +1,85 @@
+/**
+ * The one table of what can go wrong for a client: code, status, title, and when. Problem documents (RFC 9457), the OpenAPI responses
+ * and the reference text come from it. What goes wrong inside has one code without particulars.
+ */
+import type { Issue } from './schemas/wire-parsing.ts';
+
+interface ProblemKind {
+  readonly status: number;
+  readonly title: string;
+  readonly when: string;
+}
+
+export const PROBLEMS = {
+  'invalid-request': {
+    status: 400,
+    title: 'The request is not valid',
+    when: 'a field is unknown, missing, of the wrong type, out of range or at odds with another; `issues` lists every one',
+  },
+  'malformed-json': { status: 400, title: 'The body is not JSON', when: 'the body is empty, cut off or not JSON' },
+  'malformed-http': { status: 400, title: 'The request is not HTTP as it should be', when: 'the URL or a header cannot be read' },
+  'no-such-call': { status: 404, title: 'There is no such call', when: 'no call has this method and path' },
+  'verdict-not-found': { status: 404, title: 'There is no such verdict', when: 'no verdict is stored under this id' },
+  'not-acceptable': {
+    status: 406,
+    title: 'The answer has no form that the request accepts',
+    when: '`Accept` names none of the media types of the call',
+  },
+  'body-too-large': { status: 413, title: 'The body is too large', when: 'the body exceeds 1 MiB' },
+  'unsupported-media-type': { status: 415, title: 'The body has the wrong type', when: 'the body is not `application/json`' },
+  'phase-table-needs-fitting': {
+    status: 422,
+    title: 'A phase table must be fitted first',
+    when: 'a lamp is given as a phase table: it is valid, but this version does not fit it to a load that can be simulated',
+  },
+  'pairing-cannot-be-simulated': {
+    status: 422,
+    title: 'This pairing cannot be simulated',
+    when: 'every field is valid by itself, yet the circuit they make is outside what the model covers; `issues` says where',
+  },
+  internal: { status: 500, title: 'Something went wrong in the service', when: 'the fault is ours; quote `requestId` when you report it' },
+  'queue-full': {
+    status: 503,
+    title: 'Too many pairings are waiting',
+    when: 'the simulation queue is full; `Retry-After` says when to ask again',
+  },
+  'not-ready': { status: 503, title: 'The service is not ready', when: 'the record cannot be read, or the service is stopping' },
+  stopping: { status: 503, title: 'The service is stopping', when: 'the request arrived on an open connection while the service stops' },
+} as const satisfies { readonly [code: string]: ProblemKind };
+
+export type ProblemCode = keyof typeof PROBLEMS;
+
+export interface Problem {
+  readonly type: string;
+  readonly title: string;
+  readonly status: number;
+  readonly detail: string;
+  readonly issues?: readonly Issue[];
+  readonly requestId?: string;
+}
+
+/** Enough to mend a file by; a body of nothing but errors must not become an answer many times its size. */
+const MOST_ISSUES = 200;
+
+export function problemType(code: ProblemCode): string {
+  return `urn:holdfast:problem:${code}`;
+}
+
+export function problemDocument(code: ProblemCode, detail: string, requestId: string, issues?: readonly Issue[]): Problem {
+  const { status, title } = PROBLEMS[code];
+  const left = (issues?.length ?? 0) - MOST_ISSUES;
+  return {
+    type: problemType(code),
+    title,
+    status,
+    detail: left > 0 ? `${detail} The first ${MOST_ISSUES} are listed, ${left} more are not.` : detail,
+    ...(issues === undefined ? {} : { issues: issues.slice(0, MOST_ISSUES) }),
+    requestId,
+  };
+}
+
+/** The table as the reference shows it. */
+export function problemTable(): string {
+  const rows = Object.entries(PROBLEMS).map(([code, { status, title, when }]) => `| ${status} | \`${code}\` | ${title} | ${when} |`);
+  return ['| status | code | title | when |', '|---|---|---|---|', ...rows].join('\n');
+}

@@ -1,0 +1,26 @@
+/** Which problem document each expected failure of judging and of recording becomes. */
+import type { FastifyReply } from 'fastify';
+import { sendProblem } from '../problem-replies.ts';
+import type { JudgingFailure } from '../verdicts/verdict-judging.ts';
+import type { WaveformsFailure } from '../verdicts/verdict-waveforms.ts';
+
+export function replyToFailure(reply: FastifyReply, failure: JudgingFailure | WaveformsFailure): FastifyReply {
+  switch (failure.kind) {
+    case 'queue-full':
+      return sendProblem(reply, 'queue-full', `Ask again in ${failure.retryAfter_s} s.`, { retryAfter_s: failure.retryAfter_s });
+    case 'phase-table-needs-fitting': {
+      const message = 'is a valid phase table, but must be fitted to an iv-table or a reservoir load before it can be simulated';
+      const issues = failure.paths.map((path) => ({ path, message }));
+      const detail = 'This version does not fit phase tables. Give the lamp as resistive, iv-table or reservoir.';
+      return sendProblem(reply, 'phase-table-needs-fitting', detail, { issues });
+    }
+    case 'invalid-pairing':
+      return sendProblem(reply, 'pairing-cannot-be-simulated', 'The model refuses this circuit.', { issues: failure.issues });
+    case 'verdict-not-found':
+      return sendProblem(reply, 'verdict-not-found', 'No verdict is stored under this id.');
+    case 'not-judged-there':
+      return sendProblem(reply, 'invalid-request', 'One thing is wrong with it.', {
+        issues: [{ path: failure.path, message: failure.message }],
+      });
+  }
+}

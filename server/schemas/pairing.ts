@@ -1,0 +1,105 @@
+/**
+ * A pairing on the wire: as asked (`askedPairing`, the body of POST /v1/verdicts) and as judged (`judgedPairing`, every default filled
+ * in). What was judged is itself a valid question, with itself as the answer.
+ */
+import { z } from 'zod';
+import { MAINS_DEFAULTS, OPTIONS_DEFAULTS } from '../verdicts/pairing-defaults.ts';
+import { askedDimmer, judgedDimmer } from './dimmer.ts';
+import { askedLamp, judgedLamp } from './lamp.ts';
+import { choice, list, quantity, reportNotRising, wholeNumber, withRule } from './quantities.ts';
+
+const mainsFields = {
+  voltage_V: quantity('V', 85, 265, { is: 'R.m.s. voltage of the mains' }),
+  frequency_Hz: quantity('Hz', 45, 65, { is: 'Frequency of the mains' }),
+  sourceResistance_Ohm: quantity('Ohm', 0.01, 20, { is: 'Resistance of the wiring', otherwise: MAINS_DEFAULTS.sourceResistance_Ohm }),
+};
+
+const addedLoad = z
+  .discriminatedUnion('kind', [
+    z.strictObject({
+      kind: z.literal('resistor'),
+      resistance_kOhm: quantity('kOhm', 0.1, 10_000, { is: 'Resistor across the lamps; it runs hot' }),
+    }),
+    z.strictObject({
+      kind: z.literal('resistor-capacitor'),
+      resistance_Ohm: quantity('Ohm', 1, 100_000, { is: 'Resistor of an R-C across the lamps' }),
+      capacitance_nF: quantity('nF', 0, 10_000, { is: 'Capacitor of an R-C across the lamps, 0 for none' }),
+    }),
+  ])
+  .nullable()
+  .describe('A load added across the lamps, or null. Default null.');
+
+const optionFields = {
+  dialPositions_pct: withRule(
+    list(
+      quantity('%', 0, 100, { is: 'Dial position, 100 is brightest' }),
+      1,
+      101,
+      'dial positions',
+      'Where on the dial the pairing is judged, rising. The dial is swept up from dark and down again; one position alone is judged from a fresh start. Default 0 to 100 in steps of 5',
+    ),
+    (sent, report) => reportNotRising(sent, [], '%', report),
+  ),
+  corners: choice(['all', 'nominal'], { is: 'Judge every corner or the nominal one alone', otherwise: OPTIONS_DEFAULTS.corners }),
+};
+
+const countField = wholeNumber(1, 500, { is: 'How many of this lamp are on the circuit' });
+
+export const EXAMPLE_PAIRING = {
+  mains: { voltage_V: 230, frequency_Hz: 50 },
+  dimmer: { latchingCurrent_mA: 60, holdingCurrent_mA: 35 },
+  lamps: [
+    {
+      count: 4,
+      lamp: {
+        ratedPower_W: 8,
+        load: {
+          kind: 'iv-table',
+          points: [
+            { voltage_V: 0, current_mA: 0 },
+            { voltage_V: 60, current_mA: 0 },
+            { voltage_V: 325, current_mA: 52 },
+          ],
+        },
+        input: { seriesResistance_Ohm: 22, capacitance_nF: 47 },
+      },
+    },
+  ],
+};
+
+export const askedPairing = z
+  .strictObject({
+    mains: z.strictObject({ ...mainsFields, sourceResistance_Ohm: mainsFields.sourceResistance_Ohm.optional() }).describe('The supply.'),
+    dimmer: askedDimmer.describe('The dimmer. Only the two triac currents are required.'),
+    lamps: list(
+      z.strictObject({ count: countField, lamp: askedLamp }),
+      1,
+      12,
+      'lamp groups',
+      'The lamps on the circuit, each kind of lamp once with its count',
+    ),
+    addedLoad: addedLoad.optional(),
+    options: z.strictObject(optionFields).partial().optional().describe('How the pairing is judged.'),
+  })
+  .meta({
+    id: 'AskedPairing',
+    description: 'One dimmer, one or more groups of lamps, the mains, and an optional added load.',
+    examples: [EXAMPLE_PAIRING],
+  });
+
+export const judgedPairing = z
+  .object({
+    mains: z.object(mainsFields),
+    dimmer: judgedDimmer,
+    lamps: z.array(z.object({ count: countField, lamp: judgedLamp })),
+    addedLoad,
+    options: z.object(optionFields),
+  })
+  .meta({ id: 'JudgedPairing', description: 'The pairing with every default filled in. Sent as a question it gets the same verdict.' });
+
+export type AskedPairing = z.output<typeof askedPairing>;
+export type AskedDimmer = AskedPairing['dimmer'];
+export type AskedLamp = AskedPairing['lamps'][number]['lamp'];
+export type JudgedPairing = z.output<typeof judgedPairing>;
+export type JudgedDimmer = JudgedPairing['dimmer'];
+export type JudgedLamp = JudgedPairing['lamps'][number]['lamp'];

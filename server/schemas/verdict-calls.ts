@@ -1,0 +1,85 @@
+/** Parameters and answers of the calls that read verdicts: ids, filters, cursors, waveforms. */
+import { z } from 'zod';
+import { GRADES, verdictHeading } from './verdict.ts';
+
+const choiceOf = (values: readonly string[]) => `must be one of ${values.map((value) => JSON.stringify(value)).join(', ')}`;
+
+/** A number as a URL carries it. Text that merely coerces (an empty one, `0x10`, ` 5`) is refused. */
+function numberText(from: number, to: number, description: string, whole = false) {
+  const error = `must be a ${whole ? 'whole ' : ''}number from ${from} to ${to}`;
+  const number = whole ? z.int({ error }) : z.number({ error });
+  return z
+    .string({ error: `${error}, given once` })
+    .refine((text) => /^\d{1,6}(\.\d{1,6})?$/.test(text), { error })
+    .transform(Number)
+    .pipe(number.min(from).max(to))
+    .meta({ type: whole ? 'integer' : 'number', minimum: from, maximum: to, description });
+}
+
+export const verdictParams = z.strictObject({
+  id: z
+    .string()
+    .regex(/^[0-9a-f]{26}$/, { error: 'must be 26 hexadecimal digits in lower case, as `id` of a verdict has them' })
+    .describe('Id of a stored verdict.'),
+});
+
+export const verdictListQuery = z.strictObject({
+  grade: z
+    .enum(GRADES, { error: choiceOf(GRADES) })
+    .optional()
+    .describe('Only verdicts of this grade.'),
+  modelVersion: z
+    .string({ error: 'must be a model version, given once' })
+    .min(1, { error: 'must not be empty' })
+    .max(40, { error: 'must be at most 40 characters' })
+    .optional()
+    .describe('Only verdicts of this model version.'),
+  mainsVoltage_V: numberText(85, 265, 'Only verdicts at exactly this mains voltage.').optional(),
+  mainsFrequency_Hz: numberText(45, 65, 'Only verdicts at exactly this mains frequency.').optional(),
+  limit: numberText(1, 100, 'How many to list. Default 20.', true).optional(),
+  cursor: z
+    .string({ error: 'must be a cursor, given once' })
+    .max(100, { error: 'must be `nextCursor` of an earlier page' })
+    .optional()
+    .describe('`nextCursor` of the page before; absent for the newest.'),
+});
+
+export const verdictList = z.object({
+  items: z.array(verdictHeading).describe('Newest first.'),
+  nextCursor: z.string().nullable().describe('Where the next page begins; null at the end.'),
+});
+
+export const waveformsQuery = z.strictObject({
+  dial_pct: numberText(0, 100, 'A dial position the verdict was judged at.'),
+  sweep: z
+    .enum(['up', 'down'], { error: choiceOf(['up', 'down']) })
+    .default('up')
+    .describe('Which way the dial came there.'),
+});
+
+const column = (description: string) => z.array(z.number()).describe(description);
+
+/** Columns of equal length; `columns` in the order in which a CSV has them. */
+export const waveforms = z
+  .object({
+    verdictId: z.string(),
+    modelVersion: z.string(),
+    sweep: z.enum(['up', 'down']),
+    dial_pct: z.number(),
+    columns: z.object({
+      time_ms: column('From the rising zero crossing that starts the window.'),
+      mainsVoltage_V: column('The mains.'),
+      lampVoltage_V: column('From the lamp line to neutral.'),
+      lampCurrent_mA: column('Into all lamps and the added load.'),
+      dimmerCurrent_mA: column("The dimmer's line current."),
+      timingVoltage_V: column('Across the timing capacitor that feeds the diac; zeros for a timed drive.'),
+      gateCurrent_mA: column('Into the gate.'),
+    }),
+  })
+  .meta({
+    id: 'Waveforms',
+    description: "Instantaneous values over the last observed half-cycles of one dial position, of the model's circuit.",
+  });
+
+export type WaveformsAnswer = z.output<typeof waveforms>;
+export type VerdictListQuery = z.output<typeof verdictListQuery>;

@@ -1,0 +1,18 @@
+/** Entry of a worker thread: one task in, the model's outcome out. It holds no state and no database. */
+import { move, transferableSymbol, valueSymbol } from 'piscina';
+import { judgePairing, recordWaveforms } from '../../model/index.ts';
+import type { SimulationTask } from './simulation.ts';
+
+export default function runTask(task: SimulationTask): unknown {
+  if (task.kind === 'judge') return judgePairing(task.pairing, task.options);
+  return withColumnsMoved(recordWaveforms(task.pairing, task.dialPositions, task.place));
+}
+
+/** Hands the columns' buffers over instead of copying them. */
+function withColumnsMoved(outcome: ReturnType<typeof recordWaveforms>): unknown {
+  if (!outcome.ok) return outcome;
+  const columns = Object.values(outcome.value).filter((value) => value instanceof Float64Array);
+  // A set, because columns may share a buffer and none can be moved twice.
+  const buffers = [...new Set(columns.map(({ buffer }) => buffer))];
+  return move({ [transferableSymbol]: buffers, [valueSymbol]: outcome });
+}
