@@ -64,6 +64,37 @@ export const DEFECT_NUDGES: readonly number[] = [1e-11, 1e-9, 1e-7];
 export const LONGEST_PERIOD = 8;
 /** a pattern repeats when every state returns to within this share of its largest recent value, several half-cycles running */
 export const REPEAT_TOLERANCE = 1e-6;
+/** floor of that comparison as a share of the mains peak (for a current: of the peak over 1 kOhm): 3 uV, 3 nA at 230 V */
+export const REPEAT_FLOOR = 1e-8;
 /** half-cycles simulated before observing a pattern that does not repeat, and half-cycles observed then */
 export const SETTLE_HALF_CYCLES = 60;
 export const OBSERVE_HALF_CYCLES = 60;
+/** relative accuracy to which the largest current of a segment is searched */
+export const PEAK_TOLERANCE = 1e-4;
+
+// --- what counts as what --------------------------------------------------------------------------------------------------------
+
+/** default of the angle (degrees) by which conduction must end before the lamps' own current would have ended it to count as a drop-out:
+ * the last 30 degrees of a half-cycle hold 2.9 % of a resistive lamp's energy (phase-cut closed form at 150 degrees), which no eye misses */
+export const DROP_OUT_ANGLE = 30;
+/** the lamps' own current counts as ended once it is below this share of the holding current: too little for any triac (our choice) */
+export const OWN_CURRENT_SHARE = 0.05;
+/** step in which the end of the lamps' own current is looked for, degrees: well under any sensible drop-out angle */
+export const OWN_CURRENT_STEP = 0.5;
+/** largest modulation (max - min)/(max + min) of half-cycle energy within one polarity. Modulation at a quarter of twice the mains
+ * frequency (25 or 30 Hz: every second full cycle differs) that gives a short-term flicker value PstLM of 1 (IEC TR 61547-1 filter,
+ * for light that follows power without storage) */
+export const variationLimit = (frequency: number): number => (frequency < 55 ? 0.008 : 0.01);
+/** largest modulation between the polarities: IEEE 1789-2015 low-risk modulation, 0.025 % per Hz below 90 Hz (restated) */
+export const polarityLimit = (frequency: number): number => 0.00025 * frequency;
+/** share of the dial that a steady range must span for a conditional grade, %: less is of no use to whoever turns it (our choice) */
+export const LEAST_STEADY_RANGE = 20;
+/** degrees a conduction may reach into the next half-cycle before it counts as that half-cycle's own, fired at 0 */
+export const CARRY_OVER_ANGLE = 10;
+
+// --- waveforms ------------------------------------------------------------------------------------------------------------------
+
+/** half-cycles shown: two mains cycles, so that a pattern of every second cycle shows */
+export const WAVEFORM_HALF_CYCLES = 4;
+/** even samples per half-cycle, besides the edges of every switching */
+export const WAVEFORM_SAMPLES = 400;

@@ -23,6 +23,7 @@ export interface DialRow {
   /** half-cycles simulated before the observation, and observed */
   readonly settled: number;
   readonly observed: number;
+  /** per half-cycle, on average */
   readonly failedLatches: number;
   readonly earlyDropOuts: number;
   /** mean of the first firing angle over lit half-cycles and its spread (max - min), degrees; null where dark */
@@ -30,7 +31,7 @@ export interface DialRow {
   readonly firingAngleSpread: number | null;
   /** mean over lit half-cycles of the angle during which the triac conducts, degrees */
   readonly conductionAngle: number | null;
-  /** difference in energy between polarities over their mean, 0..2 */
+  /** modulation (max - min)/(max + min) of energy between the polarities, 0..1 */
   readonly polarityDifference: number;
   /** modulation (max - min)/(max + min) of half-cycle energy within one polarity, the larger of the two, 0..1 */
   readonly variation: number;
@@ -106,6 +107,8 @@ export interface JudgeOptions {
   /** rising, 0..100 %, 1 to 101 positions; one position alone is judged from a fresh start on the way up only */
   readonly dialPositions: readonly number[];
   readonly corners: 'all' | 'nominal';
+  /** degrees by which conduction must end before the lamps' own current would have ended it to count as a drop-out */
+  readonly dropOutAngle: number;
 }
 
 /** Instantaneous quantities over the last observed half-cycles of one dial position; columns of equal length. */

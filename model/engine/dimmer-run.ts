@@ -17,6 +17,7 @@ import { type OpenModeSystem, triacKnee } from '../circuit/mode-system.ts';
 import type { Network } from '../circuit/network.ts';
 import type { Dimmer, PerPolarity } from '../pairing.ts';
 import {
+  CARRY_OVER_ANGLE,
   DIAC_STUCK_SHARE,
   EVENT_BUDGET,
   EVENT_TIME,
@@ -406,6 +407,25 @@ export class DimmerRun {
 
   // --- half-cycle ------------------------------------------------------------------------------------------------------------
 
+  /** a conduction that goes on far into the next half-cycle without a firing (a current too steep to turn off) is that one's own too */
+  private takeCarriedOver(from: HalfCycle, record: HalfCycle): void {
+    if (this.conductionRecord === from) {
+      from.ends.push(180);
+      from.conduction += 180 - (this.conductionSince / this.halfPeriod) * 180;
+      this.conductionRecord = record;
+      this.conductionSince = 0;
+      record.firings.push(0);
+      return;
+    }
+    const end = (from.ends[from.ends.length - 1] as number) - 180;
+    if (end <= CARRY_OVER_ANGLE) return;
+    from.ends[from.ends.length - 1] = 180;
+    from.conduction -= end;
+    record.firings.push(0);
+    record.ends.push(end);
+    record.conduction += end;
+  }
+
   /** Runs on to the end of the half-cycle. "undecided": a budget ran out; the run cannot go on. */
   finishHalfCycle(): { readonly outcome: 'done' | 'undecided'; readonly record: HalfCycle } {
     const record = emptyHalfCycle(this.index);
@@ -413,6 +433,7 @@ export class DimmerRun {
     const gateTimes = this.gateTimes();
     let nextGate = 0;
     while (nextGate < gateTimes.length && (gateTimes[nextGate] as number) < this.time) nextGate++;
+    const carried = this.conductionRecord;
     const eventsBefore = this.events;
     const stepsBefore = this.walk.steps;
     let standing = 0;
@@ -443,6 +464,7 @@ export class DimmerRun {
       if (until === this.halfPeriod) break;
     }
     this.leaveMode();
+    if (carried !== null && record.firings.length === 0) this.takeCarriedOver(carried, record);
     if (this.mode.configuration.diac && this.halfPeriod - this.diacSince > DIAC_STUCK_SHARE * this.halfPeriod) record.diacStuck = true;
     this.time = 0;
     this.index++;

@@ -1,0 +1,93 @@
+/**
+ * Lets the circuit settle at one dial position and observes it: until its pattern repeats, and then one whole pattern (both
+ * polarities), or for a fixed number of half-cycles where it never does.
+ */
+import type { DimmerRun, SegmentListener } from '../engine/dimmer-run.ts';
+import type { HalfCycle } from '../engine/half-cycle.ts';
+import { RepeatWatch } from '../engine/settling.ts';
+import { DROP_OUT_ANGLE, OBSERVE_HALF_CYCLES, SETTLE_HALF_CYCLES } from '../tolerances.ts';
+import { HalfCycleMeasures, type Measures } from './half-cycle-measures.ts';
+import { OwnCurrentEnd } from './own-current-end.ts';
+
+export interface ObservedHalfCycle {
+  readonly record: HalfCycle;
+  readonly measures: Measures;
+  readonly earlyDropOuts: number;
+}
+
+export interface DialObservation {
+  readonly outcome: 'observed' | 'undecided';
+  readonly halfCycles: readonly ObservedHalfCycle[];
+  /** period of the pattern in half-cycles, null where it did not repeat */
+  readonly repeatsAfter: number | null;
+  readonly settled: number;
+}
+
+export interface ObservationPlan {
+  /** half-cycles to let pass and to observe where the pattern does not repeat */
+  readonly settle: number;
+  readonly observe: number;
+  /** degrees before the lamps' own end at which an end of conduction is a drop-out */
+  readonly dropOutAngle: number;
+}
+
+export const OBSERVATION_PLAN: ObservationPlan = { settle: SETTLE_HALF_CYCLES, observe: OBSERVE_HALF_CYCLES, dropOutAngle: DROP_OUT_ANGLE };
+
+export class DialObserver {
+  readonly run: DimmerRun;
+  private readonly watch: RepeatWatch;
+  private readonly measures = new HalfCycleMeasures();
+  private readonly ownEnd: OwnCurrentEnd;
+  private readonly plan: ObservationPlan;
+  /** hears of the segments of observed half-cycles besides the measures */
+  private readonly alsoListening: SegmentListener | null;
+
+  constructor(run: DimmerRun, plan: ObservationPlan = OBSERVATION_PLAN, alsoListening: SegmentListener | null = null) {
+    this.run = run;
+    this.watch = new RepeatWatch(run.network);
+    this.ownEnd = new OwnCurrentEnd(run, plan.dropOutAngle);
+    this.plan = plan;
+    this.alsoListening = alsoListening;
+  }
+
+  get steps(): number {
+    return this.run.steps + this.ownEnd.steps;
+  }
+
+  observe(position: number): DialObservation {
+    const { run, watch } = this;
+    run.setDial(position);
+    watch.reset();
+    let settled = 0;
+    let period = 0;
+    while (period === 0 && settled < this.plan.settle) {
+      const { outcome, record } = run.finishHalfCycle();
+      if (outcome === 'undecided') return { outcome: 'undecided', halfCycles: [], repeatsAfter: null, settled };
+      settled++;
+      run.state(watch.slot);
+      period = watch.note(record);
+    }
+    const pattern = period % 2 === 0 ? period : 2 * period;
+    const observed: ObservedHalfCycle[] = [];
+    const wanted = period > 0 ? pattern : this.plan.observe;
+    run.segmentListener = {
+      segment: (mode, coordinates, start, duration, halfCycle) => {
+        this.measures.segment(mode, coordinates, start, duration, halfCycle);
+        this.alsoListening?.segment(mode, coordinates, start, duration, halfCycle);
+      },
+    };
+    run.openingListener = this.ownEnd;
+    try {
+      while (observed.length < wanted) {
+        this.measures.begin();
+        const { outcome, record } = run.finishHalfCycle();
+        if (outcome === 'undecided') return { outcome: 'undecided', halfCycles: [], repeatsAfter: null, settled };
+        observed.push({ record, measures: this.measures.current, earlyDropOuts: this.ownEnd.earlyDropOuts(record) });
+      }
+    } finally {
+      run.segmentListener = null;
+      run.openingListener = null;
+    }
+    return { outcome: 'observed', halfCycles: observed, repeatsAfter: period > 0 ? period : null, settled };
+  }
+}
