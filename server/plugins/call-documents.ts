@@ -50,8 +50,15 @@ export async function documentCalls(app: App): Promise<void> {
   await app.register(swaggerUi, {
     routePrefix: '/docs',
     staticCSP: REFERENCE_PAGE_CSP,
-    uiConfig: { docExpansion: 'list', defaultModelsExpandDepth: 0, defaultModelRendering: 'model', deepLinking: true },
-    theme: { title: 'Holdfast reference' },
+    uiConfig: {
+      url: '/openapi.json',
+      docExpansion: 'list',
+      defaultModelsExpandDepth: 0,
+      defaultModelRendering: 'model',
+      deepLinking: true,
+    },
+    // The bar would offer to load documents from elsewhere, which the page's policy forbids.
+    theme: { title: 'Holdfast reference', css: [{ filename: 'plain.css', content: '.swagger-ui .topbar { display: none; }' }] },
   });
 }
 

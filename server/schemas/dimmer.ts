@@ -75,11 +75,11 @@ const secondSection = z
   .describe(`A second timing section before the diac, or null. ${defaultText(SECOND_SECTION_DEFAULT)}`);
 
 const timedFields = {
-  firingAngleFull_deg: quantity('deg', 0, 180, {
+  firingAngleFull_deg: quantity('deg', 0, 179, {
     is: 'Firing angle at dial 100 %, from the zero crossing of the mains',
     otherwise: TIMED_DEFAULTS.firingAngleFull_deg,
   }),
-  firingAngleLow_deg: quantity('deg', 0, 180, { is: 'Firing angle at dial 0 %', otherwise: TIMED_DEFAULTS.firingAngleLow_deg }),
+  firingAngleLow_deg: quantity('deg', 0, 179, { is: 'Firing angle at dial 0 %', otherwise: TIMED_DEFAULTS.firingAngleLow_deg }),
   gatePulse_us: quantity('us', 1, 10_000, { is: 'Width of a gate pulse', otherwise: TIMED_DEFAULTS.gatePulse_us }),
   pulses: choice(['single', 'train', 'held'], {
     is: 'One gate pulse, a train of them, or one held until the end of the half-cycle',

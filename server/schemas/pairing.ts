@@ -40,7 +40,10 @@ const optionFields = {
     ),
     (sent, report) => reportNotRising(sent, [], '%', report),
   ),
-  corners: choice(['all', 'nominal'], { is: 'Judge every corner or the nominal one alone', otherwise: OPTIONS_DEFAULTS.corners }),
+  corners: choice(['all', 'nominal'], {
+    is: 'Judge every corner or the nominal one alone; this model version judges the nominal one for either',
+    otherwise: OPTIONS_DEFAULTS.corners,
+  }),
 };
 
 const countField = wholeNumber(1, 500, { is: 'How many of this lamp are on the circuit' });

@@ -7,9 +7,12 @@ import { CAUTIONS } from './cautions.ts';
 import { MODEL_ASSUMPTIONS } from './model-assumptions.ts';
 import type { Assumption } from './pairing-completion.ts';
 
-/** Seven significant digits: far more than the model's accuracy, and short enough to read. The record keeps every bit. */
+/**
+ * Seven significant digits and no less than a millionth of the wire's unit: finer than the model's accuracy, short enough to read, and
+ * the rounding noise of a symmetrical circuit reads as the 0 it is. The record keeps every bit.
+ */
 function shown(value: number): number {
-  return Number(value.toPrecision(7));
+  return Number(Number(value.toPrecision(7)).toFixed(6));
 }
 
 const shownOrNull = (value: number | null): number | null => (value === null ? null : shown(value));

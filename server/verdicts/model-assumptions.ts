@@ -7,6 +7,11 @@ import type { Assumption } from './pairing-completion.ts';
 const CIRCUIT = 'fixed in the model';
 
 export const MODEL_ASSUMPTIONS: readonly Assumption[] = [
+  {
+    path: 'model.corners',
+    value: 'nominal',
+    basis: 'this model version judges the nominal corner alone, also where options.corners asks for all',
+  },
   { path: 'model.mainsShape', value: 'sine', basis: `${CIRCUIT}: no harmonics, no ripple-control signals, nothing else on the circuit` },
   { path: 'model.bridgeDrop_V', value: 1.4, basis: `${CIRCUIT}: both diodes of a lamp's bridge together, common practice` },
   { path: 'model.lineLeakage_MOhm', value: 1000, basis: `${CIRCUIT}: leakage from the lamp line to neutral` },
