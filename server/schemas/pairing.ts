@@ -40,6 +40,10 @@ const optionFields = {
     ),
     (sent, report) => reportNotRising(sent, [], '%', report),
   ),
+  dropOutAngle_deg: quantity('deg', 0.1, 90, {
+    is: "How much earlier than the lamps' own current would have ended it a conduction must end to count as a drop-out",
+    otherwise: OPTIONS_DEFAULTS.dropOutAngle_deg,
+  }),
   corners: choice(['all', 'nominal'], {
     is: 'Judge every corner or the nominal one alone; this model version judges the nominal one for either',
     otherwise: OPTIONS_DEFAULTS.corners,

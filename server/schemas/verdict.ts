@@ -28,13 +28,17 @@ const dialRow = z
     repeatsAfter_halfCycles: count.nullable().describe('Length of the pattern that repeats; null where it wanders.'),
     settled_halfCycles: count.describe('Half-cycles simulated before observing.'),
     observed_halfCycles: count.describe('Half-cycles observed.'),
-    failedLatches: count.describe('Gate pulses that ended before the triac reached its latching current.'),
-    earlyDropOuts: count.describe("Conductions that ended well before the lamp's own current would have ended them."),
+    failedLatches: z.number().describe('Gate pulses a half-cycle, on average, that ended before the triac reached its latching current.'),
+    earlyDropOuts: z
+      .number()
+      .describe("Conductions a half-cycle, on average, that ended well before the lamp's own current would have ended them."),
     firingAngle_deg: z.number().nullable().describe('Mean of the first firing, from the zero crossing; null where dark.'),
     firingAngleSpread_deg: z.number().nullable().describe('Latest less earliest first firing; null where dark.'),
     conductionAngle_deg: z.number().nullable().describe('How long the triac conducts; null where dark.'),
-    polarityDifference_pct: z.number().describe('Difference in energy between the two polarities, over their mean.'),
-    variation_pct: z.number().describe('Modulation of half-cycle energy within one polarity, the larger of the two.'),
+    polarityDifference_pct: z.number().describe('Modulation of energy between the two polarities: difference over sum.'),
+    variation_pct: z
+      .number()
+      .describe('Modulation of half-cycle energy within one polarity, (max - min) / (max + min), the larger of the two.'),
     lampPower_W: z.number().describe('Mean power into all lamps.'),
     rmsCurrent_mA: z.number().describe('R.m.s. line current of the dimmer.'),
     peakCurrent_A: z.number().describe('Peak line current of the dimmer.'),

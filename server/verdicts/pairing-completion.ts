@@ -153,8 +153,8 @@ function completeLoad(
 }
 
 function completeOptions(asked: AskedPairing['options'], { fill }: Filling): JudgedPairing['options'] {
-  const { dialPositions_pct, corners } = fill('options', OPTIONS_DEFAULTS, asked);
-  return { dialPositions_pct: [...dialPositions_pct], corners };
+  const { dialPositions_pct, ...others } = fill('options', OPTIONS_DEFAULTS, asked);
+  return { dialPositions_pct: [...dialPositions_pct], ...others };
 }
 
 type Current = AskedDimmer['latchingCurrent_mA'];

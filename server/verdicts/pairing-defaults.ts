@@ -2,6 +2,7 @@
  * Every default a pairing is completed with, in wire units, each with the ground it stands on. The OpenAPI document's field texts and
  * a verdict's `assumptions` both come from here, so that neither can say anything else than what is filled in.
  */
+import { DROP_OUT_ANGLE } from '../../model/index.ts';
 
 export interface Default<T> {
   /** for supplies of 180 V and more, and for those below */
@@ -140,5 +141,6 @@ export const OPTIONS_DEFAULTS = {
     Array.from({ length: 21 }, (_, step) => step * 5),
     'the whole dial in steps of 5 %',
   ),
+  dropOutAngle_deg: always(DROP_OUT_ANGLE, 'our choice, the model says why'),
   corners: always<'all' | 'nominal'>('all', 'a verdict at nominal mains alone says less'),
 } satisfies Settings;

@@ -22,7 +22,7 @@ export function toModel(pairing: JudgedPairing): { readonly pairing: model.Pairi
       lamps: lamps.map(({ count, lamp }) => ({ count, lamp: lampToModel(lamp) })),
       addedLoad: addedLoad === null ? null : shuntToModel(addedLoad),
     },
-    options: { dialPositions: options.dialPositions_pct, corners: options.corners },
+    options: { dialPositions: options.dialPositions_pct, corners: options.corners, dropOutAngle: options.dropOutAngle_deg },
   };
 }
 

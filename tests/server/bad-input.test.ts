@@ -1,0 +1,173 @@
+import { describe, expect, it } from 'vitest';
+import { testApp } from '../support/server-app.ts';
+import { fakeSimulation } from '../support/server-fake-simulation.ts';
+import { examplePairing } from '../support/server-pairings.ts';
+import { BAD_INPUT_CASES, broken } from './bad-input.cases.ts';
+
+interface Issue {
+  readonly path: string;
+  readonly message: string;
+}
+
+describe('a bad question', () => {
+  it.each(BAD_INPUT_CASES.map((badCase) => [badCase.title, badCase] as const))(
+    'with %s is refused, names the place, says what would be right, and leaves no row',
+    async (_, badCase) => {
+      const simulation = fakeSimulation();
+      const { post, verdicts } = await testApp({ simulation });
+      const answer = await post(broken(badCase));
+      expect(answer.statusCode).toBe(400);
+      expect(answer.headers['content-type']).toMatch(/^application\/problem\+json/);
+      const { type, issues } = answer.json() as { type: string; issues: Issue[] };
+      expect(type).toBe('urn:holdfast:problem:invalid-request');
+      expect(issues.map(({ path }) => path)).toContain(badCase.path);
+      expect(issues.find(({ path }) => path === badCase.path)?.message).toMatch(badCase.says);
+      expect(simulation.asked()).toBe(0);
+      expect(verdicts.count()).toBe(0);
+    },
+  );
+
+  it('is answered with everything that is wrong with it, not only the first', async () => {
+    const { post } = await testApp();
+    const pairing = examplePairing();
+    pairing.mains.voltage_V = 'high';
+    pairing.mains.frequency = 50;
+    pairing.dimmer.holdingCurrent_mA = 90;
+    pairing.dimmer.turnOffTime_us = -1;
+    pairing.dimmer.drive = { kind: 'timed', firingAngleFull_deg: 170, gatePulse_us: 0 };
+    pairing.lamps[0].count = 0;
+    pairing.lamps[0].lamp.load.points[2].voltage_V = 10;
+    pairing.lamps[0].lamp.load.points[0].current_mA = -1;
+    pairing.options = { dialPositions_pct: [5, 5, 200] };
+    const { issues } = (await post(pairing)).json() as { issues: Issue[] };
+    expect(issues.map(({ path }) => path).sort()).toEqual([
+      'dimmer.drive.firingAngleFull_deg',
+      'dimmer.drive.gatePulse_us',
+      'dimmer.holdingCurrent_mA',
+      'dimmer.turnOffTime_us',
+      'lamps[0].count',
+      'lamps[0].lamp.load.points[0].current_mA',
+      'lamps[0].lamp.load.points[2].voltage_V',
+      'mains.frequency',
+      'mains.voltage_V',
+      'options.dialPositions_pct[1]',
+      'options.dialPositions_pct[2]',
+    ]);
+  });
+
+  it('with a number that JSON writes and no double holds is refused', async () => {
+    const { post, verdicts } = await testApp();
+    const answer = await post(JSON.stringify(examplePairing()).replace('"voltage_V":230', '"voltage_V":1e999'));
+    expect(answer.statusCode).toBe(400);
+    expect(answer.json().issues).toEqual([{ path: 'mains.voltage_V', message: 'must be a number from 85 to 265 (V)' }]);
+    expect(verdicts.count()).toBe(0);
+  });
+
+  it('does not get an answer many times its own size', async () => {
+    const { post } = await testApp();
+    const pairing = examplePairing();
+    for (let number = 0; number < 50_000; number += 1) pairing[`field${number}`] = 1;
+    const answer = await post(pairing);
+    expect(answer.json().issues).toHaveLength(200);
+    expect(answer.json().detail).toMatch(/first 200 are listed, 49800 more/);
+  });
+
+  it.each([
+    ['cut off', '{"mains": {', 400, 'malformed-json'],
+    ['not JSON', 'mains=230', 400, 'malformed-json'],
+    ['empty', '', 400, 'malformed-json'],
+    ['holding NaN', '{"mains": NaN}', 400, 'malformed-json'],
+    ['nested beyond reason', '['.repeat(400_000), 400, 'malformed-json'],
+    ['reaching for the prototype', '{"__proto__": {"x": 1}}', 400, 'malformed-json'],
+    ['a list', '[]', 400, 'invalid-request'],
+    ['a string', '"pairing"', 400, 'invalid-request'],
+    ['null', 'null', 400, 'invalid-request'],
+    ['over 1 MiB', `"${'x'.repeat(1024 * 1024)}"`, 413, 'body-too-large'],
+  ])('whose body is %s is refused', async (_, body, status, code) => {
+    const { post, verdicts } = await testApp();
+    const answer = await post(body);
+    expect([answer.statusCode, answer.json().type]).toEqual([status, `urn:holdfast:problem:${code}`]);
+    expect(verdicts.count()).toBe(0);
+  });
+
+  it.each(['text/plain', 'application/x-www-form-urlencoded', 'application/xml', 'nonsense'])(
+    'sent as %s is refused with 415',
+    async (type) => {
+      const { app } = await testApp();
+      const payload = JSON.stringify(examplePairing());
+      const answer = await app.inject({ method: 'POST', url: '/v1/verdicts', headers: { 'content-type': type }, payload });
+      expect([answer.statusCode, answer.json().type]).toEqual([415, 'urn:holdfast:problem:unsupported-media-type']);
+    },
+  );
+
+  it('without a body is refused', async () => {
+    const { app } = await testApp();
+    const answer = await app.inject({ method: 'POST', url: '/v1/verdicts' });
+    expect([answer.statusCode, answer.json().type]).toEqual([400, 'urn:holdfast:problem:invalid-request']);
+  });
+
+  it('that holds a valid phase table is answered with 422, which says that fitting is not in yet', async () => {
+    const { post, verdicts } = await testApp();
+    const pairing = examplePairing();
+    const points = Array.from({ length: 180 }, (_, phase_deg) => ({ phase_deg, current_mA: phase_deg }));
+    pairing.lamps[0].lamp.load = { kind: 'phase-table', voltage_V: 230, frequency_Hz: 50, points };
+    const answer = await post(pairing);
+    expect(answer.statusCode).toBe(422);
+    expect(answer.json()).toMatchObject({
+      type: 'urn:holdfast:problem:phase-table-needs-fitting',
+      detail: expect.stringMatching(/does not fit phase tables/),
+      issues: [{ path: 'lamps[0].lamp.load', message: expect.stringMatching(/iv-table/) }],
+    });
+    expect(verdicts.count()).toBe(0);
+  });
+});
+
+describe('a bad address', () => {
+  const some = 'a'.repeat(26);
+  it.each([
+    ['/v1/verdicts/nothing', 'id'],
+    [`/v1/verdicts/${'A'.repeat(26)}`, 'id'],
+    [`/v1/verdicts/${'a'.repeat(300)}`, 'id'],
+    [`/v1/verdicts/${some}/waveforms`, 'dial_pct'],
+    [`/v1/verdicts/${some}/waveforms?dial_pct=`, 'dial_pct'],
+    [`/v1/verdicts/${some}/waveforms?dial_pct=101`, 'dial_pct'],
+    [`/v1/verdicts/${some}/waveforms?dial_pct=0x10`, 'dial_pct'],
+    [`/v1/verdicts/${some}/waveforms?dial_pct=50&dial_pct=60`, 'dial_pct'],
+    [`/v1/verdicts/${some}/waveforms?dial_pct=50&sweep=sideways`, 'sweep'],
+    [`/v1/verdicts/${some}/waveforms?dial_pct=50&dial=60`, 'dial'],
+    ['/v1/verdicts?grade=fine', 'grade'],
+    ['/v1/verdicts?limit=0', 'limit'],
+    ['/v1/verdicts?limit=101', 'limit'],
+    ['/v1/verdicts?limit=2.5', 'limit'],
+    ['/v1/verdicts?limit=', 'limit'],
+    ['/v1/verdicts?mainsVoltage_V=many', 'mainsVoltage_V'],
+    ['/v1/verdicts?modelVersion=', 'modelVersion'],
+    ['/v1/verdicts?lampId=x', 'lampId'],
+    ['/v1/verdicts?cursor=', 'cursor'],
+    ['/v1/verdicts?cursor=zzz', 'cursor'],
+    [`/v1/verdicts?cursor=${Buffer.from('before--5').toString('base64url')}`, 'cursor'],
+    [`/v1/verdicts?cursor=${Buffer.from('before-5').toString('base64url')}=`, 'cursor'],
+    [`/v1/verdicts?cursor=${'x'.repeat(200)}`, 'cursor'],
+  ])('%s is refused and names %s', async (url, path) => {
+    const { get } = await testApp();
+    const answer = await get(url);
+    expect([answer.statusCode, answer.json().type]).toEqual([400, 'urn:holdfast:problem:invalid-request']);
+    expect(answer.json().issues.map((issue: Issue) => issue.path)).toEqual([path]);
+  });
+
+  it.each([
+    ['GET', '/nowhere'],
+    ['DELETE', '/v1/verdicts'],
+    ['PUT', '/v1/verdicts/x'],
+  ] as const)('%s %s is answered with a 404 problem', async (method, url) => {
+    const { app } = await testApp();
+    const answer = await app.inject({ method, url });
+    expect([answer.statusCode, answer.json().type]).toEqual([404, 'urn:holdfast:problem:no-such-call']);
+  });
+
+  it('that cannot be decoded is answered with a 400 problem', async () => {
+    const { get } = await testApp();
+    const answer = await get('/v1/verdicts/%zz');
+    expect([answer.statusCode, answer.json().type]).toEqual([400, 'urn:holdfast:problem:malformed-http']);
+  });
+});

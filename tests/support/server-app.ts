@@ -1,0 +1,43 @@
+/** Builds the application for a test on a record of its own, with the simulation the test chooses, and closes it afterwards. */
+import pino from 'pino';
+import { onTestFinished } from 'vitest';
+import { isRecordReadable } from '../../db/record.ts';
+import { type VerdictStore, verdictStore } from '../../db/verdicts.ts';
+import { type App, type AppDependencies, buildApp } from '../../server/app.ts';
+import { directSimulation } from '../../server/simulation/direct-simulation.ts';
+import { FIXED_NOW, temporaryRecord } from './server-temporary-record.ts';
+
+export interface TestApp {
+  readonly app: App;
+  readonly verdicts: VerdictStore;
+  readonly post: (body: unknown) => ReturnType<typeof postJson>;
+  readonly get: (url: string, headers?: { readonly [name: string]: string }) => ReturnType<typeof getUrl>;
+  /** what the application logged, a line an entry */
+  readonly logged: readonly string[];
+}
+
+export async function testApp(changes: Partial<AppDependencies> = {}): Promise<TestApp> {
+  const record = temporaryRecord();
+  const verdicts = verdictStore(record);
+  const logged: string[] = [];
+  const app = await buildApp({
+    logger: pino({ level: 'info' }, { write: (line: string) => void logged.push(line) }),
+    simulation: directSimulation,
+    verdicts,
+    isRecordReadable: () => isRecordReadable(record),
+    simulationLoad: () => ({ threads: 1, waiting: 0, completed: 0 }),
+    now: () => FIXED_NOW,
+    ...changes,
+  });
+  onTestFinished(() => app.close());
+  return { app, verdicts, logged, post: (body) => postJson(app, body), get: (url, headers = {}) => getUrl(app, url, headers) };
+}
+
+function postJson(app: App, body: unknown) {
+  const payload = typeof body === 'string' ? body : JSON.stringify(body);
+  return app.inject({ method: 'POST', url: '/v1/verdicts', headers: { 'content-type': 'application/json' }, payload });
+}
+
+function getUrl(app: App, url: string, headers: { readonly [name: string]: string }) {
+  return app.inject({ method: 'GET', url, headers });
+}
