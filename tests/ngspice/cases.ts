@@ -1,8 +1,10 @@
 /** The comparison circuits, each with a sentence that says what is on it. Add, never drop: a miss is to be understood. */
-import type { Dimmer } from '../../model/pairing.ts';
+import { dimmerCases } from './cases-dimmers.ts';
+import { reservoirLampCases } from './cases-reservoir-lamps.ts';
+import { staticLampCases } from './cases-static-lamps.ts';
 import {
   america,
-  americanDiac,
+  american,
   type Case,
   choke,
   converter,
@@ -16,9 +18,6 @@ import {
   reservoir,
   timed,
 } from './circuits.ts';
-
-const american = (latching: number, holding: number, change: Partial<Dimmer> = {}) =>
-  dimmer(latching, holding, { drive: americanDiac, ...change });
 
 /** Run against the program itself whenever it is installed, besides their frozen results. */
 export const firstCases: readonly Case[] = [
@@ -100,4 +99,4 @@ export const firstCases: readonly Case[] = [
   },
 ];
 
-export const cases: readonly Case[] = firstCases;
+export const cases: readonly Case[] = [...firstCases, ...staticLampCases, ...reservoirLampCases, ...dimmerCases];

@@ -34,7 +34,7 @@ export const diac: DiacDrive = {
   secondSection: null,
 };
 
-export const americanDiac: DiacDrive = { ...diac, fixedResistance: 3.3e3, potentiometer: 150e3 };
+const americanDiac: DiacDrive = { ...diac, fixedResistance: 3.3e3, potentiometer: 150e3 };
 
 export const timed: TimedDrive = {
   kind: 'timed',
@@ -64,6 +64,10 @@ export function dimmer(latching: number, holding: number, change: Partial<Dimmer
     ...change,
   };
 }
+
+/** The same with the timing network for 120 V. */
+export const american = (latching: number, holding: number, change: Partial<Dimmer> = {}): Dimmer =>
+  dimmer(latching, holding, { drive: americanDiac, ...change });
 
 export const choke = (inductance: number, lossResistance = 1000 + 2e6 * inductance): Dimmer['choke'] => ({
   inductance,
