@@ -45,9 +45,9 @@ export function startSimulationPool({ threads, queueLimit }: PoolSize): Simulati
     return (await pool.run(task)) as Simulated<T>;
   };
 
-  /** When about half of the queue will be done, going by the mean of what has run. */
+  /** When about half of the queue will be done, going by the mean of what has run; before anything has, a second each. */
   const retryAfter = (): number => {
-    const mean_s = pool.histogram.runTime.mean / 1000;
+    const mean_s = pool.completed === 0 ? 1 : pool.histogram.runTime.mean / 1000;
     const half_s = (mean_s * pool.queueSize) / (2 * threads);
     return Math.min(RETRY_AT_MOST, Math.max(RETRY_AT_LEAST, Math.ceil(half_s)));
   };

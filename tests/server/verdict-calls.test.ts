@@ -5,6 +5,9 @@ import { testApp } from '../support/server-app.ts';
 import { CANNED_JUDGEMENT, fakeSimulation, pending } from '../support/server-fake-simulation.ts';
 import { briefPairing, examplePairing, fullPairing } from '../support/server-pairings.ts';
 
+/** A busy machine may take long to do what is waited for; nothing here is measured in time. */
+const PATIENCE = { timeout: 60_000 };
+
 describe('POST /v1/verdicts', () => {
   it('judges a new pairing with the model and says where the verdict is', async () => {
     const { post, get } = await testApp();
@@ -69,7 +72,7 @@ describe('POST /v1/verdicts', () => {
     const simulation = fakeSimulation(() => promise);
     const { post, verdicts } = await testApp({ simulation });
     const asking = [post(examplePairing()), post(examplePairing()), post(examplePairing())];
-    await expect.poll(() => simulation.asked()).toBe(1);
+    await expect.poll(() => simulation.asked(), PATIENCE).toBe(1);
     await new Promise(setImmediate);
     resolve({ ok: true, value: CANNED_JUDGEMENT });
     const answers = await Promise.all(asking);

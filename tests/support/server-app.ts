@@ -33,6 +33,11 @@ export async function testApp(changes: Partial<AppDependencies> = {}): Promise<T
   return { app, verdicts, logged, post: (body) => postJson(app, body), get: (url, headers = {}) => getUrl(app, url, headers) };
 }
 
+/** Listens on the loopback address, and gives the port that was free. */
+export async function listenOnAnyPort(app: App): Promise<number> {
+  return Number(new URL(await app.listen({ port: 0, host: '127.0.0.1' })).port);
+}
+
 function postJson(app: App, body: unknown) {
   const payload = typeof body === 'string' ? body : JSON.stringify(body);
   return app.inject({ method: 'POST', url: '/v1/verdicts', headers: { 'content-type': 'application/json' }, payload });
