@@ -153,7 +153,13 @@ export function linearString(knee: number, current: number, input: Partial<LampI
   );
 }
 
-export function reservoirLamp(power: number, capacitance: number, minimumVoltage: number, input: Partial<LampInput> = {}, surge = 10): Lamp {
+export function reservoirLamp(
+  power: number,
+  capacitance: number,
+  minimumVoltage: number,
+  input: Partial<LampInput> = {},
+  surge = 10,
+): Lamp {
   const load: Load = {
     kind: 'reservoir',
     capacitance,

@@ -30,10 +30,7 @@ function fourier(segment: Segment, omega: number, of: (angle: number) => number)
 
 describe.each([stiff(230, 50), stiff(120, 60)])('a resistor on $voltage V, $frequency Hz', (mains) => {
   test.each(data.cases)('fired at $firingAngle_deg degrees takes the closed form of power, r.m.s., mean and fundamental', (c) => {
-    const [positive, negative] = settledPair(
-      pairing(mains, idealDimmer({ drive: firedAt(c.firingAngle_deg) }), resistor(RESISTANCE)),
-      2,
-    );
+    const [positive, negative] = settledPair(pairing(mains, idealDimmer({ drive: firedAt(c.firingAngle_deg) }), resistor(RESISTANCE)), 2);
     const halfPeriod = 1 / (2 * mains.frequency);
     const current = peakOf(mains) / (RESISTANCE + IN_SERIES);
     const where = `${c.firingAngle_deg} degrees at ${mains.voltage} V`;
