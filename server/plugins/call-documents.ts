@@ -5,6 +5,7 @@ import { jsonSchemaTransform, jsonSchemaTransformObject } from 'fastify-type-pro
 import { MODEL_VERSION } from '../../model/index.ts';
 import type { App } from '../app.ts';
 import { problemTable } from '../problems.ts';
+import { EXAMPLE_PAIRING } from '../schemas/pairing.ts';
 import { REFERENCE_PAGE_CSP } from './security-headers.ts';
 
 const INTRODUCTION = `
@@ -16,6 +17,10 @@ code; follow both makers' instructions. Show the \`cautions\` of a verdict where
 
 Send a pairing to \`POST /v1/verdicts\`. Only the mains, the dimmer's latching and holding current, and each lamp's load are required;
 every other field has a documented default, and the verdict lists each one that was filled in under \`assumptions\`.
+
+\`\`\`sh
+curl -s http://127.0.0.1:8080/v1/verdicts -H 'content-type: application/json' -d '${JSON.stringify(EXAMPLE_PAIRING)}'
+\`\`\`
 
 - Numbers carry their unit in the field's name: \`_V _A _mA _W _Ohm _kOhm _nF _uF _mH _us _ms _Hz _deg _pct\`.
 - Unknown fields are refused, so that a misspelt one never becomes a silent default.

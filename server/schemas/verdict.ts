@@ -9,6 +9,7 @@ const gradeField = z
   .describe(
     'suitable: every lit dial position is steady, up and down, and the currents are within the ratings. conditional: so under the stated conditions. unsuitable: no such range, or a rating is exceeded. undetermined: it hinges on a value that was assumed.',
   );
+const createdAtField = z.string().meta({ format: 'date-time', description: 'When it was computed, UTC.' });
 const summaryField = z.string().describe('The verdict in one sentence.');
 
 const dialState = z
@@ -97,7 +98,7 @@ export const verdict = z
   .object({
     id: z.string(),
     modelVersion: z.string().describe('Version of the model that computed it.'),
-    createdAt: z.iso.datetime().describe('When it was computed, UTC.'),
+    createdAt: createdAtField,
     pairing: judgedPairing,
     ...evidence.shape,
     assumptions: z
@@ -117,7 +118,7 @@ export const verdictHeading = z
   .object({
     id: z.string(),
     modelVersion: z.string(),
-    createdAt: z.iso.datetime(),
+    createdAt: createdAtField,
     grade: gradeField,
     summary: summaryField,
     mains: z.object({ voltage_V: z.number(), frequency_Hz: z.number() }),
