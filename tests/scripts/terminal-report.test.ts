@@ -1,0 +1,139 @@
+import { readdirSync } from 'node:fs';
+import { describe, expect, it } from 'vitest';
+import { dialStrip } from '../../scripts/dial-strip.ts';
+import { judgeInProcess } from '../../scripts/in-process-judging.ts';
+import { readPairing } from '../../scripts/pairing-reading.ts';
+import { terminalReport } from '../../scripts/terminal-report.ts';
+import { COLUMNS, painted, plain, wantsColour, wrap } from '../../scripts/terminal-text.ts';
+import type { AskedPairing } from '../../server/schemas/pairing.ts';
+import type { Verdict } from '../../server/schemas/verdict.ts';
+import { EXAMPLES } from './judge-run.ts';
+
+async function judged(name: string, change: (asked: AskedPairing) => AskedPairing = (asked) => asked): Promise<Verdict> {
+  const reading = readPairing(`${EXAMPLES}${name}.json`);
+  if (!reading.ok) throw new Error(reading.complaint.join('\n'));
+  const judging = await judgeInProcess(change(reading.pairing), new Date('2026-12-01T08:00:00.000Z'));
+  if (!judging.ok) throw new Error(judging.complaint.join('\n'));
+  return judging.verdict;
+}
+
+const statesOf = (verdict: Verdict): ReadonlySet<string> => new Set(verdict.dial.map((row) => row.state));
+
+describe('the example pairings of the guest house', () => {
+  it('are these five, and each does what the README says of it', async () => {
+    expect(readdirSync(EXAMPLES).sort()).toEqual([
+      'attic-stairs.json',
+      'bedroom.json',
+      'breakfast-room.json',
+      'entrance-hall.json',
+      'landing.json',
+    ]);
+
+    const breakfastRoom = await judged('breakfast-room');
+    expect(breakfastRoom.grade).toBe('suitable');
+    expect([...statesOf(breakfastRoom)]).toEqual(['steady']);
+
+    const bedroom = await judged('bedroom');
+    expect(bedroom.grade).toBe('conditional');
+    expect(bedroom.conditions).toHaveLength(1);
+
+    const landing = await judged('landing');
+    expect(landing.grade).toBe('unsuitable');
+    expect(landing.dial.filter((row) => row.state === 're-firing').length).toBeGreaterThan(10);
+    expect(Math.max(...landing.dial.map((row) => row.firings.max))).toBeGreaterThan(2);
+
+    const atticStairs = await judged('attic-stairs');
+    expect(atticStairs.grade).toBe('unsuitable');
+    expect([...statesOf(atticStairs)]).toEqual(['dark']);
+  });
+
+  it('show a mixed circuit that its filament lamp keeps steady: without it the same lamps re-fire', async () => {
+    const hall = await judged('entrance-hall');
+    expect(hall.pairing.lamps.map(({ lamp }) => lamp.load.kind)).toEqual(['iv-table', 'reservoir', 'resistive']);
+    expect(hall.grade).toBe('suitable');
+    const without = await judged('entrance-hall', (asked) => ({ ...asked, lamps: asked.lamps.slice(0, 2) }));
+    expect(without.grade).toBe('unsuitable');
+    expect(statesOf(without)).toContain('re-firing');
+  });
+});
+
+describe('the report for a terminal', () => {
+  it('keeps every line within 80 columns, also for 101 dial positions', async () => {
+    const fine = { options: { dialPositions_pct: Array.from({ length: 101 }, (_, position) => position) } };
+    const verdicts = [
+      await judged('landing'),
+      await judged('entrance-hall'),
+      await judged('breakfast-room', (asked) => ({ ...asked, ...fine })),
+    ];
+    for (const verdict of verdicts) {
+      for (const line of terminalReport(verdict, plain).split('\n')) expect(line.length, line).toBeLessThanOrEqual(COLUMNS);
+    }
+  });
+
+  it('says the same with colour and without: the colour only repeats it', async () => {
+    const verdict = await judged('bedroom');
+    const coloured = terminalReport(verdict, painted);
+    // biome-ignore lint/suspicious/noControlCharactersInRegex: the escape that starts a colour
+    const bare = coloured.replaceAll(/\u001b\[\d+m/g, '');
+    expect(coloured).not.toBe(bare);
+    expect(bare).toBe(terminalReport(verdict, plain));
+  });
+
+  it('holds every reason, condition, assumption and caution of the verdict', async () => {
+    const verdict = await judged('bedroom');
+    const words = terminalReport(verdict, plain).replace(/\s+/g, ' ');
+    for (const { detail } of [...verdict.reasons, ...verdict.conditions]) expect(words).toContain(detail);
+    for (const caution of verdict.cautions) expect(words).toContain(caution);
+    for (const { path } of verdict.assumptions) expect(words).toContain(path.slice(path.lastIndexOf('.') + 1));
+  });
+
+  it('is in colour only in a terminal that is not dumb, and never where NO_COLOR is set', () => {
+    expect(wantsColour(true, {})).toBe(true);
+    expect(wantsColour(true, { NO_COLOR: '' })).toBe(true);
+    expect(wantsColour(true, { NO_COLOR: '1' })).toBe(false);
+    expect(wantsColour(true, { TERM: 'dumb' })).toBe(false);
+    expect(wantsColour(false, {})).toBe(false);
+  });
+
+  it('wraps under its first word and keeps a number with its percent sign', () => {
+    const lines = wrap(`${'ab '.repeat(23)}up to 72 % of it`, '  - ');
+    expect(lines.every((line) => line.length <= COLUMNS)).toBe(true);
+    expect(lines.slice(1).every((line) => line.startsWith('    '))).toBe(true);
+    expect(lines.join('\n')).toContain('72 %');
+  });
+});
+
+describe('the dial as a strip', () => {
+  const row = (sweep: 'up' | 'down', position_pct: number, state: Verdict['dial'][number]['state']) =>
+    ({ sweep, position_pct, state }) as Verdict['dial'][number];
+
+  it('puts one character a state under its dial position, the way up over the way down, and explains those it used', () => {
+    const dial = [
+      row('up', 0, 'dark'),
+      row('up', 50, 're-firing'),
+      row('up', 100, 'steady'),
+      row('down', 50, 'steady'),
+      row('down', 0, 'dark'),
+      row('down', 100, 'steady'),
+    ];
+    expect(dialStrip(dial, plain)).toEqual([
+      '  Dial %  0  50 100',
+      '  up      ...RRR===',
+      '  down    ...======',
+      '          = steady   . dark   R re-fires: hum, heat',
+    ]);
+  });
+
+  it('gives every state a character of its own, so that it reads without colour', () => {
+    const states = ['steady', 'dark', 'skipping', 're-firing', 'dropping-out', 'lopsided', 'wandering', 'undecided'] as const;
+    const [, up] = dialStrip(
+      states.map((state, index) => row('up', index, state)),
+      plain,
+    );
+    expect(new Set(up?.slice('  up      '.length)).size).toBe(states.length);
+  });
+
+  it('has no strip for the way down where one position alone was judged', () => {
+    expect(dialStrip([row('up', 30, 'steady')], plain)).toEqual(['  Dial %  30', '  up      ===', '          = steady']);
+  });
+});
