@@ -1,17 +1,23 @@
 /** A simulation whose answers and timing a test decides, where the test is about the service around it and not about the circuit. */
-import type { Judgement, Waveforms } from '../../model/index.ts';
+import { type Judgement, judgePairing, type Waveforms } from '../../model/index.ts';
+import { askedPairing } from '../../server/schemas/pairing.ts';
 import type { Simulated, Simulation } from '../../server/simulation/simulation.ts';
+import { completePairing } from '../../server/verdicts/pairing-completion.ts';
+import { toModel } from '../../server/verdicts/pairing-to-model.ts';
+import { briefPairing } from './server-pairings.ts';
 
-export const CANNED_JUDGEMENT: Judgement = {
-  grade: 'suitable',
-  summary: 'Canned for a test.',
-  conditions: [],
-  reasons: [],
-  dial: [],
-  popOn: { litFrom: 10, outBelow: 5 },
-  corners: [{ name: 'nominal', grade: 'suitable' }],
-  counters: { halfCycles: 7, steps: 6, events: 5, modesBuilt: 4 },
-};
+/** Of the form of a real one, whatever the model adds to it; what tests look at is set. */
+export const CANNED_JUDGEMENT: Judgement = cannedJudgement();
+
+function cannedJudgement(): Judgement {
+  const completion = completePairing(askedPairing.parse(briefPairing()));
+  if (!completion.ok) throw new Error('It was to be completed.');
+  const { pairing, options } = toModel(completion.pairing);
+  const outcome = judgePairing(pairing, options);
+  if (!outcome.ok) throw new Error('It was to be judged.');
+  const { counters } = outcome.value;
+  return { ...outcome.value, grade: 'suitable', summary: 'Canned for a test.', dial: [], counters: { ...counters, halfCycles: 7 } };
+}
 
 export interface FakeSimulation extends Simulation {
   /** how often a judgement was asked for */
