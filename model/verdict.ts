@@ -3,6 +3,8 @@
  * differences in the unit their comment names. The wire form with units in field names is the server's.
  */
 
+import type { PerPolarity } from './pairing.ts';
+
 export type DialState = 'dark' | 'skipping' | 're-firing' | 'dropping-out' | 'lopsided' | 'wandering' | 'undecided' | 'steady';
 export type Grade = 'suitable' | 'conditional' | 'unsuitable' | 'undetermined';
 export type Sweep = 'up' | 'down';
@@ -67,6 +69,8 @@ export interface Reason {
   /** dial range from..to in %, both included; null where it concerns no dial position */
   readonly dial: readonly [number, number] | null;
   readonly detail: string;
+  /** name of the corner at which it holds; absent for the nominal corner */
+  readonly corner?: CornerName;
 }
 
 export type Condition = { readonly kind: 'lowest-dial' /** dial %, */; readonly position: number; readonly detail: string };
@@ -78,9 +82,54 @@ export interface PopOn {
   readonly outBelow: number | null;
 }
 
-export interface CornerResult {
-  readonly name: string;
+export type CornerName = 'nominal' | 'low-mains-cold' | 'high-mains-cold' | 'typical-currents';
+
+/** What a corner simulates in place of the pairing's own mains voltage and triac currents. */
+export interface CornerInputs {
+  readonly name: CornerName;
+  /** r.m.s. */
+  readonly mainsVoltage: number;
+  readonly latchingCurrent: PerPolarity;
+  readonly holdingCurrent: PerPolarity;
+}
+
+export interface CornerResult extends CornerInputs {
   readonly grade: Grade;
+  /** lowest dial position of the steady range where the grade is conditional, % */
+  readonly lowestDial: number | null;
+}
+
+/** The mains may lie anywhere from low to high, as multiples of its nominal voltage. */
+export interface SupplyBand {
+  readonly low: number;
+  readonly high: number;
+  readonly source: string;
+}
+
+/** A value that was filled in rather than given. `path` is its place in the Pairing (`dimmer.drive.breakover`, `lamps[0].lamp.input.capacitance`). */
+export interface AssumedValue {
+  readonly path: string;
+  /** the values it may really have, SI; null: the usual range of such a part */
+  readonly range: { readonly low: number; readonly high: number } | null;
+}
+
+/** The one assumed value whose measurement would turn an undetermined grade into a sure one. SI. */
+export interface WouldSettle {
+  readonly path: string;
+  /** what it is, in words: "the diac's breakover voltage" */
+  readonly what: string;
+  readonly assumed: number;
+  /** between these two the grade flips; found by bracketing */
+  readonly threshold: { readonly low: number; readonly high: number };
+  readonly gradeBelow: Grade;
+  readonly gradeAbove: Grade;
+  /** at which the flip was found */
+  readonly corner: CornerName;
+  readonly measure: string;
+  /** one plain sentence */
+  readonly detail: string;
+  /** other assumed values that, changed alone within their range, would flip the grade too */
+  readonly alsoOpen: readonly string[];
 }
 
 /** Work done, part of every result. */
@@ -91,6 +140,12 @@ export interface Counters {
   readonly modesBuilt: number;
 }
 
+/** Work done, and work that early endings made needless: a stop is one dial position of one sweep. */
+export interface Effort extends Counters {
+  readonly stops: number;
+  readonly sparedStops: number;
+}
+
 export interface Judgement {
   readonly grade: Grade;
   /** one plain sentence */
@@ -99,8 +154,15 @@ export interface Judgement {
   readonly reasons: readonly Reason[];
   readonly dial: readonly DialRow[];
   readonly popOn: PopOn;
+  /** the corners that were judged, nominal first */
   readonly corners: readonly CornerResult[];
-  readonly counters: Counters;
+  /** corners that could not have changed the grade any more */
+  readonly sparedCorners: readonly CornerName[];
+  /** the corner with the worst grade; nominal where none does worse than it */
+  readonly decidedBy: CornerName;
+  /** null unless an assumed value leaves the grade undetermined */
+  readonly wouldSettle: WouldSettle | null;
+  readonly counters: Effort;
 }
 
 export interface JudgeOptions {
@@ -109,6 +171,12 @@ export interface JudgeOptions {
   readonly corners: 'all' | 'nominal';
   /** degrees by which conduction must end before the lamps' own current would have ended it to count as a drop-out */
   readonly dropOutAngle: number;
+  /** absent: the band of the supply's standard */
+  readonly supplyBand?: SupplyBand;
+  /** absent: every value was given */
+  readonly assumed?: readonly AssumedValue[];
+  /** true: without early endings, to measure what they spare; the grade is the same */
+  readonly thorough?: boolean;
 }
 
 /** Instantaneous quantities over the last observed half-cycles of one dial position; columns of equal length. */

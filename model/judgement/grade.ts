@@ -13,6 +13,28 @@ export interface CornerGrade {
   readonly popOn: PopOn;
 }
 
+/** lowest position of a steady range that reaches the top of the dial and is wide enough to be of use; null where there is none */
+function usefullySteadyFrom(dial: readonly DialRow[]): number | null {
+  const positions = byPosition(dial);
+  const top = positions[positions.length - 1];
+  const from = steadyFrom(positions);
+  return top !== undefined && from !== null && top.position - from >= LEAST_STEADY_RANGE ? from : null;
+}
+
+/** whether the rows could still be good enough if every undecided one were steady */
+function mayRun(dial: readonly DialRow[]): boolean {
+  const hoped = dial.map((r): DialRow => (r.state === 'undecided' ? { ...r, state: 'steady' } : r));
+  return steadyWhereLit(hoped) || usefullySteadyFrom(hoped) !== null;
+}
+
+export function lowestDialCondition(position: number): Condition {
+  return {
+    kind: 'lowest-dial',
+    position,
+    detail: `Steady from ${position} % of the dial up, provided that its low-end trim is set so that it cannot go lower.`,
+  };
+}
+
 export function gradeDial(pairing: Pairing, dial: readonly DialRow[]): CornerGrade {
   const pop = popOn(dial);
   const ratings = ratingReasons(pairing, dial);
@@ -20,17 +42,7 @@ export function gradeDial(pairing: Pairing, dial: readonly DialRow[]): CornerGra
   const graded = (grade: Grade, conditions: readonly Condition[] = []): CornerGrade => ({ grade, conditions, reasons, popOn: pop });
   if (ratings.length > 0) return graded('unsuitable');
   if (steadyWhereLit(dial)) return graded('suitable');
-  const positions = byPosition(dial);
-  const top = positions[positions.length - 1];
-  const from = steadyFrom(positions);
-  if (top !== undefined && from !== null && top.position - from >= LEAST_STEADY_RANGE) {
-    return graded('conditional', [
-      {
-        kind: 'lowest-dial',
-        position: from,
-        detail: `Steady from ${from} % of the dial up, provided that its low-end trim is set so that it cannot go lower.`,
-      },
-    ]);
-  }
-  return graded(dial.some((r) => r.state === 'undecided') ? 'undetermined' : 'unsuitable');
+  const from = usefullySteadyFrom(dial);
+  if (from !== null) return graded('conditional', [lowestDialCondition(from)]);
+  return graded(dial.some((r) => r.state === 'undecided') && mayRun(dial) ? 'undetermined' : 'unsuitable');
 }

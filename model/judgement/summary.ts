@@ -1,7 +1,8 @@
 /** The one plain sentence of a verdict. */
-import type { Pairing } from '../pairing.ts';
-import type { DialRow } from '../verdict.ts';
+import type { Pairing, PerPolarity } from '../pairing.ts';
+import type { CornerInputs, CornerName, DialRow } from '../verdict.ts';
 import type { CornerGrade } from './grade.ts';
+import type { JudgedCorner } from './over-corners.ts';
 import { times } from './reasons.ts';
 
 function lampWords(pairing: Pairing): { readonly who: string; readonly many: boolean } {
@@ -35,4 +36,38 @@ export function summarize(pairing: Pairing, dial: readonly DialRow[], judged: Co
   }
   const worst = judged.reasons.find((r) => r.code !== 'pop-on' && r.code !== 'dark-low-on-dial');
   return `${who} ${many ? 'do' : 'does'} not run steadily on this dimmer.${worst === undefined ? '' : ` ${worst.detail}`}`;
+}
+
+const CORNER_WORDS: Record<CornerName, string> = {
+  nominal: 'nominal mains',
+  'low-mains-cold': 'low mains, switched on cold',
+  'high-mains-cold': 'high mains, switched on cold',
+  'typical-currents': 'typical latching and holding currents',
+};
+
+const inRange = (p: PerPolarity): string => {
+  const [low, high] = [p.positive, p.negative].sort((a, b) => a - b).map((a) => Number((1e3 * a).toPrecision(3)));
+  return low === high ? `${low} mA` : `${low} and ${high} mA`;
+};
+
+/** "low mains, switched on cold (207 V, latching 60 mA, holding 36 mA)" */
+export function cornerInWords({ name, mainsVoltage, latchingCurrent, holdingCurrent }: CornerInputs): string {
+  const volts = Number(mainsVoltage.toPrecision(3));
+  return `${CORNER_WORDS[name]} (${volts} V, latching ${inRange(latchingCurrent)}, holding ${inRange(holdingCurrent)})`;
+}
+
+/** the sentence where another corner than the nominal one decides */
+export function summarizeCorner(
+  pairing: Pairing,
+  dial: readonly DialRow[],
+  nominal: CornerGrade,
+  { corner, rows, graded }: JudgedCorner,
+): string {
+  const { who, many } = lampWords(pairing);
+  const where = cornerInWords(corner);
+  const lowest = graded.conditions[0];
+  if (lowest !== undefined) {
+    return `${who} ${many ? 'run' : 'runs'} steadily on this dimmer from ${lowest.position} % of the dial up; below, ${many ? 'they do' : 'it does'} not at ${where}.`;
+  }
+  return `${summarize(pairing, dial, nominal)} Not so at ${where}: ${summarize(pairing, rows, graded)}`;
 }
