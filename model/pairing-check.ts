@@ -33,14 +33,14 @@ class Checks {
 
   series(path: string, branch: SeriesRC | null): void {
     if (branch === null) return;
-    this.positive(`${path}.resistance`, branch.resistance);
+    this.notNegative(`${path}.resistance`, branch.resistance);
     this.notNegative(`${path}.capacitance`, branch.capacitance);
   }
 }
 
 function checkLamp(c: Checks, path: string, lamp: Lamp): void {
   const { input, load } = lamp;
-  c.positive(`${path}.input.seriesResistance`, input.seriesResistance);
+  c.notNegative(`${path}.input.seriesResistance`, input.seriesResistance);
   c.notNegative(`${path}.input.inductance`, input.inductance);
   if (input.inductorLoss !== null) c.positive(`${path}.input.inductorLoss`, input.inductorLoss);
   c.notNegative(`${path}.input.capacitance`, input.capacitance);
@@ -55,7 +55,7 @@ function checkLamp(c: Checks, path: string, lamp: Lamp): void {
   if (load.kind === 'resistive') c.positive(`${path}.load.resistance`, load.resistance);
   if (load.kind === 'reservoir') {
     c.positive(`${path}.load.capacitance`, load.capacitance);
-    c.positive(`${path}.load.surgeResistance`, load.surgeResistance);
+    c.notNegative(`${path}.load.surgeResistance`, load.surgeResistance);
     c.positive(`${path}.load.minimumVoltage`, load.minimumVoltage);
     const drain = load.drain.kind === 'power' ? load.drain.power : load.drain.current;
     c.positive(`${path}.load.drain.${load.drain.kind}`, drain);
@@ -78,7 +78,7 @@ export function checkPairing(pairing: Pairing): Issue[] {
   const { mains, dimmer, lamps, addedLoad } = pairing;
   c.positive('mains.voltage', mains.voltage);
   c.positive('mains.frequency', mains.frequency);
-  c.positive('mains.sourceResistance', mains.sourceResistance);
+  c.notNegative('mains.sourceResistance', mains.sourceResistance);
   c.both('dimmer.latchingCurrent', dimmer.latchingCurrent);
   c.both('dimmer.holdingCurrent', dimmer.holdingCurrent);
   for (const sign of ['positive', 'negative'] as const) {
@@ -88,9 +88,9 @@ export function checkPairing(pairing: Pairing): Issue[] {
   }
   c.notNegative('dimmer.turnOffTime', dimmer.turnOffTime);
   c.notNegative('dimmer.onVoltage', dimmer.onVoltage);
-  c.positive('dimmer.onResistance', dimmer.onResistance);
+  c.notNegative('dimmer.onResistance', dimmer.onResistance);
   c.notNegative('dimmer.choke.inductance', dimmer.choke.inductance);
-  c.positive('dimmer.choke.resistance', dimmer.choke.resistance);
+  c.notNegative('dimmer.choke.resistance', dimmer.choke.resistance);
   if (dimmer.choke.lossResistance !== null) c.positive('dimmer.choke.lossResistance', dimmer.choke.lossResistance);
   c.series('dimmer.snubber', dimmer.snubber);
   c.notNegative('dimmer.interferenceCapacitance', dimmer.interferenceCapacitance);

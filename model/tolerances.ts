@@ -9,6 +9,8 @@
 export const LINE_LEAKAGE = 1e9;
 /** Ohm, across a reservoir capacitor: keeps a constant-current drain from being a pure integrator. Discharges 10 uF in three hours. */
 export const RESERVOIR_LEAKAGE = 1e9;
+/** Ohm, the least that a resistance counts as: with none at all two capacitors could be tied together. A contact has more. */
+export const LEAST_RESISTANCE = 1e-3;
 /** Ohm, stands for an absent ("null") inductor loss where two inductors would meet with nothing else at the node. Larger only stiffens. */
 export const ABSENT_LOSS = 1e6;
 /** V, both diodes of a bridge together (common practice, 0.7 V each) */
@@ -40,12 +42,14 @@ export const EVENT_BUDGET = 4_000;
 export const STEP_BUDGET = 200_000;
 /** switchings at one instant before the circuit is given up as inconsistent (a 64-point curve can be walked end to end) */
 export const INSTANT_BUDGET = 400;
-/** s, bracket at which an event counts as located; 0.1 us is required, rounding of a 10 ms time is 1e-18 s */
+/** s, bracket at which an event counts as located all the same; 0.1 us is required, rounding of a 10 ms time is 1e-18 s */
 export const EVENT_TIME = 1e-12;
 /** events in a row without time passing before one shortest step is taken whatever the guards say (a graze at rounding level) */
 export const STANDSTILL = 20;
 /** share of the half-cycle after which a conducting diac counts as stuck; a dump takes some tens of microseconds */
 export const DIAC_STUCK_SHARE = 0.25;
+/** an event is located once its guard is within this share of its slack of its bound: 3e-10 V or A at 230 V */
+export const ROOT_SHARE = 1e-3;
 /** relative: a guard nearer its bound than this times the quantity's scale counts as on the bound, and its slope decides */
 export const GUARD_SLACK = 1e-9;
 

@@ -35,8 +35,16 @@ export interface Configuration {
 }
 
 /** outputs of a mode; each group adds GROUP_OUTPUTS rows from GROUPS_FROM on */
-export const OUTPUT = { lineCurrent: 0, triacCurrent: 1, lampVoltage: 2, lampCurrent: 3, timingVoltage: 4, diacCurrent: 5 } as const;
-export const GROUPS_FROM = 6;
+export const OUTPUT = {
+  lineCurrent: 0,
+  triacCurrent: 1,
+  lampVoltage: 2,
+  lampCurrent: 3,
+  timingVoltage: 4,
+  diacCurrent: 5,
+  triacVoltage: 6,
+} as const;
+export const GROUPS_FROM = 7;
 export const GROUP_OUTPUT = { voltage: 0, bridge: 1, bridgeReversed: 2, reservoir: 3, excess: 4 } as const;
 export const GROUP_OUTPUTS = 5;
 

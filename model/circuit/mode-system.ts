@@ -5,7 +5,7 @@
  * and folded in afterwards (a rank-one change), so that a dial change does not repeat the nodal analysis.
  */
 import type { Dimmer } from '../pairing.ts';
-import { BRIDGE_DROP, RESERVOIR_LEAKAGE } from '../tolerances.ts';
+import { BRIDGE_DROP, LEAST_RESISTANCE, RESERVOIR_LEAKAGE } from '../tolerances.ts';
 import type { Configuration, GroupConfiguration } from './configuration.ts';
 import { GROUP_OUTPUT, GROUP_OUTPUTS, GROUPS_FROM, OUTPUT } from './configuration.ts';
 import type { Curve, CurveSegment } from './lamp-curve.ts';
@@ -114,7 +114,7 @@ export function openModeSystem(network: Network, dimmer: Dimmer, configuration: 
   const triacConductance =
     configuration.triac === 'open'
       ? 0
-      : 1 / (dimmer.onResistance + (configuration.triac === 'low' ? dimmer.onVoltage / triacKnee(dimmer) : 0));
+      : 1 / (Math.max(dimmer.onResistance, LEAST_RESISTANCE) + (configuration.triac === 'low' ? dimmer.onVoltage / triacKnee(dimmer) : 0));
   const triacOffset = configuration.triac === 'on' ? -dimmer.onVoltage * triacConductance : 0;
   conduct(d, a, triacConductance);
   inject(d, a, firstConstant + TRIAC_CONSTANT, triacOffset);
@@ -183,6 +183,7 @@ export function openModeSystem(network: Network, dimmer: Dimmer, configuration: 
   put(output(OUTPUT.lineCurrent), drive, network.sourceConductance * network.peak);
   difference(output(OUTPUT.triacCurrent), d, a, triacConductance);
   put(output(OUTPUT.triacCurrent), firstConstant + TRIAC_CONSTANT, triacOffset);
+  difference(output(OUTPUT.triacVoltage), d, a, 1);
   accumulate(output(OUTPUT.lampVoltage), a, 1);
   for (const input of network.inputs) difference(output(OUTPUT.lampCurrent), a, input.to, input.conductance);
   if (timing !== null) {

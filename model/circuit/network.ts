@@ -8,7 +8,7 @@
  * Each state is scaled to the square root of its energy (x = v sqrt(C), x = i sqrt(L)), so that one norm serves all of them.
  */
 import type { DiacDrive, LampGroup, Pairing } from '../pairing.ts';
-import { ABSENT_LOSS, LINE_LEAKAGE, STRAY_CAPACITANCE } from '../tolerances.ts';
+import { ABSENT_LOSS, LEAST_RESISTANCE, LINE_LEAKAGE, STRAY_CAPACITANCE } from '../tolerances.ts';
 import { bleederCurve, type Curve, curveFalls, drainCurve, largerCurve, resistorCurve, tableCurve } from './lamp-curve.ts';
 
 /** node numbers; NEUTRAL is the reference and is not solved for */
@@ -20,7 +20,7 @@ export interface Conductor {
   readonly conductance: number;
 }
 
-/** capacitor between two nodes; with a series resistance it is a branch of its own, without one it fixes the voltage between them */
+/** capacitor between two nodes; with a series resistance it is a branch of its own, without one (0) it fixes the voltage between them */
 export interface CapacitorBranch {
   readonly a: number;
   readonly b: number;
@@ -110,6 +110,9 @@ function timesCount(curve: Curve, count: number): Curve {
   return curve.map((s) => ({ from: s.from, slope: s.slope * count, offset: s.offset * count }));
 }
 
+/** no resistance at all would tie two nodes, or two capacitors, together */
+const atLeast = (resistance: number): number => Math.max(resistance, LEAST_RESISTANCE);
+
 class Layout {
   nodes = 0;
   readonly scales: number[] = [];
@@ -127,13 +130,17 @@ class Layout {
   }
 
   conductor(a: number, b: number, resistance: number): void {
-    this.conductors.push({ a, b, conductance: 1 / resistance });
+    this.conductors.push({ a, b, conductance: 1 / atLeast(resistance) });
   }
 
-  /** no capacitance: nothing */
-  capacitor(a: number, b: number, capacitance: number, resistance = 0): void {
-    if (capacitance === 0) return;
-    this.capacitors.push({ a, b, capacitance, resistance, state: this.state(capacitance) });
+  /** straight between two nodes; no capacitance: nothing */
+  capacitor(a: number, b: number, capacitance: number): void {
+    if (capacitance > 0) this.capacitors.push({ a, b, capacitance, resistance: 0, state: this.state(capacitance) });
+  }
+
+  /** through a resistor of its own; no capacitance: nothing */
+  seriesCapacitor(a: number, b: number, capacitance: number, resistance: number): void {
+    if (capacitance > 0) this.capacitors.push({ a, b, capacitance, resistance: atLeast(resistance), state: this.state(capacitance) });
   }
 
   /** inductor with parallel loss from a to a new node, which is returned; no inductance: a itself */
@@ -174,10 +181,10 @@ function layGroup(
   const curve = staticCurve(group);
   const stray = load.kind !== 'reservoir' && curve !== null && curveFalls(curve) ? STRAY_CAPACITANCE : 0;
   layout.capacitor(node, NEUTRAL, Math.max(input.capacitance, stray) * n);
-  if (input.damper !== null) layout.capacitor(node, NEUTRAL, input.damper.capacitance * n, input.damper.resistance / n);
+  if (input.damper !== null) layout.seriesCapacitor(node, NEUTRAL, input.damper.capacitance * n, input.damper.resistance / n);
   if (input.bleeder?.kind === 'resistor') layout.conductor(node, NEUTRAL, input.bleeder.resistance / n);
   if (input.bleeder?.kind === 'resistor-capacitor') {
-    layout.capacitor(node, NEUTRAL, input.bleeder.capacitance * n, input.bleeder.resistance / n);
+    layout.seriesCapacitor(node, NEUTRAL, input.bleeder.capacitance * n, input.bleeder.resistance / n);
   }
   if (load.kind === 'resistive' && curve === null) layout.conductor(node, NEUTRAL, load.resistance / n);
   const reservoir: ReservoirPart | null =
@@ -185,13 +192,13 @@ function layGroup(
       ? {
           state: layout.state(load.capacitance * n),
           capacitance: load.capacitance * n,
-          surgeResistance: load.surgeResistance / n,
+          surgeResistance: atLeast(load.surgeResistance / n),
           drain: timesCount(drainCurve(load.drain, load.minimumVoltage, mainsPeak), n),
         }
       : null;
   return {
     part: { node, curve: curve === null ? null : timesCount(curve, n), reservoir },
-    input: { to, conductance: n / input.seriesResistance },
+    input: { to, conductance: 1 / atLeast(input.seriesResistance / n) },
   };
 }
 
@@ -205,12 +212,12 @@ export function layNetwork(pairing: Pairing): Network {
   layout.conductor(c, d, dimmer.choke.resistance);
   const a = layout.node();
   layout.conductor(a, NEUTRAL, LINE_LEAKAGE);
-  if (dimmer.snubber !== null) layout.capacitor(d, a, dimmer.snubber.capacitance, dimmer.snubber.resistance);
+  if (dimmer.snubber !== null) layout.seriesCapacitor(d, a, dimmer.snubber.capacitance, dimmer.snubber.resistance);
   layout.capacitor(s, a, dimmer.interferenceCapacitance);
   const timing = dimmer.drive.kind === 'diac' ? layTiming(layout, dimmer.drive, dimmer.wiring, d, a) : null;
   const added = pairing.addedLoad;
   if (added?.kind === 'resistor') layout.conductor(a, NEUTRAL, added.resistance);
-  if (added?.kind === 'resistor-capacitor') layout.capacitor(a, NEUTRAL, added.capacitance, added.resistance);
+  if (added?.kind === 'resistor-capacitor') layout.seriesCapacitor(a, NEUTRAL, added.capacitance, added.resistance);
   const groups = mergeGroups(pairing.lamps).map((g) => layGroup(layout, g, a, peak));
   return {
     nodes: layout.nodes,
@@ -220,7 +227,7 @@ export function layNetwork(pairing: Pairing): Network {
     capacitors: layout.capacitors,
     inductors: layout.inductors,
     sourceNode: s,
-    sourceConductance: 1 / mains.sourceResistance,
+    sourceConductance: 1 / atLeast(mains.sourceResistance),
     dimmerNode: d,
     lampNode: a,
     timing,

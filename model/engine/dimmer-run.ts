@@ -4,7 +4,7 @@
  * The triac, besides its electrical region (open, low, on):
  *   gated    gate current above its threshold (diac drive), or inside a gate pulse (timed drive)
  *   latched  set when |i| passes the latching current; cleared when |i| has been below the holding current for the turn-off time
- *   open -> low          gate comes while open: a firing
+ *   open -> on           gate comes while open: a firing
  *   low <-> on           |i| passes the knee
  *   low, on -> open      neither gated nor latched
  * The diac: off until the timing voltage reaches its breakover, on until its current falls below its own holding current. While on it
@@ -12,7 +12,7 @@
  *
  * Time inside a half-cycle runs from its zero crossing, so it never loses digits however long the run.
  */
-import { type Configuration, type Guard, OUTPUT, restingConfiguration, type Sign } from '../circuit/configuration.ts';
+import { type Configuration, OUTPUT, restingConfiguration, type Sign } from '../circuit/configuration.ts';
 import { type OpenModeSystem, triacKnee } from '../circuit/mode-system.ts';
 import type { Network } from '../circuit/network.ts';
 import type { Dimmer, PerPolarity } from '../pairing.ts';
@@ -21,14 +21,13 @@ import {
   DIAC_STUCK_SHARE,
   EVENT_BUDGET,
   EVENT_TIME,
-  GUARD_SLACK,
   INSTANT_BUDGET,
   LADDER_LEVELS,
   STANDSTILL,
   STEP_BUDGET,
 } from '../tolerances.ts';
 import { emptyHalfCycle, type HalfCycle } from './half-cycle.ts';
-import { type Mode, ModeShelf } from './mode.ts';
+import { type Mode, ModeShelf, SWITCH, type Switching } from './mode.ts';
 import { ModeWalk } from './mode-walk.ts';
 
 /** hears of every visit to a mode: from `start` (s into the half-cycle) for `duration`, coordinates at its start */
@@ -61,8 +60,6 @@ export class DimmerRun {
   private readonly shelves: Map<number, ModeShelf>;
   private readonly walk: ModeWalk;
   private readonly knee: number;
-  private readonly voltageSlack: number;
-  private readonly currentSlack: number;
   private readonly coordinates: Float64Array;
   private shelf!: ModeShelf;
   private mode!: Mode;
@@ -91,8 +88,6 @@ export class DimmerRun {
     this.shelves = parent?.shelves ?? new Map();
     this.walk = new ModeWalk(this.shortestStep());
     this.knee = triacKnee(dimmer);
-    this.voltageSlack = GUARD_SLACK * network.peak;
-    this.currentSlack = (GUARD_SLACK * network.peak) / 1;
     this.x = new Float64Array(network.states);
     this.coordinates = new Float64Array(network.states + 2);
   }
@@ -154,12 +149,17 @@ export class DimmerRun {
     this.conductionRecord = null;
   }
 
-  private enter(mode: Mode): void {
+  private enter(mode: Mode, cos: number, sin: number): void {
     this.mode = mode;
     this.entered = this.time;
+    this.walk.enter(mode, this.x, cos, sin);
+  }
+
+  /** enters the present mode at the present time, the mains' phase computed afresh */
+  private enterAfresh(): void {
     const angle = this.network.omega * this.time;
     const sign = this.index % 2 === 0 ? 1 : -1;
-    this.walk.enter(mode, this.x, sign * Math.cos(angle), sign * Math.sin(angle));
+    this.enter(this.mode, sign * Math.cos(angle), sign * Math.sin(angle));
   }
 
   private leaveMode(): void {
@@ -173,12 +173,13 @@ export class DimmerRun {
   private change(to: Mode): void {
     if (to === this.mode) return;
     this.leaveMode();
-    for (let k = 0; k < this.x.length; k++) this.x[k] = (this.x[k] as number) * (this.mode.flips[k] as number) * (to.flips[k] as number);
-    this.enter(to);
+    const { x, mode, walk } = this;
+    for (let k = 0; k < x.length; k++) x[k] = (x[k] as number) * (mode.flips[k] as number) * (to.flips[k] as number);
+    this.enter(to, walk.cos, walk.sin);
   }
 
-  private reconfigure(part: Partial<Configuration>): void {
-    this.change(this.shelf.mode({ ...this.mode.configuration, ...part }));
+  private switchTo(switching: Switching): void {
+    this.change(this.shelf.after(this.mode, switching));
   }
 
   private angle(): number {
@@ -194,7 +195,7 @@ export class DimmerRun {
     this.latched = false;
     this.below = false;
     this.belowDeadline = Number.POSITIVE_INFINITY;
-    this.reconfigure({ triac: 'low', triacSign: 1 });
+    this.switchTo(this.walk.value(OUTPUT.triacVoltage) >= 0 ? SWITCH.triacOnPositive : SWITCH.triacOnNegative);
   }
 
   private open(): void {
@@ -210,7 +211,7 @@ export class DimmerRun {
     this.latched = false;
     this.below = false;
     this.belowDeadline = Number.POSITIVE_INFINITY;
-    this.reconfigure({ triac: 'open', triacSign: 1 });
+    this.switchTo(SWITCH.triacOpen);
   }
 
   private setGate(on: boolean): void {
@@ -252,7 +253,7 @@ export class DimmerRun {
     const { triac, triacSign } = this.mode.configuration;
     if (triac === 'low') {
       const sign: Sign = side === 1 ? 1 : -1;
-      this.reconfigure({ triac: 'on', triacSign: sign });
+      this.switchTo(sign === 1 ? SWITCH.triacOnPositive : SWITCH.triacOnNegative);
       if (this.latched && of(this.dimmer.holdingCurrent, sign) <= this.knee) {
         this.below = false;
         this.belowDeadline = Number.POSITIVE_INFINITY;
@@ -269,7 +270,7 @@ export class DimmerRun {
       return;
     }
     const atKnee = !this.latched || this.below || of(this.dimmer.holdingCurrent, triacSign) <= this.knee;
-    if (atKnee) this.reconfigure({ triac: 'low', triacSign: 1 });
+    if (atKnee) this.switchTo(SWITCH.triacLow);
     if (this.latched && !this.below) this.fallBelowHolding();
   }
 
@@ -289,7 +290,7 @@ export class DimmerRun {
       else if (this.below) to = holding;
       if (triacSign === -1) [from, to] = [-to, -from];
     }
-    return this.watchOutput(g, OUTPUT.triacCurrent, from, to, this.currentSlack);
+    return this.watchOutput(g, OUTPUT.triacCurrent, from, to);
   }
 
   // --- diac ------------------------------------------------------------------------------------------------------------------
@@ -306,7 +307,7 @@ export class DimmerRun {
     if (!diac) {
       this.diacSince = this.time;
       this.pulseGated = false;
-      this.reconfigure({ diac: true, diacSign: side === 1 ? 1 : -1 });
+      this.switchTo(side === 1 ? SWITCH.diacOnPositive : SWITCH.diacOnNegative);
       if (this.gateReached()) this.setGate(true);
       return;
     }
@@ -323,7 +324,7 @@ export class DimmerRun {
   private endDump(): void {
     if (!this.pulseGated) this.record.failedLatches++;
     if (this.time - this.diacSince > DIAC_STUCK_SHARE * this.halfPeriod) this.record.diacStuck = true;
-    this.reconfigure({ diac: false, diacSign: 1 });
+    this.switchTo(SWITCH.diacOff);
   }
 
   private watchDiac(g: number): number {
@@ -334,37 +335,32 @@ export class DimmerRun {
     if (!diac) {
       const upward = timing.orientation === 1 ? drive.breakover.positive : drive.breakover.negative;
       const downward = timing.orientation === 1 ? drive.breakover.negative : drive.breakover.positive;
-      return this.watchOutput(g, OUTPUT.timingVoltage, -downward, upward, this.voltageSlack);
+      return this.watchOutput(g, OUTPUT.timingVoltage, -downward, upward);
     }
     const hold = drive.diacHoldingCurrent;
     let from = this.gated ? Math.max(drive.gateThreshold, hold) : hold;
     let to = this.gated ? Number.POSITIVE_INFINITY : drive.gateThreshold;
     if (!this.gated && drive.gateThreshold <= hold) to = Number.POSITIVE_INFINITY;
     if (diacSign === -1) [from, to] = [-to, -from];
-    return this.watchOutput(g, OUTPUT.diacCurrent, from, to, this.currentSlack);
+    return this.watchOutput(g, OUTPUT.diacCurrent, from, to);
   }
 
   // --- guards ----------------------------------------------------------------------------------------------------------------
 
-  private watchOutput(g: number, output: number, from: number, to: number, slack: number): number {
-    const { walk } = this;
-    walk.output[g] = output;
-    walk.lower[g] = from;
-    walk.upper[g] = to;
-    walk.slack[g] = slack;
+  private watchOutput(g: number, output: number, lower: number, upper: number): number {
+    const { windows } = this.mode;
+    windows.output[g] = output;
+    windows.lower[g] = lower;
+    windows.upper[g] = upper;
     return g + 1;
   }
 
-  private diacGuard = -1;
+  private triacGuard = -1;
 
   private setGuards(): void {
-    const guards = this.mode.guards;
-    for (let g = 0; g < guards.length; g++) {
-      const guard = guards[g] as Guard;
-      this.watchOutput(g, guard.output, guard.lower, guard.upper, this.voltageSlack);
-    }
-    const afterDiac = this.watchDiac(guards.length);
-    this.diacGuard = afterDiac > guards.length ? guards.length : -1;
+    const groups = this.mode.guards.length;
+    const afterDiac = this.watchDiac(groups);
+    this.triacGuard = afterDiac;
     this.walk.guardCount = this.watchTriac(afterDiac);
   }
 
@@ -373,15 +369,15 @@ export class DimmerRun {
     const g = this.walk.crossedGuard;
     const side = this.walk.crossedSide;
     if (g < this.mode.guards.length) this.change(this.shelf.beyond(this.mode, g, side));
-    else if (g === this.diacGuard) this.diacCrossed(side);
-    else this.triacCrossed(side);
+    else if (g === this.triacGuard) this.triacCrossed(side);
+    else this.diacCrossed(side);
   }
 
   /** switches at one instant until every part is in its window; false when that does not end */
   private settleInstant(): boolean {
     this.setGuards();
     for (let k = 0; k < INSTANT_BUDGET; k++) {
-      if (this.walk.outside() < 0) return true;
+      if (this.walk.begin() < 0) return true;
       this.crossed();
       this.setGuards();
     }
@@ -437,7 +433,7 @@ export class DimmerRun {
     const eventsBefore = this.events;
     const stepsBefore = this.walk.steps;
     let standing = 0;
-    this.enter(this.mode);
+    this.enterAfresh();
     for (;;) {
       if (!this.settleInstant()) return { outcome: 'undecided', record };
       if (this.events - eventsBefore > EVENT_BUDGET) return { outcome: 'undecided', record };

@@ -6,24 +6,21 @@
  * y0 and y1 with curvature M. With d = y1 - y0 and s = M h^2 / 8 its least value is min(y0, y1) where |d| >= 4 s, else
  * (y0 + y1)/2 - s - d^2/(16 s); likewise above. Terms too fast for that at this h are taken with their whole range. Where |d| >= 4 s, y is
  * also monotone, so a crossing inside the step is the only one, and a bracketed Newton iteration on the closed form finds it.
+ *
+ * How far the next step may reach follows from this one: s grows with h^2 and d with h.
  */
-import { EVENT_TIME } from '../tolerances.ts';
+import { EVENT_TIME, ROOT_SHARE } from '../tolerances.ts';
 import { LEVELS, type Mode } from './mode.ts';
 
 export type WalkOutcome = 'reached' | 'crossed' | 'out-of-steps';
 
-/** most guards a mode can have */
+/** most guards and coordinates a mode can have: twelve groups with every optional part stay well below */
 const MOST_GUARDS = 128;
 const MOST_COORDINATES = 160;
 
 export class ModeWalk {
-  /** guards to watch: set by the caller before `walk`; the window may change between walks of one visit */
+  /** how many of the mode's windows are watched: set by the caller before `begin` */
   guardCount = 0;
-  readonly output = new Int32Array(MOST_GUARDS);
-  readonly lower = new Float64Array(MOST_GUARDS);
-  readonly upper = new Float64Array(MOST_GUARDS);
-  /** how far outside its window a guard may be before it counts as outside: rounding of the quantity */
-  readonly slack = new Float64Array(MOST_GUARDS);
   /** after "crossed": which guard, and 0 for its lower bound, 1 for its upper */
   crossedGuard = -1;
   crossedSide: 0 | 1 = 0;
@@ -33,8 +30,8 @@ export class ModeWalk {
   uncertified = 0;
 
   private mode!: Mode;
-  private readonly z = new Float64Array(MOST_COORDINATES);
-  private readonly zNext = new Float64Array(MOST_COORDINATES);
+  private z = new Float64Array(MOST_COORDINATES);
+  private zNext = new Float64Array(MOST_COORDINATES);
   private readonly zStart = new Float64Array(MOST_COORDINATES);
   private readonly size = new Float64Array(MOST_COORDINATES);
   private readonly straySlow = new Float64Array(MOST_COORDINATES);
@@ -46,6 +43,7 @@ export class ModeWalk {
   private readonly suspects = new Int32Array(MOST_GUARDS);
   private level = 6;
   private firstStep = true;
+  private growing = false;
   private readonly shortest: number;
 
   constructor(shortest: number) {
@@ -54,36 +52,51 @@ export class ModeWalk {
 
   /** starts a visit: x in the mode's own (mirrored) coordinates, the mains' cosine and sine at this moment */
   enter(mode: Mode, x: Float64Array, cos: number, sin: number): void {
-    const { linear } = mode;
+    const { linear, restState } = mode;
     const n = linear.states;
+    const { driveCos, driveSin } = linear;
     const { inverse } = linear.modal;
     const { z, zStart, zNext } = this;
     this.mode = mode;
     this.elapsed = 0;
     this.level = mode.startLevel;
     this.firstStep = true;
+    this.growing = linear.grows;
     for (let k = 0; k < n; k++) {
-      zNext[k] =
-        (x[k] as number) - (mode.restState[k] as number) - cos * (linear.driveCos[k] as number) - sin * (linear.driveSin[k] as number);
+      zNext[k] = (x[k] as number) - (restState[k] as number) - cos * (driveCos[k] as number) - sin * (driveSin[k] as number);
     }
-    for (let r = 0; r < n; r++) {
+    for (let r = 0, at = 0; r < n; r++) {
       let sum = 0;
-      for (let c = 0; c < n; c++) sum += (inverse[r * n + c] as number) * (zNext[c] as number);
+      for (let c = 0; c < n; c++, at++) sum += (inverse[at] as number) * (zNext[c] as number);
       z[r] = sum;
+      zStart[r] = sum;
     }
     z[n] = cos;
     z[n + 1] = sin;
-    for (let k = 0; k < n + 2; k++) zStart[k] = z[k] as number;
+    zStart[n] = cos;
+    zStart[n + 1] = sin;
     this.measure();
   }
 
   private measure(): void {
     const { linear } = this.mode;
     const { reals } = linear.modal;
-    for (let t = 0; t < linear.terms; t++) {
-      const k = t < reals ? t : reals + 2 * (t - reals);
-      this.size[t] = t < reals ? Math.abs(this.z[k] as number) : Math.hypot(this.z[k] as number, this.z[k + 1] as number);
+    const { z, size } = this;
+    for (let t = 0; t < reals; t++) size[t] = Math.abs(z[t] as number);
+    for (let t = reals, k = reals; t < linear.terms; t++, k += 2) {
+      const re = z[k] as number;
+      const im = z[k + 1] as number;
+      size[t] = Math.sqrt(re * re + im * im);
     }
+  }
+
+  /** the mains' cosine and sine now */
+  get cos(): number {
+    return this.z[this.mode.linear.states] as number;
+  }
+
+  get sin(): number {
+    return this.z[this.mode.linear.states + 1] as number;
   }
 
   /** value of an output now */
@@ -95,7 +108,24 @@ export class ModeWalk {
     const { linear } = this.mode;
     const { outputRows, coordinates } = linear;
     let sum = this.mode.restOutput[output] as number;
-    for (let k = 0, at = output * coordinates; k < coordinates; k++) sum += (outputRows[at + k] as number) * (z[k] as number);
+    for (let k = 0, at = output * coordinates; k < coordinates; k++, at++) sum += (outputRows[at] as number) * (z[k] as number);
+    return sum;
+  }
+
+  private slopeOf(z: Float64Array, output: number): number {
+    const { linear } = this.mode;
+    const { outputRows, coordinates, decay, rotation, terms } = linear;
+    const { reals } = linear.modal;
+    let at = output * coordinates;
+    let sum = 0;
+    for (let k = 0; k < reals; k++, at++) sum += (outputRows[at] as number) * (decay[k] as number) * (z[k] as number);
+    for (let t = reals, k = reals; t < terms; t++, k += 2, at += 2) {
+      const d = decay[t] as number;
+      const q = rotation[t] as number;
+      const re = z[k] as number;
+      const im = z[k + 1] as number;
+      sum += (outputRows[at] as number) * (d * re - q * im) + (outputRows[at + 1] as number) * (q * re + d * im);
+    }
     return sum;
   }
 
@@ -104,11 +134,13 @@ export class ModeWalk {
     const { linear, restState } = this.mode;
     const n = linear.states;
     const { basis } = linear.modal;
-    const cos = this.z[n] as number;
-    const sin = this.z[n + 1] as number;
-    for (let r = 0; r < n; r++) {
-      let sum = (restState[r] as number) + cos * (linear.driveCos[r] as number) + sin * (linear.driveSin[r] as number);
-      for (let c = 0; c < n; c++) sum += (basis[r * n + c] as number) * (this.z[c] as number);
+    const { driveCos, driveSin } = linear;
+    const { z } = this;
+    const cos = z[n] as number;
+    const sin = z[n + 1] as number;
+    for (let r = 0, at = 0; r < n; r++) {
+      let sum = (restState[r] as number) + cos * (driveCos[r] as number) + sin * (driveSin[r] as number);
+      for (let c = 0; c < n; c++, at++) sum += (basis[at] as number) * (z[c] as number);
       x[r] = sum;
     }
   }
@@ -118,34 +150,49 @@ export class ModeWalk {
     for (let k = 0; k < this.mode.linear.coordinates; k++) into[k] = this.zStart[k] as number;
   }
 
-  /** first guard that is outside its window by more than its slack, or -1; sets crossedGuard and crossedSide */
-  outside(): number {
-    for (let g = 0; g < this.guardCount; g++) {
-      const y = this.value(this.output[g] as number);
-      if (y < (this.lower[g] as number) - (this.slack[g] as number)) {
+  /**
+   * Takes stock of the guards at this moment: their values, and which of them could leave their window at all before `end` (time since
+   * the visit's start). Returns the first guard that is outside by more than its slack (crossedGuard, crossedSide), or -1.
+   */
+  begin(): number {
+    const { linear, restOutput, windows } = this.mode;
+    const { terms, outputSizes, outputRows, coordinates } = linear;
+    const { z, size, y0, watched, guardCount, growing } = this;
+    const { output: outputs, lower: lowers, upper: uppers, slack: slacks } = windows;
+    let count = 0;
+    for (let g = 0; g < guardCount; g++) {
+      const output = outputs[g] as number;
+      const rest = restOutput[output] as number;
+      const lower = lowers[g] as number;
+      const upper = uppers[g] as number;
+      let y = rest;
+      for (let k = 0, at = output * coordinates; k < coordinates; k++, at++) y += (outputRows[at] as number) * (z[k] as number);
+      const slack = slacks[g] as number;
+      if (y < lower - slack || y > upper + slack) {
         this.crossedGuard = g;
-        this.crossedSide = 0;
+        this.crossedSide = y < lower ? 0 : 1;
         return g;
       }
-      if (y > (this.upper[g] as number) + (this.slack[g] as number)) {
-        this.crossedGuard = g;
-        this.crossedSide = 1;
-        return g;
-      }
+      let reach = 0;
+      for (let t = 0, at = output * terms; t < terms; t++, at++) reach += (outputSizes[at] as number) * (size[t] as number);
+      if (!growing && rest - reach > lower && rest + reach < upper) continue;
+      watched[count++] = g;
+      y0[g] = y;
     }
+    this.watchedCount = count;
     return -1;
   }
 
-  /** moves the coordinates from z by a time that is not on the ladder, into `into` */
+  /** moves coordinates by a time that is not on the ladder */
   private advance(into: Float64Array, from: Float64Array, by: number): void {
     const { linear } = this.mode;
     const { reals } = linear.modal;
     const { decay, rotation, terms } = linear;
     for (let t = 0; t < reals; t++) into[t] = (from[t] as number) * Math.exp((decay[t] as number) * by);
-    for (let t = reals; t < terms; t++) {
-      const k = reals + 2 * (t - reals);
-      const size = Math.exp((decay[t] as number) * by);
+    for (let t = reals, k = reals; t < terms; t++, k += 2) {
+      const d = decay[t] as number;
       const angle = (rotation[t] as number) * by;
+      const size = d === 0 ? 1 : Math.exp(d * by);
       const re = size * Math.cos(angle);
       const im = size * Math.sin(angle);
       const a = from[k] as number;
@@ -155,88 +202,77 @@ export class ModeWalk {
     }
   }
 
-  /** ends the walk `by` after the present coordinates */
-  private settleAt(by: number): void {
-    this.elapsed += by;
-    if (by === 0) return;
-    // from the visit's start rather than from here: no error adds up over the steps
-    this.advance(this.zNext, this.zStart, this.elapsed);
-    for (let k = 0; k < this.mode.linear.coordinates; k++) this.z[k] = this.zNext[k] as number;
+  private takeNext(): void {
+    const kept = this.z;
+    this.z = this.zNext;
+    this.zNext = kept;
+  }
+
+  /** ends the walk at `elapsed`, computed from the visit's start so that no error adds up over the steps */
+  private settleAt(elapsed: number): void {
+    if (elapsed === this.elapsed) return;
+    this.elapsed = elapsed;
+    this.advance(this.zNext, this.zStart, elapsed);
+    this.takeNext();
     this.measure();
   }
 
-  /** time after the present coordinates at which the output passes the bound, known to lie in (0, span]; on the far side, within EVENT_TIME */
-  private crossing(output: number, bound: number, side: 0 | 1, span: number, y0: number, y1: number): number {
+  /** time (0, span] after the present coordinates at which a guard that is monotone there passes the bound */
+  private crossing(g: number, bound: number, side: 0 | 1, span: number): number {
+    const { output: outputs, slack } = this.mode.windows;
+    const output = outputs[g] as number;
     const inside = side === 0 ? 1 : -1;
+    let f0 = ((this.y0[g] as number) - bound) * inside;
+    if (f0 <= 0) return 0;
+    let f1 = ((this.y1[g] as number) - bound) * inside;
     let lo = 0;
     let hi = span;
-    let f0 = (y0 - bound) * inside;
-    let f1 = (y1 - bound) * inside;
-    if (f0 <= 0) return 0;
-    let kept = 0;
-    for (let k = 0; k < 80 && hi - lo > EVENT_TIME; k++) {
-      // Illinois false position, halved when one end will not move
-      let at = lo + ((hi - lo) * f0) / (f0 - f1);
-      if (k > 40) at = (lo + hi) / 2;
-      if (at - lo < EVENT_TIME / 4) at = lo + EVENT_TIME / 4;
-      if (hi - at < EVENT_TIME / 4) at = hi - EVENT_TIME / 4;
+    const enough = ROOT_SHARE * (slack[g] as number);
+    // first guess: inverse cubic through both ends with their slopes; then Newton, kept inside the bracket
+    const s0 = this.slopeOf(this.z, output) * inside;
+    const s1 = this.slopeOf(this.zNext, output) * inside;
+    let at = inverseHermite(f0, f1, s0, s1, span);
+    for (let k = 0; k < 60; k++) {
+      if (!(at > lo && at < hi)) at = k < 6 ? lo + ((hi - lo) * f0) / (f0 - f1) : (lo + hi) / 2;
       this.advance(this.zNext, this.z, at);
       const f = (this.valueOf(this.zNext, output) - bound) * inside;
+      if (Math.abs(f) <= enough) return at;
       if (f > 0) {
         lo = at;
         f0 = f;
-        if (kept === 1) f1 /= 2;
-        kept = 1;
       } else {
         hi = at;
         f1 = f;
-        if (kept === -1) f0 /= 2;
-        kept = -1;
-        if (f === 0) break;
       }
+      if (hi - lo <= EVENT_TIME) return hi;
+      const slope = this.slopeOf(this.zNext, output) * inside;
+      at = k < 12 ? at - f / slope : (lo + hi) / 2;
     }
     return hi;
   }
 
-  /** picks the guards that could leave their window at all during this visit, and their values now */
-  private watch(span: number): void {
-    const { linear, restOutput } = this.mode;
-    const { terms, outputSizes, decay } = linear;
-    this.watchedCount = 0;
-    let growing = false;
-    for (let t = 0; t < terms; t++) if ((decay[t] as number) * span > 0) growing = true;
-    for (let g = 0; g < this.guardCount; g++) {
-      const output = this.output[g] as number;
-      const rest = restOutput[output] as number;
-      let reach = 0;
-      for (let t = 0, at = output * terms; t < terms; t++) reach += (outputSizes[at + t] as number) * (this.size[t] as number);
-      if (!growing && rest - reach > (this.lower[g] as number) && rest + reach < (this.upper[g] as number)) continue;
-      this.watched[this.watchedCount++] = g;
-      this.y0[g] = this.value(output);
-    }
-  }
-
   /**
-   * Walks on until `end` (time since the visit's start) or until a guard is crossed. `stepBudget` bounds the trial steps. With
-   * `forceFirst` the first step is one shortest step whatever the guards say: how the caller breaks a standstill.
+   * Walks on until `end` (time since the visit's start) or until a guard is crossed; `begin` has taken stock. `stepBudget` bounds the
+   * trial steps. With `force` the first step is one shortest step whatever the guards say: how the caller breaks a standstill.
    */
-  walk(end: number, stepBudget: number, forceFirst = false): WalkOutcome {
-    const { linear, restOutput } = this.mode;
+  walk(end: number, stepBudget: number, force = false): WalkOutcome {
+    const { linear, restOutput, windows } = this.mode;
     const { coordinates, terms, factors, sizes, strayingSlow, strayingFast, fastTerms, outputRows, outputSizes } = linear;
+    const { output: outputs, lower: lowers, upper: uppers, slack: slacks } = windows;
     const { reals } = linear.modal;
-    const { z, zNext, size, straySlow, strayFast, y0, y1, watched, suspects } = this;
-    this.watch(end - this.elapsed);
-    let forced = forceFirst;
+    const { size, straySlow, strayFast, y0, y1, watched, suspects, watchedCount } = this;
+    let forced = force;
     let level = forced ? 0 : this.level;
     for (let budget = stepBudget; budget > 0; budget--) {
       const remaining = end - this.elapsed;
-      if (this.watchedCount === 0 || remaining <= 0) {
+      if (watchedCount === 0 || remaining <= 0) {
         this.level = level;
-        this.settleAt(Math.max(0, remaining));
+        if (remaining > 0) this.settleAt(end);
         return 'reached';
       }
       this.steps++;
-      const h = this.shortest * 2 ** level;
+      const { z, zNext } = this;
+      const h = this.shortest * (1 << level);
       const f = level * coordinates;
       for (let k = 0; k < reals; k++) zNext[k] = (z[k] as number) * (factors[f + k] as number);
       for (let k = reals; k < coordinates; k += 2) {
@@ -249,73 +285,77 @@ export class ModeWalk {
       }
       const s = level * terms;
       const hasFast = (fastTerms[level] as number) > 0;
-      for (let t = 0; t < terms; t++) {
-        straySlow[t] = (size[t] as number) * (strayingSlow[s + t] as number);
-        if (hasFast) strayFast[t] = (size[t] as number) * (strayingFast[s + t] as number);
-      }
-      // doubtful: might leave and return within the step; crossing: certainly leaves, once
+      for (let t = 0; t < terms; t++) straySlow[t] = (size[t] as number) * (strayingSlow[s + t] as number);
+      if (hasFast) for (let t = 0; t < terms; t++) strayFast[t] = (size[t] as number) * (strayingFast[s + t] as number);
+      // doubtful: might leave and return within the step; suspect: certainly leaves, once
       let doubtful = false;
       let suspectCount = 0;
-      for (let w = 0; w < this.watchedCount; w++) {
+      // square of the factor by which the step could have been longer, over all guards
+      let reserve = 1e9;
+      for (let w = 0; w < watchedCount; w++) {
         const g = watched[w] as number;
-        const output = this.output[g] as number;
+        const output = outputs[g] as number;
         let y = restOutput[output] as number;
-        for (let k = 0, at = output * coordinates; k < coordinates; k++) y += (outputRows[at + k] as number) * (zNext[k] as number);
+        for (let k = 0, at = output * coordinates; k < coordinates; k++, at++) y += (outputRows[at] as number) * (zNext[k] as number);
         y1[g] = y;
         let stray = 0;
         let fast = 0;
-        for (let t = 0, at = output * terms; t < terms; t++) stray += (outputSizes[at + t] as number) * (straySlow[t] as number);
-        if (hasFast)
-          for (let t = 0, at = output * terms; t < terms; t++) fast += (outputSizes[at + t] as number) * (strayFast[t] as number);
+        for (let t = 0, at = output * terms; t < terms; t++, at++) stray += (outputSizes[at] as number) * (straySlow[t] as number);
+        if (hasFast) {
+          for (let t = 0, at = output * terms; t < terms; t++, at++) fast += (outputSizes[at] as number) * (strayFast[t] as number);
+        }
         const before = y0[g] as number;
         const d = y - before;
-        const monotone = Math.abs(d) >= 4 * stray;
-        const middle = monotone ? 0 : stray + (d * d) / (16 * stray);
-        const least = (monotone ? Math.min(before, y) : (before + y) / 2 - middle) - fast;
-        const most = (monotone ? Math.max(before, y) : (before + y) / 2 + middle) + fast;
-        const slack = this.slack[g] as number;
-        const lower = this.lower[g] as number;
-        const upper = this.upper[g] as number;
+        const far = d < 0 ? -d : d;
+        const lower = lowers[g] as number;
+        const upper = uppers[g] as number;
+        const monotone = far >= 4 * stray;
+        const toLower = Math.min(before, y) - lower;
+        const toUpper = upper - Math.max(before, y);
+        const room = Math.min(toLower, toUpper) - fast;
+        const bySlope = far / (4 * stray);
+        const own = Math.max(room / stray, bySlope * bySlope);
+        if (own < reserve) reserve = own;
+        if (room > stray) continue;
+        const slack = slacks[g] as number;
         // a guard that starts on its bound (within rounding) may start a hair outside, as long as it moves in
         const low = before <= lower + slack && d >= 0 ? lower - slack : lower;
         const high = before >= upper - slack && d <= 0 ? upper + slack : upper;
-        if (least >= low && most <= high) continue;
+        if (monotone) {
+          if ((d < 0 ? y : before) - fast >= low && (d < 0 ? before : y) + fast <= high) continue;
+        } else {
+          const middle = (before + y) / 2;
+          const bulge = stray + (d * d) / (16 * stray) + fast;
+          if (middle - bulge >= low && middle + bulge <= high) continue;
+        }
         if (y < lower || y > upper) {
           suspects[suspectCount++] = g;
           if (!monotone || fast > slack) doubtful = true;
         } else doubtful = true;
       }
       if (forced) {
-        // fall through to taking the step
         suspectCount = 0;
         doubtful = false;
         forced = false;
         this.uncertified++;
       }
       if (doubtful && level > 0) {
-        level = level > 2 && suspectCount === 0 ? level - 2 : level - 1;
+        level--;
+        while (level > 0 && reserve < 0.25 && !hasFast) {
+          reserve *= 4;
+          level--;
+        }
         continue;
       }
       if (doubtful) this.uncertified++;
       if (suspectCount > 0) {
-        let earliest = Number.POSITIVE_INFINITY;
-        for (let k = 0; k < suspectCount; k++) {
-          const g = suspects[k] as number;
-          const side: 0 | 1 = (y1[g] as number) < (this.lower[g] as number) ? 0 : 1;
-          const bound = side === 0 ? (this.lower[g] as number) : (this.upper[g] as number);
-          const at = this.crossing(this.output[g] as number, bound, side, h, y0[g] as number, y1[g] as number);
-          if (at < earliest) {
-            earliest = at;
-            this.crossedGuard = g;
-            this.crossedSide = side;
-          }
-        }
-        this.level = Math.max(0, level - 1);
+        this.level = level;
+        const earliest = this.firstCrossing(suspectCount, h);
         if (earliest >= remaining) {
-          this.settleAt(remaining);
+          this.settleAt(end);
           return 'reached';
         }
-        this.settleAt(earliest);
+        this.settleAt(this.elapsed + earliest);
         return 'crossed';
       }
       if (this.firstStep) {
@@ -324,18 +364,51 @@ export class ModeWalk {
       }
       if (h >= remaining) {
         this.level = level;
-        this.settleAt(remaining);
+        this.settleAt(end);
         return 'reached';
       }
       this.elapsed += h;
-      for (let k = 0; k < coordinates; k++) z[k] = zNext[k] as number;
+      this.takeNext();
       for (let t = 0; t < terms; t++) size[t] = (size[t] as number) * (sizes[s + t] as number);
-      for (let w = 0; w < this.watchedCount; w++) {
+      for (let w = 0; w < watchedCount; w++) {
         const g = watched[w] as number;
         y0[g] = y1[g] as number;
       }
-      if (level < LEVELS - 1) level++;
+      if (level < LEVELS - 1) {
+        level++;
+        while (level < LEVELS - 1 && reserve >= 16) {
+          reserve /= 4;
+          level++;
+        }
+      }
     }
     return 'out-of-steps';
   }
+
+  /** earliest crossing among the suspects within the step h that was just tried */
+  private firstCrossing(suspectCount: number, h: number): number {
+    const { lower: lowers, upper: uppers } = this.mode.windows;
+    let earliest = Number.POSITIVE_INFINITY;
+    for (let k = 0; k < suspectCount; k++) {
+      const g = this.suspects[k] as number;
+      const side: 0 | 1 = (this.y1[g] as number) < (lowers[g] as number) ? 0 : 1;
+      if (k > 0) this.advance(this.zNext, this.z, h);
+      const at = this.crossing(g, (side === 0 ? lowers[g] : uppers[g]) as number, side, h);
+      if (at >= earliest) continue;
+      earliest = at;
+      this.crossedGuard = g;
+      this.crossedSide = side;
+    }
+    return earliest;
+  }
+}
+
+/** where a cubic in f through (f0, 0) and (f1, span) with slopes 1/s0, 1/s1 passes f = 0; the straight line where slopes are of no use */
+function inverseHermite(f0: number, f1: number, s0: number, s1: number, span: number): number {
+  const width = f1 - f0;
+  const u = -f0 / width;
+  if (!(s0 < 0 && s1 < 0)) return span * u;
+  const m0 = width / s0;
+  const m1 = width / s1;
+  return u * (u * (span * (3 - 2 * u) + (u - 1) * m1) + (u - 1) * (u - 1) * m0);
 }

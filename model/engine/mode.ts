@@ -12,12 +12,33 @@ import { type Change, type Configuration, type Guard, groupGuards, linearKey, si
 import { closeModeSystem, GROUP_CONSTANTS, type ModeSystem, type OpenModeSystem, openModeSystem } from '../circuit/mode-system.ts';
 import type { Network } from '../circuit/network.ts';
 import type { Dimmer } from '../pairing.ts';
-import { LADDER_LEVELS } from '../tolerances.ts';
+import { GUARD_SLACK, LADDER_LEVELS } from '../tolerances.ts';
 import { type ModalBasis, modalBasis } from './eigen.ts';
 
 export const LEVELS = LADDER_LEVELS + 1;
 /** largest |lambda| h that still counts as slow: there |lambda|^2 h^2 / 8 is 1, the range of a decaying coordinate */
 const SLOW_LIMIT = Math.sqrt(8);
+
+/** what the triac or the diac can switch to */
+export const SWITCHINGS = [
+  { triac: 'open', triacSign: 1 },
+  { triac: 'low', triacSign: 1 },
+  { triac: 'on', triacSign: 1 },
+  { triac: 'on', triacSign: -1 },
+  { diac: false, diacSign: 1 },
+  { diac: true, diacSign: 1 },
+  { diac: true, diacSign: -1 },
+] as const satisfies readonly Partial<Configuration>[];
+export const SWITCH = {
+  triacOpen: 0,
+  triacLow: 1,
+  triacOnPositive: 2,
+  triacOnNegative: 3,
+  diacOff: 4,
+  diacOnPositive: 5,
+  diacOnNegative: 6,
+} as const;
+export type Switching = (typeof SWITCH)[keyof typeof SWITCH];
 
 /** what mirrored modes share */
 export interface LinearMode {
@@ -47,6 +68,17 @@ export interface LinearMode {
   readonly strayingFast: Float64Array;
   /** number of fast terms per level */
   readonly fastTerms: Uint8Array;
+  /** some coordinate grows (a falling lamp curve) */
+  readonly grows: boolean;
+}
+
+/** windows on outputs, one per guard */
+export interface Windows {
+  readonly output: Int32Array;
+  readonly lower: Float64Array;
+  readonly upper: Float64Array;
+  /** how far outside its window a guard may be before it counts as outside: rounding of the quantity, V or A */
+  readonly slack: Float64Array;
 }
 
 export interface Mode {
@@ -57,9 +89,13 @@ export interface Mode {
   readonly restOutput: Float64Array;
   /** -1 for each state that is held mirrored (a reservoir whose bridge conducts in the negative half-cycle) */
   readonly flips: Float64Array;
+  /** the lamp groups' guards; the windows below hold them first, then room for the diac's and the triac's */
   readonly guards: readonly Guard[];
+  readonly windows: Windows;
   /** modes reached by crossing a guard, filled in as they are met: [2 g] below its lower bound, [2 g + 1] above its upper */
   readonly neighbours: (Mode | undefined)[];
+  /** modes reached by the triac's or the diac's switching, likewise, by Switching */
+  readonly switched: (Mode | undefined)[];
   /** level at which the previous visit's first step was accepted: where the next visit starts trying */
   startLevel: number;
 }
@@ -212,7 +248,27 @@ export function linearMode(system: ModeSystem, omega: number, shortest: number):
     strayingSlow,
     strayingFast,
     fastTerms,
+    grows: decay.some((d) => d > 0),
   };
+}
+
+/** guards besides the lamp groups': the diac's and the triac's */
+const OTHER_GUARDS = 2;
+
+function windowsOf(guards: readonly Guard[], slack: number): Windows {
+  const size = guards.length + OTHER_GUARDS;
+  const windows: Windows = {
+    output: new Int32Array(size),
+    lower: new Float64Array(size),
+    upper: new Float64Array(size),
+    slack: new Float64Array(size).fill(slack),
+  };
+  guards.forEach((guard, g) => {
+    windows.output[g] = guard.output;
+    windows.lower[g] = guard.lower;
+    windows.upper[g] = guard.upper;
+  });
+  return windows;
 }
 
 /** The modes of one circuit at one dial position, built when first met. `shared` holds what does not depend on the dial. */
@@ -275,15 +331,26 @@ export class ModeShelf {
       restOutput,
       flips,
       guards,
+      windows: windowsOf(guards, GUARD_SLACK * this.network.peak),
       neighbours: new Array(2 * guards.length).fill(undefined),
+      switched: new Array(SWITCHINGS.length).fill(undefined),
       startLevel: 6,
     };
     this.modes.set(fullKey, made);
     return made;
   }
 
-  changed(from: Mode, change: Change): Mode {
+  private changed(from: Mode, change: Change): Mode {
     return this.mode(change(from.configuration));
+  }
+
+  /** the mode after the triac or the diac switched */
+  after(from: Mode, switching: Switching): Mode {
+    const known = from.switched[switching];
+    if (known !== undefined) return known;
+    const next = this.mode({ ...from.configuration, ...SWITCHINGS[switching] });
+    from.switched[switching] = next;
+    return next;
   }
 
   /** the mode beyond a group guard's bound; side 0 below its lower bound, 1 above its upper */
