@@ -48,8 +48,8 @@ export const EVENT_TIME = 1e-12;
 export const STANDSTILL = 20;
 /** share of the half-cycle after which a conducting diac counts as stuck; a dump takes some tens of microseconds */
 export const DIAC_STUCK_SHARE = 0.25;
-/** an event is located once its guard is within this share of its slack of its bound: 3e-10 V or A at 230 V */
-export const ROOT_SHARE = 1e-3;
+/** an event is located once its guard is within this share of its slack of its bound: 3e-8 V or A at 230 V, some 1e-11 s */
+export const ROOT_SHARE = 0.1;
 /** relative: a guard nearer its bound than this times the quantity's scale counts as on the bound, and its slope decides */
 export const GUARD_SLACK = 1e-9;
 

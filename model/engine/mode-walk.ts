@@ -106,20 +106,37 @@ export class ModeWalk {
 
   private valueOf(z: Float64Array, output: number): number {
     const { linear } = this.mode;
-    const { outputRows, coordinates } = linear;
+    const { outputRows, outputStride, terms } = linear;
+    const { reals } = linear.modal;
     let sum = this.mode.restOutput[output] as number;
-    for (let k = 0, at = output * coordinates; k < coordinates; k++, at++) sum += (outputRows[at] as number) * (z[k] as number);
+    let at = output * outputStride;
+    for (let k = 0; k < reals; k++, at++) sum += (outputRows[at] as number) * (z[k] as number);
+    for (let t = reals, k = reals; t < terms; t++, k += 2, at += 3) {
+      sum += (outputRows[at] as number) * (z[k] as number) + (outputRows[at + 1] as number) * (z[k + 1] as number);
+    }
+    return sum;
+  }
+
+  /** how far an output can be moved by terms of these sizes */
+  private reach(output: number, sizes: Float64Array): number {
+    const { linear } = this.mode;
+    const { outputRows, outputStride, terms } = linear;
+    const { reals } = linear.modal;
+    let sum = 0;
+    let at = output * outputStride;
+    for (let t = 0; t < reals; t++, at++) sum += Math.abs(outputRows[at] as number) * (sizes[t] as number);
+    for (let t = reals; t < terms; t++, at += 3) sum += (outputRows[at + 2] as number) * (sizes[t] as number);
     return sum;
   }
 
   private slopeOf(z: Float64Array, output: number): number {
     const { linear } = this.mode;
-    const { outputRows, coordinates, decay, rotation, terms } = linear;
+    const { outputRows, outputStride, decay, rotation, terms } = linear;
     const { reals } = linear.modal;
-    let at = output * coordinates;
+    let at = output * outputStride;
     let sum = 0;
     for (let k = 0; k < reals; k++, at++) sum += (outputRows[at] as number) * (decay[k] as number) * (z[k] as number);
-    for (let t = reals, k = reals; t < terms; t++, k += 2, at += 2) {
+    for (let t = reals, k = reals; t < terms; t++, k += 2, at += 3) {
       const d = decay[t] as number;
       const q = rotation[t] as number;
       const re = z[k] as number;
@@ -155,8 +172,7 @@ export class ModeWalk {
    * the visit's start). Returns the first guard that is outside by more than its slack (crossedGuard, crossedSide), or -1.
    */
   begin(): number {
-    const { linear, restOutput, windows } = this.mode;
-    const { terms, outputSizes, outputRows, coordinates } = linear;
+    const { restOutput, windows } = this.mode;
     const { z, size, y0, watched, guardCount, growing } = this;
     const { output: outputs, lower: lowers, upper: uppers, slack: slacks } = windows;
     let count = 0;
@@ -165,16 +181,14 @@ export class ModeWalk {
       const rest = restOutput[output] as number;
       const lower = lowers[g] as number;
       const upper = uppers[g] as number;
-      let y = rest;
-      for (let k = 0, at = output * coordinates; k < coordinates; k++, at++) y += (outputRows[at] as number) * (z[k] as number);
+      const y = this.valueOf(z, output);
       const slack = slacks[g] as number;
       if (y < lower - slack || y > upper + slack) {
         this.crossedGuard = g;
         this.crossedSide = y < lower ? 0 : 1;
         return g;
       }
-      let reach = 0;
-      for (let t = 0, at = output * terms; t < terms; t++, at++) reach += (outputSizes[at] as number) * (size[t] as number);
+      const reach = this.reach(output, size);
       if (!growing && rest - reach > lower && rest + reach < upper) continue;
       watched[count++] = g;
       y0[g] = y;
@@ -217,7 +231,7 @@ export class ModeWalk {
     this.measure();
   }
 
-  /** time (0, span] after the present coordinates at which a guard that is monotone there passes the bound */
+  /** time (0, span] after the present coordinates at which a guard that is monotone there passes the bound; leaves the coordinates there in zNext */
   private crossing(g: number, bound: number, side: 0 | 1, span: number): number {
     const { output: outputs, slack } = this.mode.windows;
     const output = outputs[g] as number;
@@ -244,10 +258,11 @@ export class ModeWalk {
         hi = at;
         f1 = f;
       }
-      if (hi - lo <= EVENT_TIME) return hi;
+      if (hi - lo <= EVENT_TIME) break;
       const slope = this.slopeOf(this.zNext, output) * inside;
       at = k < 12 ? at - f / slope : (lo + hi) / 2;
     }
+    this.advance(this.zNext, this.z, hi);
     return hi;
   }
 
@@ -257,7 +272,7 @@ export class ModeWalk {
    */
   walk(end: number, stepBudget: number, force = false): WalkOutcome {
     const { linear, restOutput, windows } = this.mode;
-    const { coordinates, terms, factors, sizes, strayingSlow, strayingFast, fastTerms, outputRows, outputSizes } = linear;
+    const { coordinates, terms, factors, sizes, strayingSlow, strayingFast, fastTerms, outputRows, outputStride } = linear;
     const { output: outputs, lower: lowers, upper: uppers, slack: slacks } = windows;
     const { reals } = linear.modal;
     const { size, straySlow, strayFast, y0, y1, watched, suspects, watchedCount } = this;
@@ -296,14 +311,19 @@ export class ModeWalk {
         const g = watched[w] as number;
         const output = outputs[g] as number;
         let y = restOutput[output] as number;
-        for (let k = 0, at = output * coordinates; k < coordinates; k++, at++) y += (outputRows[at] as number) * (zNext[k] as number);
-        y1[g] = y;
         let stray = 0;
-        let fast = 0;
-        for (let t = 0, at = output * terms; t < terms; t++, at++) stray += (outputSizes[at] as number) * (straySlow[t] as number);
-        if (hasFast) {
-          for (let t = 0, at = output * terms; t < terms; t++, at++) fast += (outputSizes[at] as number) * (strayFast[t] as number);
+        let at = output * outputStride;
+        for (let k = 0; k < reals; k++, at++) {
+          const share = outputRows[at] as number;
+          y += share * (zNext[k] as number);
+          stray += Math.abs(share) * (straySlow[k] as number);
         }
+        for (let t = reals, k = reals; t < terms; t++, k += 2, at += 3) {
+          y += (outputRows[at] as number) * (zNext[k] as number) + (outputRows[at + 1] as number) * (zNext[k + 1] as number);
+          stray += (outputRows[at + 2] as number) * (straySlow[t] as number);
+        }
+        y1[g] = y;
+        const fast = hasFast ? this.reach(output, strayFast) : 0;
         const before = y0[g] as number;
         const d = y - before;
         const far = d < 0 ? -d : d;
@@ -355,7 +375,11 @@ export class ModeWalk {
           this.settleAt(end);
           return 'reached';
         }
-        this.settleAt(this.elapsed + earliest);
+        if (earliest > 0) {
+          this.elapsed += earliest;
+          this.takeNext();
+          this.measure();
+        }
         return 'crossed';
       }
       if (this.firstStep) {
@@ -385,10 +409,11 @@ export class ModeWalk {
     return 'out-of-steps';
   }
 
-  /** earliest crossing among the suspects within the step h that was just tried */
+  /** earliest crossing among the suspects within the step h that was just tried; leaves the coordinates there in zNext */
   private firstCrossing(suspectCount: number, h: number): number {
     const { lower: lowers, upper: uppers } = this.mode.windows;
     let earliest = Number.POSITIVE_INFINITY;
+    let last = 0;
     for (let k = 0; k < suspectCount; k++) {
       const g = this.suspects[k] as number;
       const side: 0 | 1 = (this.y1[g] as number) < (lowers[g] as number) ? 0 : 1;
@@ -396,9 +421,11 @@ export class ModeWalk {
       const at = this.crossing(g, (side === 0 ? lowers[g] : uppers[g]) as number, side, h);
       if (at >= earliest) continue;
       earliest = at;
+      last = k;
       this.crossedGuard = g;
       this.crossedSide = side;
     }
+    if (last < suspectCount - 1) this.advance(this.zNext, this.z, earliest);
     return earliest;
   }
 }

@@ -51,10 +51,9 @@ export interface LinearMode {
   readonly terms: number;
   readonly decay: Float64Array;
   readonly rotation: Float64Array;
-  /** outputs x coordinates */
+  /** per output: its share of each real coordinate, then for each pair its shares of re and im and the size of the two together */
   readonly outputRows: Float64Array;
-  /** outputs x terms: size of an output's share of each term of unit size */
-  readonly outputSizes: Float64Array;
+  readonly outputStride: number;
   /** particular solution of the mains: x = driveCos * cos wt + driveSin * sin wt */
   readonly driveCos: Float64Array;
   readonly driveSin: Float64Array;
@@ -178,8 +177,8 @@ export function linearMode(system: ModeSystem, omega: number, shortest: number):
   rotation[terms - 1] = omega;
   const { driveSin, driveCos, constantStates } = steadyAnswers(system, modal, omega);
 
-  const outputRows = new Float64Array(outputs * coordinates);
-  const outputSizes = new Float64Array(outputs * terms);
+  const outputStride = reals + 3 * (pairs + 1);
+  const outputRows = new Float64Array(outputs * outputStride);
   const constantOutputs = new Float64Array(constants * outputs);
   for (let o = 0; o < outputs; o++) {
     const row = (n + o) * columns;
@@ -188,14 +187,15 @@ export function linearMode(system: ModeSystem, omega: number, shortest: number):
       for (let c = 0; c < n; c++) sum += (system.rows[row + c] as number) * (of[from + c * stride] as number);
       return sum;
     };
-    const out = o * coordinates;
-    for (let k = 0; k < n; k++) outputRows[out + k] = onto(modal.basis, k, n);
-    outputRows[out + n] = onto(driveCos, 0, 1);
-    outputRows[out + n + 1] = onto(driveSin, 0, 1) + (system.rows[row + n] as number);
-    for (let t = 0; t < reals; t++) outputSizes[o * terms + t] = Math.abs(outputRows[out + t] as number);
-    for (let t = reals; t < terms; t++) {
-      const k = reals + 2 * (t - reals);
-      outputSizes[o * terms + t] = Math.hypot(outputRows[out + k] as number, outputRows[out + k + 1] as number);
+    let at = o * outputStride;
+    for (let k = 0; k < reals; k++) outputRows[at++] = onto(modal.basis, k, n);
+    for (let p = 0; p <= pairs; p++) {
+      const k = reals + 2 * p;
+      const re = p < pairs ? onto(modal.basis, k, n) : onto(driveCos, 0, 1);
+      const im = p < pairs ? onto(modal.basis, k + 1, n) : onto(driveSin, 0, 1) + (system.rows[row + n] as number);
+      outputRows[at++] = re;
+      outputRows[at++] = im;
+      outputRows[at++] = Math.hypot(re, im);
     }
     for (let k = 0; k < constants; k++) {
       constantOutputs[k * outputs + o] = onto(constantStates, k * n, 1) + (system.rows[row + n + 1 + k] as number);
@@ -238,7 +238,7 @@ export function linearMode(system: ModeSystem, omega: number, shortest: number):
     decay,
     rotation,
     outputRows,
-    outputSizes,
+    outputStride,
     driveCos,
     driveSin,
     constantStates,

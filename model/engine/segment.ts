@@ -44,12 +44,13 @@ export class Segment {
     const { reals } = linear.modal;
     const z = this.coordinates;
     const c = new Float64Array(2 * (linear.terms + 1));
-    const row = output * linear.coordinates;
+    const row = output * linear.outputStride;
     for (let t = 0; t < reals; t++) c[2 * t] = (linear.outputRows[row + t] as number) * (z[t] as number);
     for (let t = reals; t < linear.terms; t++) {
       const k = reals + 2 * (t - reals);
-      const a = linear.outputRows[row + k] as number;
-      const b = linear.outputRows[row + k + 1] as number;
+      const at = row + reals + 3 * (t - reals);
+      const a = linear.outputRows[at] as number;
+      const b = linear.outputRows[at + 1] as number;
       const re = z[k] as number;
       const im = z[k + 1] as number;
       c[2 * t] = a * re + b * im;
