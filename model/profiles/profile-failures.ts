@@ -27,7 +27,10 @@ export type ScopeFailure =
   /** `row` counts from 1 and includes header rows; null where the fault is not in one row or column */
   | { readonly kind: 'unreadable-record'; readonly detail: string; readonly row: number | null; readonly column: string | null }
   | { readonly kind: 'time-not-rising' | 'time-not-even'; readonly detail: string; readonly row: number }
-  | { readonly kind: 'no-full-period' | 'too-few-samples' | 'columns-swapped' | 'voltage-not-a-sine'; readonly detail: string }
+  | {
+      readonly kind: 'no-full-period' | 'too-few-samples' | 'columns-swapped' | 'voltage-not-a-sine' | 'no-current';
+      readonly detail: string;
+    }
   | { readonly kind: 'frequency-out-of-range' | 'voltage-out-of-range'; readonly detail: string; readonly value: number }
   | { readonly kind: 'clipped'; readonly detail: string; readonly column: 'voltage' | 'current' }
   | { readonly kind: 'wrong-units'; readonly detail: string; readonly factor: number | null }

@@ -70,8 +70,11 @@ export const FEWEST_SAMPLES_A_PERIOD = 40;
 /** Hz and V r.m.s.: what mains can be, the ranges of the phase table's own fields */
 export const FREQUENCY_RANGE: readonly [number, number] = [45, 65];
 export const VOLTAGE_RANGE: readonly [number, number] = [85, 265];
-/** Hz, where the fundamental is looked for: wide, so that a record outside FREQUENCY_RANGE is named as such */
-export const SEARCH_RANGE: readonly [number, number] = [10, 500];
+/** Hz, up to which the fundamental is looked for (from one period in the record up): wide, so that a record outside FREQUENCY_RANGE is
+ * named as such */
+export const HIGHEST_SEARCHED = 500;
+/** samples that the coarse search for the fundamental looks at: its work grows with their square */
+export const COARSE_SAMPLES = 4000;
 /** steps by which a sample may lie off the even grid: a printed time is rounded by up to half a step; a missing sample is a whole one */
 export const TIME_JITTER = 0.6;
 /** r.m.s. share of what is not the fundamental in the averaged voltage: public mains stay within 8 % (EN 50160, total harmonic
@@ -82,6 +85,11 @@ export const SINE_LIKE = 0.08;
 /** a run at the extreme value must be this many times longer than quantisation alone would make a sine's crest, plus so many samples */
 export const CLIP_FACTOR = 2.5;
 export const CLIP_SAMPLES = 4;
+/** share of a period within which a clipped wave has left its flat top by so many steps of the scope's resolution, on either side */
+export const CLIP_EDGE = 0.02;
+export const CLIP_EDGE_STEPS = 3;
+/** a column carries noise if its samples typically differ by this many steps of its resolution: a flat top would then differ too */
+export const CLIP_NOISE_STEPS = 1.5;
 /** degrees by which the middle of a flat top must miss the crest where nothing else tells clipping from a regulated current */
 export const CLIP_OFF_CREST = 6;
 /** a factor of 1000 mistaken between A and mA leaves the power within this many times 1000 of the rated one */
