@@ -100,7 +100,9 @@ function rangeWords(range: readonly number[] | null): string {
 
 /** Where one corner alone was judged, its grade is the verdict's. */
 function cornerLines(corners: Verdict['corners']): string[] {
-  return corners.length < 2 ? [] : corners.map(({ name, grade }) => `  ${name}: ${grade}`);
+  if (corners.length < 2) return [];
+  const words = corners.map(({ name, grade }, index) => `${name} ${grade}${index < corners.length - 1 ? ',' : ''}`);
+  return [...fill(words, '  ', ' '), '  The worst one decides; the dial above is the nominal one.'];
 }
 
 /** By the part they belong to, under the names by which the file can give them. */
