@@ -119,7 +119,7 @@ export interface WouldSettle {
   /** what it is, in words: "the diac's breakover voltage" */
   readonly what: string;
   readonly assumed: number;
-  /** between these two the grade flips; found by bracketing */
+  /** between these two the grade flips at that corner; found by bracketing */
   readonly threshold: { readonly low: number; readonly high: number };
   readonly gradeBelow: Grade;
   readonly gradeAbove: Grade;
@@ -128,7 +128,7 @@ export interface WouldSettle {
   readonly measure: string;
   /** one plain sentence */
   readonly detail: string;
-  /** other assumed values that, changed alone within their range, would flip the grade too */
+  /** other assumed values that, changed alone within their range, look as if they flipped the grade too (tried at a few dial positions) */
   readonly alsoOpen: readonly string[];
 }
 
@@ -192,4 +192,42 @@ export interface Waveforms {
   /** across the timing capacitor that feeds the diac; zeros for a timed drive */
   readonly timingVoltage: Float64Array;
   readonly gateCurrent: Float64Array;
+}
+
+// --- lamp counts --------------------------------------------------------------------------------------------------------------------
+
+export interface CountRange {
+  readonly from: number;
+  readonly to: number;
+  /** index of the lamp group whose count is varied; the others stay */
+  readonly group: number;
+}
+
+/** why a triac drops out: too little current to stay on, too little to latch, or the trough of a ring */
+export type DropOutCause = 'holding' | 'latching' | 'ringing';
+export type StopCause = DropOutCause | 'peak-current' | 'rating' | 'dark' | 'lopsided' | 'uneven' | 'undecided';
+
+export interface CountGrade {
+  readonly count: number;
+  readonly grade: Grade;
+  readonly decidedBy: CornerName;
+  /** % where conditional, else null */
+  readonly lowestDial: number | null;
+  /** null where workable */
+  readonly cause: StopCause | null;
+  readonly detail: string;
+}
+
+export interface LampCounts {
+  readonly counts: readonly CountGrade[];
+  /** smallest and largest count that is suitable or conditional; null where none is */
+  readonly smallest: number | null;
+  readonly largest: number | null;
+  /** every count between the two is workable */
+  readonly unbroken: boolean;
+  /** why the next smaller and the next larger count are not workable; null where the range ends there */
+  readonly below: StopCause | null;
+  readonly above: StopCause | null;
+  readonly summary: string;
+  readonly counters: Effort;
 }

@@ -15,6 +15,8 @@ export const TRIAL_POSITIONS = 6;
 export const SETTLING_HALVINGS = 6;
 /** of these the first ones find out which of several values flips the grade nearest to what was assumed */
 export const RANKING_HALVINGS = 3;
+/** values, nearest first, for which a flip that a few positions show is confirmed at every corner, before none is said to settle it */
+export const SURE_TRIES = 3;
 
 // --- lamp counts ----------------------------------------------------------------------------------------------------------------
 
@@ -23,6 +25,11 @@ export const MOST_COUNTS = 60;
 /** s: where the triac's current, had it stayed on, would have passed the holding current again within this time, the drop-out was a ring's
  * trough; lamp inputs and chokes ring at 2 kHz and more (generic parts, from memory), so a whole period is over by then */
 export const RING_WINDOW = 0.5e-3;
+/** half-cycles let pass and then looked at for the cause of a drop-out: a wandering pattern shows several causes, the most frequent counts */
+export const CAUSE_SETTLING = 20;
+export const CAUSE_HALF_CYCLES = 8;
+/** samples of each visit to a mode in that search; a ring's crest is some tenths of a ring period wide */
+export const CAUSE_SAMPLES = 60;
 
 // --- remedies -------------------------------------------------------------------------------------------------------------------
 

@@ -3,7 +3,7 @@
  * What is missing here (on-voltage, diac resistance, wiring resistance) moves a firing angle by less than its dial position does.
  */
 import type { DiacDrive, Dimmer, Pairing, TimedDrive } from '../../pairing.ts';
-import { type Assumable, always } from './assumable.ts';
+import { type Assumable, always, bySupply } from './assumable.ts';
 
 const NO_TEST = 'Ask the maker, or measure it with the part out of circuit and the mains off.';
 
@@ -82,11 +82,11 @@ export const ASSUMABLE_OF_DIMMER: { readonly [path: string]: Assumable } = {
       dimmer.drive.kind === 'diac' ? { ...dimmer, drive: { ...dimmer.drive, breakover: { positive: value, negative: value } } } : dimmer,
   ),
   'dimmer.drive.capacitance': ofDiac(
-    { what: 'the timing capacitor', unit: 'nF', scale: 1e-9, range: always(68e-9, 150e-9), measure: NO_TEST },
+    { what: 'the timing capacitor', unit: 'nF', scale: 1e-9, range: always(82e-9, 120e-9), measure: NO_TEST },
     'capacitance',
   ),
   'dimmer.drive.fixedResistance': ofDiac(
-    { what: 'the fixed timing resistor', unit: 'kOhm', scale: 1e3, range: always(2.2e3, 15e3), measure: NO_TEST },
+    { what: 'the fixed timing resistor', unit: 'kOhm', scale: 1e3, range: bySupply([3.3e3, 10e3], [1.5e3, 6.8e3]), measure: NO_TEST },
     'fixedResistance',
   ),
   'dimmer.drive.gateResistance': ofDiac(

@@ -1,12 +1,13 @@
 /**
  * Finds out whether a grade hinges on a value that was assumed: each is moved alone to both ends of its range, at the corner that
- * decides; where that turns a workable pairing into an unworkable one or back, the value at which it turns is bracketed.
+ * decides; where that turns a workable pairing into an unworkable one or back, the value at which it turns is bracketed. Kept cheap by
+ * trying a few dial positions first: an upset on a narrow part of the dial can go unnoticed.
  */
 import type { Pairing } from '../../pairing.ts';
 import type { CornerInputs, Grade, JudgeOptions, WouldSettle } from '../../verdict.ts';
 import type { EffortTally } from '../effort.ts';
-import { RANKING_HALVINGS, SETTLING_HALVINGS } from '../judgement-figures.ts';
-import { isWorkable, type JudgedCorner, type OverCorners, overCorners } from '../over-corners.ts';
+import { RANKING_HALVINGS, SETTLING_HALVINGS, SURE_TRIES } from '../judgement-figures.ts';
+import { isWorkable, type JudgedCorner, judgeCorner, type OverCorners, overCorners } from '../over-corners.ts';
 import { shown } from './assumable.ts';
 import { type OpenValue, openValue } from './assumable-at.ts';
 import { failsOnTheWayUp, topPositions, trialPositions } from './dial-trial.ts';
@@ -34,85 +35,98 @@ function cornerToTry({ grade, decisive, judged }: OverCorners): CornerInputs {
 class Settling {
   private readonly options: JudgeOptions;
   private readonly effort: EffortTally;
-  private readonly base: OverCorners;
+  /** whether the pairing is workable with the values as assumed */
+  readonly works: boolean;
+  /** at which changed values are tried */
   readonly corner: CornerInputs;
 
   constructor(base: OverCorners, options: JudgeOptions, effort: EffortTally) {
-    this.base = base;
+    this.works = isWorkable(base.grade);
     this.options = options;
     this.effort = effort;
     this.corner = cornerToTry(base);
   }
 
-  private gradeAt(pairing: Pairing): Grade {
+  /** over every corner */
+  gradeOf(pairing: Pairing): Grade {
     return overCorners(pairing, this.options, this.effort, { first: this.corner.name }).grade;
   }
 
-  /** the grade's other side: unworkable where it works, workable where it does not */
-  flipped(pairing: Pairing): boolean {
+  /** whether a few dial positions say that the pairing works where it did not, or does not where it did */
+  looksFlipped(pairing: Pairing): boolean {
     const { options, corner, effort } = this;
-    const works = isWorkable(this.base.grade);
-    const trial = works ? trialPositions(options.dialPositions) : topPositions(options.dialPositions);
-    const fails = failsOnTheWayUp(pairing, corner, options, trial, effort);
-    // a full judgement only where the trial shows a change: it can be wrong about a down sweep, or about another corner
-    if (fails !== works) return false;
-    return isWorkable(this.gradeAt(pairing)) !== works;
+    const positions = this.works ? trialPositions(options.dialPositions) : topPositions(options.dialPositions);
+    return failsOnTheWayUp(pairing, corner, options, positions, effort) === this.works;
   }
 
-  /** of several flips the one nearest to the assumed value, as a share of the way to its end; and a share at which it has not flipped */
-  nearest(flips: readonly Flip[]): { readonly flip: Flip; readonly from: number; readonly to: number } {
+  /** the same by the whole dial at the corner that is tried; a down sweep may contradict the trial */
+  isFlipped(pairing: Pairing): boolean {
+    if (!this.looksFlipped(pairing)) return false;
+    const { graded } = judgeCorner(pairing, this.corner, this.options, 'grade', this.effort);
+    return isWorkable(graded.grade) !== this.works;
+  }
+
+  /** of several flips the one nearest to the assumed value, as a share of the way to its end */
+  nearest(flips: readonly Flip[]): Flip {
     let left = flips;
-    let to = 1;
-    for (let k = 0; k < RANKING_HALVINGS; k++) {
-      const sooner = left.filter((f) => this.flipped(f.value.at(along(f, to / 2))));
-      if (sooner.length === 0) return { flip: left[0] as Flip, from: to / 2, to };
+    for (let k = 1, share = 0.5; k <= RANKING_HALVINGS && left.length > 1; k++, share /= 2) {
+      const sooner = left.filter((f) => this.looksFlipped(f.value.at(along(f, share))));
+      if (sooner.length === 0) break;
       left = sooner;
-      to /= 2;
     }
-    return { flip: left[0] as Flip, from: 0, to };
+    return left[0] as Flip;
   }
 
-  bracket(flip: Flip, from: number, to: number): readonly [number, number] {
-    let [kept, gone] = [from, to];
+  /** value up to which the grade stays, and value from which it has flipped */
+  bracket(flip: Flip): readonly [number, number] {
+    let [kept, gone] = [0, 1];
     while (gone - kept > 2 ** -SETTLING_HALVINGS) {
       const middle = (kept + gone) / 2;
-      if (this.flipped(flip.value.at(along(flip, middle)))) gone = middle;
+      if (this.isFlipped(flip.value.at(along(flip, middle)))) gone = middle;
       else kept = middle;
     }
     return [along(flip, kept), along(flip, gone)];
   }
+}
 
-  gradeBeyond(flip: Flip, at: number): Grade {
-    return this.gradeAt(flip.value.at(at));
+/** the nearest flip that holds at every corner, and the values for which it might */
+function nearestSureFlip(settling: Settling, values: readonly OpenValue[]): { flip: Flip; candidates: readonly Flip[] } | null {
+  const ends = values.flatMap((value) =>
+    [value.low, value.high].filter((end) => end !== value.assumed).map((end): Flip => ({ value, end })),
+  );
+  const candidates = ends.filter(({ value, end }) => settling.looksFlipped(value.at(end)));
+  let left = candidates;
+  for (let tries = 0; tries < SURE_TRIES && left.length > 0; tries++) {
+    const flip = settling.nearest(left);
+    if (isWorkable(settling.gradeOf(flip.value.at(flip.end))) !== settling.works) return { flip, candidates };
+    left = left.filter((f) => f !== flip);
   }
+  return null;
 }
 
 export function wouldSettle(pairing: Pairing, options: JudgeOptions, base: OverCorners, effort: EffortTally): WouldSettle | null {
   const values = (options.assumed ?? []).map((a) => openValue(pairing, a)).filter((v) => v !== null);
   if (values.length === 0 || base.grade === 'undetermined') return null;
   const settling = new Settling(base, options, effort);
-  const flips = values
-    .flatMap((value) => [value.low, value.high].filter((end) => end !== value.assumed).map((end): Flip => ({ value, end })))
-    .filter(({ value, end }) => settling.flipped(value.at(end)));
-  if (flips.length === 0) return null;
-  const { flip, from, to } = settling.nearest(flips);
-  const [kept, gone] = settling.bracket(flip, from, to);
-  const beyond = settling.gradeBeyond(flip, gone);
+  const found = nearestSureFlip(settling, values);
+  if (found === null) return null;
+  const { flip, candidates } = found;
+  const [kept, gone] = settling.bracket(flip);
   const { path, about, assumed } = flip.value;
-  const threshold = { low: Math.min(kept, gone), high: Math.max(kept, gone) };
+  const beyond = settling.gradeOf(flip.value.at(flip.end));
   const upward = gone > kept;
   const [gradeBelow, gradeAbove] = upward ? [base.grade, beyond] : [beyond, base.grade];
-  const worksAbove = isWorkable(gradeAbove);
+  const [runs, fails] = isWorkable(gradeAbove) ? ['above', 'below'] : ['below', 'above'];
   return {
     path,
     what: about.what,
     assumed,
-    threshold,
+    threshold: { low: Math.min(kept, gone), high: Math.max(kept, gone) },
     gradeBelow,
     gradeAbove,
     corner: settling.corner.name,
     measure: about.measure,
-    detail: `It hinges on ${about.what}, which was assumed (${shown(about, assumed)}): ${worksAbove ? 'above' : 'below'} about ${shown(about, (kept + gone) / 2)} the lamps run, ${worksAbove ? 'below' : 'above'} it they do not.`,
-    alsoOpen: [...new Set(flips.map((f) => f.value.path))].filter((p) => p !== path),
+    detail: `It hinges on ${about.what}, which was assumed (${shown(about, assumed)}): ${runs} about ${shown(about, (kept + gone) / 2)} the lamps run, ${fails} it they do not.`,
+    alsoOpen: [...new Set(candidates.map((f) => f.value.path))].filter((p) => p !== path),
   };
 }
