@@ -37,7 +37,7 @@ export function checkPhaseTable(table: PhaseTable): { readonly path: string; rea
   });
   if (issues.length > 0) return issues;
   const span = lastPhase(table) - (points[0] as PhasePoint).phase;
-  const step = span / (points.length - 1);
+  const step = largestGap(points);
   // a millionth of a degree for the rounding of the division
   if (span + step < 180 - 1e-6)
     issues.push({ path: 'points', message: `must cover a half-cycle to within one sample, not ${span} degrees` });
@@ -49,6 +49,10 @@ function lastPhase({ points }: PhaseTable): number {
   return (points[points.length - 1] as PhasePoint).phase;
 }
 
+function largestGap(points: readonly PhasePoint[]): number {
+  return points.reduce((most, p, k) => Math.max(most, p.phase - (points[k - 1] ?? p).phase), 0);
+}
+
 /** share of the record that each point stands for; they add up to 1 */
 export function pointWeights(table: PhaseTable): Float64Array {
   const { points } = table;
@@ -56,9 +60,13 @@ export function pointWeights(table: PhaseTable): Float64Array {
   const period = lastPhase(table) > 180 + 1e-6 ? 360 : 180;
   const at = points.map((p) => p.phase);
   const n = at.length;
+  const first = at[0] as number;
+  const last = at[n - 1] as number;
+  // a record that ends somewhere in between does not close upon itself
+  const closes = first + period - last < 2 * largestGap(points);
   const weights = Float64Array.from(at, (phase, k) => {
-    const before = k > 0 ? (at[k - 1] as number) : (at[n - 1] as number) - period;
-    const after = k < n - 1 ? (at[k + 1] as number) : (at[0] as number) + period;
+    const before = k > 0 ? (at[k - 1] as number) : closes ? last - period : phase;
+    const after = k < n - 1 ? (at[k + 1] as number) : closes ? first + period : phase;
     return (after - phase) / 2 + (phase - before) / 2;
   });
   const sum = weights.reduce((a, b) => a + b, 0);

@@ -81,7 +81,7 @@ function placesOf(headings: readonly Heading[], stated: StatedColumns): ProfileO
   return { ok: true, value: places };
 }
 
-function factorOf(quantity: Quantity, heading: Heading, stated: string | null): ProfileOutcome<number> {
+function divisorOf(quantity: Quantity, heading: Heading, stated: string | null): ProfileOutcome<number> {
   const known = Object.keys(UNITS[quantity]).join(', ');
   if (stated !== null && heading.unit !== null && stated !== heading.unit) {
     return unreadable(`The ${quantity} column is headed in ${heading.unit} but stated in ${stated}.`, 1, quantity);
@@ -89,10 +89,10 @@ function factorOf(quantity: Quantity, heading: Heading, stated: string | null): 
   const unit = stated ?? heading.unit;
   if (unit === null)
     return unreadable(`The unit of the ${quantity} column is not known: name it in the header or state it (${known}).`, null, quantity);
-  const factor = UNITS[quantity][unit];
-  if (factor === undefined)
+  const divisor = UNITS[quantity][unit];
+  if (divisor === undefined)
     return unreadable(`The ${quantity} column cannot be in ${unit}: it must be in one of ${known}.`, null, quantity);
-  return { ok: true, value: factor };
+  return { ok: true, value: divisor };
 }
 
 export function readScopeColumns(rows: readonly Row[], stated: StatedColumns = NOTHING_STATED): ProfileOutcome<ScopeRecord> {
@@ -111,8 +111,8 @@ export function readScopeColumns(rows: readonly Row[], stated: StatedColumns = N
   };
   for (const quantity of QUANTITIES) {
     const place = places.value[quantity];
-    const factor = factorOf(quantity, headings[place] as Heading, stated.units[quantity]);
-    if (!factor.ok) return factor;
+    const divisor = divisorOf(quantity, headings[place] as Heading, stated.units[quantity]);
+    if (!divisor.ok) return divisor;
     for (const [k, row] of samples.entries()) {
       const field = row[place];
       const number = headers + k + 1;
@@ -123,7 +123,7 @@ export function readScopeColumns(rows: readonly Row[], stated: StatedColumns = N
         const shown = (field as string).trim().slice(0, 30);
         return unreadable(`Row ${number}: the ${quantity} ${shown === '' ? 'is empty' : `is no number: "${shown}"`}.`, number, quantity);
       }
-      columns[quantity][k] = value * factor.value;
+      columns[quantity][k] = value / divisor.value;
     }
   }
   return { ok: true, value: { ...columns, firstRow: headers + 1 } };

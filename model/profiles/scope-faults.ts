@@ -126,7 +126,9 @@ export function currentFault(averages: PhaseAverages, fundamental: Fundamental, 
     const detail = `The voltage is not a sine: ${figures(100 * averages.distortion)} % of it (r.m.s.) is not at ${figures(fundamental.frequency)} Hz. Record the lamp on undimmed mains.`;
     return { kind: 'voltage-not-a-sine', detail };
   }
-  if (averages.rmsCurrent === 0) return { kind: 'no-current', detail: 'The current is the same throughout: there is nothing to fit.' };
+  // what is left of a constant current is the rounding of its mean
+  if (averages.rmsCurrent <= 1e-9 * Math.abs(averages.currentOffset))
+    return { kind: 'no-current', detail: 'The current is the same throughout: there is nothing to fit.' };
   const noise = averages.noiseOfPoint / averages.rmsCurrent;
   if (!(noise <= RESIDUAL_LIMIT)) {
     const detail = `The current is too noisy: after averaging ${averages.periods} periods, noise is ${figures(100 * noise)} % of its r.m.s. value, and at most ${100 * RESIDUAL_LIMIT} % can be fitted. Record more periods or use a smaller range.`;

@@ -4,11 +4,11 @@
  */
 export type Quantity = 'time' | 'voltage' | 'current';
 
-/** factor to s, V, A */
+/** how many of the unit make one s, V or A */
 export const UNITS: { readonly [quantity in Quantity]: { readonly [unit: string]: number } } = {
-  time: { s: 1, ms: 1e-3, us: 1e-6, ns: 1e-9 },
-  voltage: { V: 1, mV: 1e-3, kV: 1e3 },
-  current: { A: 1, mA: 1e-3, uA: 1e-6 },
+  time: { s: 1, ms: 1e3, us: 1e6, ns: 1e9 },
+  voltage: { V: 1, mV: 1e3, kV: 1e-3 },
+  current: { A: 1, mA: 1e3, uA: 1e6 },
 };
 
 const NAMES: { readonly [quantity in Quantity]: readonly string[] } = {
@@ -40,9 +40,7 @@ export function readHeading(text: string): Heading {
     const unit = parts === null ? null : unitOf(parts[2] as string);
     if (unit !== null) return { quantity: quantityNamed((parts as RegExpExecArray)[1] as string) ?? unit.quantity, unit: unit.unit };
   }
-  const quantity = quantityNamed(trimmed);
-  if (quantity !== null) return { quantity, unit: null };
-  return unitOf(trimmed) ?? { quantity: null, unit: null };
+  return unitOf(trimmed) ?? { quantity: quantityNamed(trimmed), unit: null };
 }
 
 function quantityNamed(text: string): Quantity | null {
