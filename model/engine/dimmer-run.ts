@@ -27,7 +27,7 @@ import {
   STEP_BUDGET,
 } from '../tolerances.ts';
 import { emptyHalfCycle, type HalfCycle } from './half-cycle.ts';
-import { type Mode, ModeShelf, SWITCH, type Switching } from './mode.ts';
+import { type Mode, ModeShelf, type Passage, SWITCH, type Switching } from './mode.ts';
 import { ModeWalk } from './mode-walk.ts';
 
 /** hears of every visit to a mode: from `start` (s into the half-cycle) for `duration`, coordinates at its start */
@@ -149,33 +149,27 @@ export class DimmerRun {
     this.conductionRecord = null;
   }
 
-  private enter(mode: Mode, cos: number, sin: number): void {
-    this.mode = mode;
-    this.entered = this.time;
-    this.walk.enter(mode, this.x, cos, sin);
-  }
-
   /** enters the present mode at the present time, the mains' phase computed afresh */
   private enterAfresh(): void {
     const angle = this.network.omega * this.time;
     const sign = this.index % 2 === 0 ? 1 : -1;
-    this.enter(this.mode, sign * Math.cos(angle), sign * Math.sin(angle));
+    this.entered = this.time;
+    this.walk.enter(this.mode, this.x, sign * Math.cos(angle), sign * Math.sin(angle));
   }
 
-  private leaveMode(): void {
+  private tellSegment(): void {
     if (this.segmentListener !== null && this.walk.elapsed > 0) {
       this.walk.startCoordinates(this.coordinates);
       this.segmentListener.segment(this.mode, this.coordinates, this.entered, this.walk.elapsed, this.index);
     }
-    this.walk.leave(this.x);
   }
 
-  private change(to: Mode): void {
-    if (to === this.mode) return;
-    this.leaveMode();
-    const { x, mode, walk } = this;
-    for (let k = 0; k < x.length; k++) x[k] = (x[k] as number) * (mode.flips[k] as number) * (to.flips[k] as number);
-    this.enter(to, walk.cos, walk.sin);
+  private change(passage: Passage): void {
+    if (passage.to === this.mode) return;
+    this.tellSegment();
+    this.walk.pass(passage);
+    this.mode = passage.to;
+    this.entered = this.time;
   }
 
   private switchTo(switching: Switching): void {
@@ -459,7 +453,8 @@ export class DimmerRun {
       }
       if (until === this.halfPeriod) break;
     }
-    this.leaveMode();
+    this.tellSegment();
+    this.walk.leave(this.x);
     if (carried !== null && record.firings.length === 0) this.takeCarriedOver(carried, record);
     if (this.mode.configuration.diac && this.halfPeriod - this.diacSince > DIAC_STUCK_SHARE * this.halfPeriod) record.diacStuck = true;
     this.time = 0;

@@ -10,7 +10,11 @@
  * How far the next step may reach follows from this one: s grows with h^2 and d with h.
  */
 import { EVENT_TIME, ROOT_SHARE } from '../tolerances.ts';
-import { LEVELS, type Mode } from './mode.ts';
+import { LEVELS, type Mode, type Passage } from './mode.ts';
+
+const CLEAR = 0;
+const CROSSING = 1;
+const DOUBTFUL = 2;
 
 export type WalkOutcome = 'reached' | 'crossed' | 'out-of-steps';
 
@@ -34,8 +38,10 @@ export class ModeWalk {
   private zNext = new Float64Array(MOST_COORDINATES);
   private readonly zStart = new Float64Array(MOST_COORDINATES);
   private readonly size = new Float64Array(MOST_COORDINATES);
-  private readonly straySlow = new Float64Array(MOST_COORDINATES);
-  private readonly strayFast = new Float64Array(MOST_COORDINATES);
+  /** per guard: bound on |y''|/8 from the slow terms, and the whole range of the fast ones; valid from when they were taken on, since
+   * what decays only gets smaller */
+  private readonly bend = new Float64Array(MOST_GUARDS);
+  private readonly range = new Float64Array(MOST_GUARDS);
   private readonly y0 = new Float64Array(MOST_GUARDS);
   private readonly y1 = new Float64Array(MOST_GUARDS);
   private readonly watched = new Int32Array(MOST_GUARDS);
@@ -57,11 +63,7 @@ export class ModeWalk {
     const { driveCos, driveSin } = linear;
     const { inverse } = linear.modal;
     const { z, zStart, zNext } = this;
-    this.mode = mode;
-    this.elapsed = 0;
-    this.level = mode.startLevel;
-    this.firstStep = true;
-    this.growing = linear.grows;
+    this.start(mode);
     for (let k = 0; k < n; k++) {
       zNext[k] = (x[k] as number) - (restState[k] as number) - cos * (driveCos[k] as number) - sin * (driveSin[k] as number);
     }
@@ -75,9 +77,37 @@ export class ModeWalk {
     z[n + 1] = sin;
     zStart[n] = cos;
     zStart[n + 1] = sin;
-    this.measure();
   }
 
+  /** goes over to a neighbouring mode at this moment: the state is the same, its coordinates are the new mode's */
+  pass(passage: Passage): void {
+    const { to, matrix } = passage;
+    const { z, zNext, zStart } = this;
+    const n = to.linear.states;
+    for (let r = 0, at = 0; r < n; r++) {
+      let sum = 0;
+      for (let c = 0; c < n + 2; c++, at++) sum += (matrix[at] as number) * (z[c] as number);
+      sum += matrix[at++] as number;
+      zNext[r] = sum;
+      zStart[r] = sum;
+    }
+    zNext[n] = z[n] as number;
+    zNext[n + 1] = z[n + 1] as number;
+    zStart[n] = z[n] as number;
+    zStart[n + 1] = z[n + 1] as number;
+    this.takeNext();
+    this.start(to);
+  }
+
+  private start(mode: Mode): void {
+    this.mode = mode;
+    this.elapsed = 0;
+    this.level = mode.startLevel;
+    this.firstStep = true;
+    this.growing = mode.linear.grows;
+  }
+
+  /** sizes of the terms now */
   private measure(): void {
     const { linear } = this.mode;
     const { reals } = linear.modal;
@@ -90,13 +120,28 @@ export class ModeWalk {
     }
   }
 
-  /** the mains' cosine and sine now */
-  get cos(): number {
-    return this.z[this.mode.linear.states] as number;
-  }
-
-  get sin(): number {
-    return this.z[this.mode.linear.states + 1] as number;
+  /** takes the bounds of one guard afresh: terms that are slow at this level count by their curvature, the others by their range */
+  private takeBounds(g: number, output: number, level: number): void {
+    const { linear } = this.mode;
+    const { outputRows, outputStride, terms, bends, ranges } = linear;
+    const { reals } = linear.modal;
+    const { size } = this;
+    let bend = 0;
+    let range = 0;
+    let at = output * outputStride;
+    let b = level * terms;
+    for (let t = 0; t < reals; t++, at++, b++) {
+      const share = Math.abs(outputRows[at] as number) * (size[t] as number);
+      bend += share * (bends[b] as number);
+      range += share * (ranges[b] as number);
+    }
+    for (let t = reals; t < terms; t++, at += 3, b++) {
+      const share = (outputRows[at + 2] as number) * (size[t] as number);
+      bend += share * (bends[b] as number);
+      range += share * (ranges[b] as number);
+    }
+    this.bend[g] = bend;
+    this.range[g] = range;
   }
 
   /** value of an output now */
@@ -176,6 +221,7 @@ export class ModeWalk {
     const { z, size, y0, watched, guardCount, growing } = this;
     const { output: outputs, lower: lowers, upper: uppers, slack: slacks } = windows;
     let count = 0;
+    this.measure();
     for (let g = 0; g < guardCount; g++) {
       const output = outputs[g] as number;
       const rest = restOutput[output] as number;
@@ -192,6 +238,7 @@ export class ModeWalk {
       if (!growing && rest - reach > lower && rest + reach < upper) continue;
       watched[count++] = g;
       y0[g] = y;
+      this.takeBounds(g, output, this.level);
     }
     this.watchedCount = count;
     return -1;
@@ -228,7 +275,6 @@ export class ModeWalk {
     this.elapsed = elapsed;
     this.advance(this.zNext, this.zStart, elapsed);
     this.takeNext();
-    this.measure();
   }
 
   /** time (0, span] after the present coordinates at which a guard that is monotone there passes the bound; leaves the coordinates there in zNext */
@@ -272,12 +318,15 @@ export class ModeWalk {
    */
   walk(end: number, stepBudget: number, force = false): WalkOutcome {
     const { linear, restOutput, windows } = this.mode;
-    const { coordinates, terms, factors, sizes, strayingSlow, strayingFast, fastTerms, outputRows, outputStride } = linear;
+    const { coordinates, terms, factors, outputRows, outputStride } = linear;
     const { output: outputs, lower: lowers, upper: uppers, slack: slacks } = windows;
     const { reals } = linear.modal;
-    const { size, straySlow, strayFast, y0, y1, watched, suspects, watchedCount } = this;
+    const { y0, y1, watched, suspects, watchedCount, bend, range } = this;
     let forced = force;
     let level = forced ? 0 : this.level;
+    /** level at which the guards' bounds were last taken, and whether that was at the present moment */
+    let boundsLevel = this.level;
+    let boundsFresh = true;
     for (let budget = stepBudget; budget > 0; budget--) {
       const remaining = end - this.elapsed;
       if (watchedCount === 0 || remaining <= 0) {
@@ -288,6 +337,7 @@ export class ModeWalk {
       this.steps++;
       const { z, zNext } = this;
       const h = this.shortest * (1 << level);
+      const square = h * h;
       const f = level * coordinates;
       for (let k = 0; k < reals; k++) zNext[k] = (z[k] as number) * (factors[f + k] as number);
       for (let k = reals; k < coordinates; k += 2) {
@@ -298,10 +348,13 @@ export class ModeWalk {
         zNext[k] = re * a - im * b;
         zNext[k + 1] = re * b + im * a;
       }
-      const s = level * terms;
-      const hasFast = (fastTerms[level] as number) > 0;
-      for (let t = 0; t < terms; t++) straySlow[t] = (size[t] as number) * (strayingSlow[s + t] as number);
-      if (hasFast) for (let t = 0; t < terms; t++) strayFast[t] = (size[t] as number) * (strayingFast[s + t] as number);
+      if (this.growing) {
+        // what grows outgrows its bounds
+        this.measure();
+        for (let w = 0; w < watchedCount; w++) this.takeBounds(watched[w] as number, outputs[watched[w] as number] as number, level);
+        boundsFresh = true;
+        boundsLevel = level;
+      }
       // doubtful: might leave and return within the step; suspect: certainly leaves, once
       let doubtful = false;
       let suspectCount = 0;
@@ -311,47 +364,42 @@ export class ModeWalk {
         const g = watched[w] as number;
         const output = outputs[g] as number;
         let y = restOutput[output] as number;
-        let stray = 0;
         let at = output * outputStride;
-        for (let k = 0; k < reals; k++, at++) {
-          const share = outputRows[at] as number;
-          y += share * (zNext[k] as number);
-          stray += Math.abs(share) * (straySlow[k] as number);
-        }
+        for (let k = 0; k < reals; k++, at++) y += (outputRows[at] as number) * (zNext[k] as number);
         for (let t = reals, k = reals; t < terms; t++, k += 2, at += 3) {
           y += (outputRows[at] as number) * (zNext[k] as number) + (outputRows[at + 1] as number) * (zNext[k + 1] as number);
-          stray += (outputRows[at + 2] as number) * (straySlow[t] as number);
         }
         y1[g] = y;
-        const fast = hasFast ? this.reach(output, strayFast) : 0;
         const before = y0[g] as number;
-        const d = y - before;
-        const far = d < 0 ? -d : d;
         const lower = lowers[g] as number;
         const upper = uppers[g] as number;
-        const monotone = far >= 4 * stray;
-        const toLower = Math.min(before, y) - lower;
-        const toUpper = upper - Math.max(before, y);
-        const room = Math.min(toLower, toUpper) - fast;
-        const bySlope = far / (4 * stray);
-        const own = Math.max(room / stray, bySlope * bySlope);
-        if (own < reserve) reserve = own;
-        if (room > stray) continue;
-        const slack = slacks[g] as number;
-        // a guard that starts on its bound (within rounding) may start a hair outside, as long as it moves in
-        const low = before <= lower + slack && d >= 0 ? lower - slack : lower;
-        const high = before >= upper - slack && d <= 0 ? upper + slack : upper;
-        if (monotone) {
-          if ((d < 0 ? y : before) - fast >= low && (d < 0 ? before : y) + fast <= high) continue;
-        } else {
-          const middle = (before + y) / 2;
-          const bulge = stray + (d * d) / (16 * stray) + fast;
-          if (middle - bulge >= low && middle + bulge <= high) continue;
+        let doubt = 0;
+        for (;;) {
+          const stray = (bend[g] as number) * square;
+          const fast = range[g] as number;
+          doubt = this.doubtOf(before, y, lower, upper, slacks[g] as number, stray, fast);
+          const d = y - before;
+          const bySlope = d / (4 * stray);
+          const room = Math.min(Math.min(before, y) - lower, upper - Math.max(before, y)) - fast;
+          const own = Math.max(room / stray, bySlope * bySlope);
+          if (doubt !== DOUBTFUL || (boundsFresh && boundsLevel <= level)) {
+            if (own < reserve) reserve = own;
+            break;
+          }
+          // the bounds may only be out of date
+          if (!boundsFresh) {
+            this.measure();
+            boundsFresh = true;
+          }
+          boundsLevel = level;
+          for (let v = 0; v < watchedCount; v++) {
+            const other = watched[v] as number;
+            this.takeBounds(other, outputs[other] as number, level);
+          }
         }
-        if (y < lower || y > upper) {
-          suspects[suspectCount++] = g;
-          if (!monotone || fast > slack) doubtful = true;
-        } else doubtful = true;
+        if (doubt === CLEAR) continue;
+        if (y < lower || y > upper) suspects[suspectCount++] = g;
+        if (doubt === DOUBTFUL) doubtful = true;
       }
       if (forced) {
         suspectCount = 0;
@@ -361,7 +409,7 @@ export class ModeWalk {
       }
       if (doubtful && level > 0) {
         level--;
-        while (level > 0 && reserve < 0.25 && !hasFast) {
+        while (level > 0 && reserve < 0.25) {
           reserve *= 4;
           level--;
         }
@@ -378,7 +426,6 @@ export class ModeWalk {
         if (earliest > 0) {
           this.elapsed += earliest;
           this.takeNext();
-          this.measure();
         }
         return 'crossed';
       }
@@ -393,7 +440,7 @@ export class ModeWalk {
       }
       this.elapsed += h;
       this.takeNext();
-      for (let t = 0; t < terms; t++) size[t] = (size[t] as number) * (sizes[s + t] as number);
+      boundsFresh = false;
       for (let w = 0; w < watchedCount; w++) {
         const g = watched[w] as number;
         y0[g] = y1[g] as number;
@@ -407,6 +454,23 @@ export class ModeWalk {
       }
     }
     return 'out-of-steps';
+  }
+
+  /** the certificate: CLEAR stays inside, CROSSING certainly leaves and only once, DOUBTFUL neither is certain */
+  private doubtOf(before: number, y: number, lower: number, upper: number, slack: number, stray: number, fast: number): number {
+    const d = y - before;
+    // a guard that starts on its bound (within rounding) may start a hair outside, as long as it moves in
+    const low = before <= lower + slack && d >= 0 ? lower - slack : lower;
+    const high = before >= upper - slack && d <= 0 ? upper + slack : upper;
+    const least = Math.min(before, y);
+    const most = Math.max(before, y);
+    if (Math.abs(d) >= 4 * stray) {
+      if (least - fast >= low && most + fast <= high) return CLEAR;
+      return (y < lower || y > upper) && fast <= slack ? CROSSING : DOUBTFUL;
+    }
+    const middle = (before + y) / 2;
+    const bulge = stray + (d * d) / (16 * stray) + fast;
+    return middle - bulge >= low && middle + bulge <= high ? CLEAR : DOUBTFUL;
   }
 
   /** earliest crossing among the suspects within the step h that was just tried; leaves the coordinates there in zNext */

@@ -8,7 +8,7 @@
  * coordinate of unit size can stray from the chord over such a step: |lambda|^2 h^2 / 8 where that is small ("slow", a bound on the
  * curvature), or its whole range where it is not ("fast").
  */
-import { type Change, type Configuration, type Guard, groupGuards, linearKey, signKey } from '../circuit/configuration.ts';
+import { type Configuration, type Guard, groupGuards, linearKey, signKey } from '../circuit/configuration.ts';
 import { closeModeSystem, GROUP_CONSTANTS, type ModeSystem, type OpenModeSystem, openModeSystem } from '../circuit/mode-system.ts';
 import type { Network } from '../circuit/network.ts';
 import type { Dimmer } from '../pairing.ts';
@@ -60,13 +60,11 @@ export interface LinearMode {
   /** constants x states, and constants x outputs */
   readonly constantStates: Float64Array;
   readonly constantOutputs: Float64Array;
-  /** levels x coordinates (a pair: re, im of its factor), levels x terms */
+  /** levels x coordinates (a pair: re, im of its factor) */
   readonly factors: Float64Array;
-  readonly sizes: Float64Array;
-  readonly strayingSlow: Float64Array;
-  readonly strayingFast: Float64Array;
-  /** number of fast terms per level */
-  readonly fastTerms: Uint8Array;
+  /** levels x terms: curvature bound over 8 of a term of unit size where it is slow at that level, its whole range where it is fast */
+  readonly bends: Float64Array;
+  readonly ranges: Float64Array;
   /** some coordinate grows (a falling lamp curve) */
   readonly grows: boolean;
 }
@@ -91,12 +89,43 @@ export interface Mode {
   /** the lamp groups' guards; the windows below hold them first, then room for the diac's and the triac's */
   readonly guards: readonly Guard[];
   readonly windows: Windows;
-  /** modes reached by crossing a guard, filled in as they are met: [2 g] below its lower bound, [2 g + 1] above its upper */
-  readonly neighbours: (Mode | undefined)[];
+  /** ways out by crossing a guard, filled in as they are met: [2 g] below its lower bound, [2 g + 1] above its upper */
+  readonly neighbours: (Passage | undefined)[];
   /** modes reached by the triac's or the diac's switching, likewise, by Switching */
-  readonly switched: (Mode | undefined)[];
+  readonly switched: (Passage | undefined)[];
   /** level at which the previous visit's first step was accepted: where the next visit starts trying */
   startLevel: number;
+}
+
+/** the way from one mode into another: new coordinates = matrix * (old coordinates with the mains' cos and sin, 1), n x (n + 3) */
+export interface Passage {
+  readonly to: Mode;
+  readonly matrix: Float64Array;
+}
+
+function passageBetween(from: Mode, to: Mode): Passage {
+  const n = from.linear.states;
+  const { basis } = from.linear.modal;
+  const { inverse } = to.linear.modal;
+  const width = n + 3;
+  // the state in terms of the old coordinates, mirrored as the new mode holds it, less the new mode's particular solutions
+  const state = new Float64Array(n * width);
+  for (let r = 0; r < n; r++) {
+    const flip = (from.flips[r] as number) * (to.flips[r] as number);
+    const at = r * width;
+    for (let c = 0; c < n; c++) state[at + c] = flip * (basis[r * n + c] as number);
+    state[at + n] = flip * (from.linear.driveCos[r] as number) - (to.linear.driveCos[r] as number);
+    state[at + n + 1] = flip * (from.linear.driveSin[r] as number) - (to.linear.driveSin[r] as number);
+    state[at + n + 2] = flip * (from.restState[r] as number) - (to.restState[r] as number);
+  }
+  const matrix = new Float64Array(n * width);
+  for (let r = 0; r < n; r++) {
+    for (let k = 0; k < n; k++) {
+      const share = inverse[r * n + k] as number;
+      for (let c = 0; c < width; c++) matrix[r * width + c] = (matrix[r * width + c] as number) + share * (state[k * width + c] as number);
+    }
+  }
+  return { to, matrix };
 }
 
 function steadyAnswers(system: ModeSystem, modal: ModalBasis, omega: number) {
@@ -203,10 +232,8 @@ export function linearMode(system: ModeSystem, omega: number, shortest: number):
   }
 
   const factors = new Float64Array(LEVELS * coordinates);
-  const sizes = new Float64Array(LEVELS * terms);
-  const strayingSlow = new Float64Array(LEVELS * terms);
-  const strayingFast = new Float64Array(LEVELS * terms);
-  const fastTerms = new Uint8Array(LEVELS);
+  const bends = new Float64Array(LEVELS * terms);
+  const ranges = new Float64Array(LEVELS * terms);
   for (let t = 0; t < terms; t++) {
     const d = decay[t] as number;
     const q = rotation[t] as number;
@@ -215,18 +242,14 @@ export function linearMode(system: ModeSystem, omega: number, shortest: number):
     for (let level = 0; level < LEVELS; level++) {
       const h = shortest * 2 ** level;
       const size = Math.exp(d * h);
-      sizes[level * terms + t] = size;
       if (t < reals) factors[level * coordinates + k] = size;
       else {
         factors[level * coordinates + k] = size * Math.cos(q * h);
         factors[level * coordinates + k + 1] = size * Math.sin(q * h);
       }
       const growth = Math.max(1, size);
-      if (speed * h <= SLOW_LIMIT) strayingSlow[level * terms + t] = (growth * (speed * h) ** 2) / 8;
-      else {
-        strayingFast[level * terms + t] = q === 0 ? growth : 2 * growth;
-        fastTerms[level] = (fastTerms[level] as number) + 1;
-      }
+      if (speed * h <= SLOW_LIMIT) bends[level * terms + t] = (growth * speed * speed) / 8;
+      else ranges[level * terms + t] = q === 0 ? growth : 2 * growth;
     }
   }
   return {
@@ -244,10 +267,8 @@ export function linearMode(system: ModeSystem, omega: number, shortest: number):
     constantStates,
     constantOutputs,
     factors,
-    sizes,
-    strayingSlow,
-    strayingFast,
-    fastTerms,
+    bends,
+    ranges,
     grows: decay.some((d) => d > 0),
   };
 }
@@ -340,28 +361,24 @@ export class ModeShelf {
     return made;
   }
 
-  private changed(from: Mode, change: Change): Mode {
-    return this.mode(change(from.configuration));
-  }
-
-  /** the mode after the triac or the diac switched */
-  after(from: Mode, switching: Switching): Mode {
+  /** the way on when the triac or the diac switches */
+  after(from: Mode, switching: Switching): Passage {
     const known = from.switched[switching];
     if (known !== undefined) return known;
-    const next = this.mode({ ...from.configuration, ...SWITCHINGS[switching] });
-    from.switched[switching] = next;
-    return next;
+    const passage = passageBetween(from, this.mode({ ...from.configuration, ...SWITCHINGS[switching] }));
+    from.switched[switching] = passage;
+    return passage;
   }
 
-  /** the mode beyond a group guard's bound; side 0 below its lower bound, 1 above its upper */
-  beyond(from: Mode, guard: number, side: 0 | 1): Mode {
+  /** the way on beyond a group guard's bound; side 0 below its lower bound, 1 above its upper */
+  beyond(from: Mode, guard: number, side: 0 | 1): Passage {
     const known = from.neighbours[2 * guard + side];
     if (known !== undefined) return known;
     const g = from.guards[guard] as Guard;
     const change = side === 0 ? g.belowLower : g.aboveUpper;
     if (change === null) throw new Error('crossed a guard that has nothing beyond it');
-    const next = this.changed(from, change);
-    from.neighbours[2 * guard + side] = next;
-    return next;
+    const passage = passageBetween(from, this.mode(change(from.configuration)));
+    from.neighbours[2 * guard + side] = passage;
+    return passage;
   }
 }
