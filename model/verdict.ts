@@ -231,3 +231,62 @@ export interface LampCounts {
   readonly summary: string;
   readonly counters: Effort;
 }
+
+// --- remedies -----------------------------------------------------------------------------------------------------------------------
+
+interface RemedyOutcome {
+  /** over every corner, with the remedy in place: better than without it */
+  readonly grade: Grade;
+  /** lowest dial setting that is still needed where the grade is conditional, % */
+  readonly lowestDial: number | null;
+  /** W that it adds at most: heat, or further lamps */
+  readonly power: number;
+  /** parts to buy and fit */
+  readonly parts: number;
+  /** one or two plain sentences: what to do and what it costs */
+  readonly detail: string;
+}
+
+export type Remedy =
+  | (RemedyOutcome & {
+      readonly kind: 'low-end-trim';
+      /** lowest dial setting, % */
+      readonly position: number;
+    })
+  | (RemedyOutcome & {
+      readonly kind: 'added-resistor';
+      readonly resistance: number;
+      /** dial position at which it turns `power` to heat, % */
+      readonly hottestAt: number;
+      /** W, the rating to buy */
+      readonly ratedPower: number;
+    })
+  | (RemedyOutcome & {
+      readonly kind: 'bypass';
+      readonly resistance: number;
+      readonly capacitance: number;
+      readonly hottestAt: number;
+      readonly ratedPower: number;
+      /** V r.m.s., class of the capacitor to buy; null where none of the usual classes is enough */
+      readonly capacitorClass: number | null;
+      /** V, the largest that rings across the lamps */
+      readonly peakVoltage: number;
+    })
+  | (RemedyOutcome & {
+      readonly kind: 'more-lamps';
+      /** lamp group, and how many more of its lamps */
+      readonly group: number;
+      readonly added: number;
+    });
+
+export interface Remedies {
+  /** grade without any remedy, over the corners */
+  readonly grade: Grade;
+  /** cheapest first: by watts, then by parts */
+  readonly remedies: readonly Remedy[];
+  /** every candidate that was simulated, found wanting or not */
+  readonly tried: readonly { readonly kind: Remedy['kind']; readonly candidates: number }[];
+  /** one plain sentence, also where nothing was found */
+  readonly summary: string;
+  readonly counters: Effort;
+}

@@ -5,12 +5,12 @@
  */
 import type { Pairing } from '../../pairing.ts';
 import type { CornerInputs, Grade, JudgeOptions, WouldSettle } from '../../verdict.ts';
+import { failsOnTheWayUp, topPositions, trialPositions } from '../dial-trial.ts';
 import type { EffortTally } from '../effort.ts';
 import { RANKING_HALVINGS, SETTLING_HALVINGS, SURE_TRIES } from '../judgement-figures.ts';
 import { isWorkable, type JudgedCorner, judgeCorner, type OverCorners, overCorners } from '../over-corners.ts';
 import { shown } from './assumable.ts';
 import { type OpenValue, openValue } from './assumable-at.ts';
-import { failsOnTheWayUp, topPositions, trialPositions } from './dial-trial.ts';
 
 /** a value and the end of its range at which the grade has flipped */
 interface Flip {

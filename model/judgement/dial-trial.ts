@@ -1,12 +1,12 @@
 /** Tries a changed circuit at a few dial positions, before the whole dial is swept for it. */
-import type { Pairing } from '../../pairing.ts';
-import { LEAST_STEADY_RANGE } from '../../tolerances.ts';
-import type { CornerInputs, DialRow, JudgeOptions } from '../../verdict.ts';
-import { atCorner } from '../corners.ts';
-import { walkDial } from '../dial-visit.ts';
-import { isDecided } from '../early-ending.ts';
-import type { EffortTally } from '../effort.ts';
-import { TRIAL_POSITIONS } from '../judgement-figures.ts';
+import type { Pairing } from '../pairing.ts';
+import { LEAST_STEADY_RANGE } from '../tolerances.ts';
+import type { CornerInputs, DialRow, JudgeOptions } from '../verdict.ts';
+import { atCorner } from './corners.ts';
+import { walkDial } from './dial-visit.ts';
+import { isDecided } from './early-ending.ts';
+import type { EffortTally } from './effort.ts';
+import { TRIAL_POSITIONS } from './judgement-figures.ts';
 
 /** positions spread over the dial, both ends among them */
 export function trialPositions(positions: readonly number[]): number[] {
