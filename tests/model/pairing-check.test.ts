@@ -50,6 +50,14 @@ describe('what is simulated', () => {
     ],
     ['a firing angle of zero', onTimer({ firingAngleFull: 0 })],
     ['a single pulse whatever its spacing', onTimer({ pulses: 'single', pulseSpacing: 0 })],
+    [
+      'a circuit without any series resistance',
+      {
+        ...onDimmer({ onResistance: 0, choke: { inductance: 0, resistance: 0, lossResistance: null } }),
+        mains: { ...mains230, sourceResistance: 0 },
+        lamps: [{ count: 1, lamp: emulator(8, mains230, { seriesResistance: 0 }) }],
+      },
+    ],
     ['a table that falls', onTable([50, 0.1], [300, 0.02])],
   ])('%s', (_, p) => {
     expect(checkPairing(p)).toEqual([]);
@@ -61,7 +69,7 @@ describe('what is refused', () => {
     ['no mains voltage', onMains({ voltage: 0 }), 'mains.voltage'],
     ['a mains voltage that is not a number', onMains({ voltage: Number.NaN }), 'mains.voltage'],
     ['a frequency without end', onMains({ frequency: Number.POSITIVE_INFINITY }), 'mains.frequency'],
-    ['wiring without resistance', onMains({ sourceResistance: 0 }), 'mains.sourceResistance'],
+    ['wiring of negative resistance', onMains({ sourceResistance: -1 }), 'mains.sourceResistance'],
     ['no latching current', onDimmer({ latchingCurrent: { positive: 0, negative: 0.05 } }), 'dimmer.latchingCurrent.positive'],
     [
       'a triac that holds at more than it latches',
@@ -69,14 +77,18 @@ describe('what is refused', () => {
       'dimmer.holdingCurrent.negative',
     ],
     ['a negative turn-off time', onDimmer({ turnOffTime: -1e-6 }), 'dimmer.turnOffTime'],
-    ['a triac of no resistance', onDimmer({ onResistance: 0 }), 'dimmer.onResistance'],
-    ['a choke of no resistance', onDimmer({ choke: { inductance: 1e-3, resistance: 0, lossResistance: null } }), 'dimmer.choke.resistance'],
+    ['a triac of negative resistance', onDimmer({ onResistance: -0.1 }), 'dimmer.onResistance'],
+    [
+      'a choke of negative resistance',
+      onDimmer({ choke: { inductance: 1e-3, resistance: -1, lossResistance: null } }),
+      'dimmer.choke.resistance',
+    ],
     [
       'a choke whose loss is a short circuit',
       onDimmer({ choke: { inductance: 1e-3, resistance: 1, lossResistance: 0 } }),
       'dimmer.choke.lossResistance',
     ],
-    ['a snubber of no resistance', onDimmer({ snubber: { resistance: 0, capacitance: 33e-9 } }), 'dimmer.snubber.resistance'],
+    ['a snubber of negative resistance', onDimmer({ snubber: { resistance: -1, capacitance: 33e-9 } }), 'dimmer.snubber.resistance'],
     ['a negative interference capacitor', onDimmer({ interferenceCapacitance: -1e-9 }), 'dimmer.interferenceCapacitance'],
     ['timing without a fixed resistor', onDiac({ fixedResistance: 0 }), 'dimmer.drive.fixedResistance'],
     ['a diac that drops as much as it breaks over at', onDiac({ residualVoltage: 31.2 }), 'dimmer.drive.residualVoltage'],
@@ -91,10 +103,14 @@ describe('what is refused', () => {
     ['no lamp', { ...sound, lamps: [] }, 'lamps'],
     ['half a lamp', onLamp(emulator(8, mains230), 0.5), 'lamps[0].count'],
     ['no lamp of a kind', onLamp(emulator(8, mains230), 0), 'lamps[0].count'],
-    ['a lamp input of no resistance', onInput({ seriesResistance: 0 }), 'lamps[0].lamp.input.seriesResistance'],
+    ['a lamp input of negative resistance', onInput({ seriesResistance: -1 }), 'lamps[0].lamp.input.seriesResistance'],
     ['a negative input capacitor', onInput({ capacitance: -1e-9 }), 'lamps[0].lamp.input.capacitance'],
     ['an inductor whose loss is a short circuit', onInput({ inductance: 1e-3, inductorLoss: 0 }), 'lamps[0].lamp.input.inductorLoss'],
-    ['a damper of no resistance', onInput({ damper: { resistance: 0, capacitance: 1e-7 } }), 'lamps[0].lamp.input.damper.resistance'],
+    [
+      'a damper of negative resistance',
+      onInput({ damper: { resistance: -1, capacitance: 1e-7 } }),
+      'lamps[0].lamp.input.damper.resistance',
+    ],
     ['a bleeder of no resistance', onBleeder({ kind: 'resistor', resistance: 0 }), 'lamps[0].lamp.input.bleeder.resistance'],
     ['an active bleeder of no current', onBleeder({ kind: 'active', current: 0, below: 100 }), 'lamps[0].lamp.input.bleeder.current'],
     ['a load of no resistance', onLoad({ kind: 'resistive', resistance: 0 }), 'lamps[0].lamp.load.resistance'],
@@ -102,7 +118,7 @@ describe('what is refused', () => {
     ['a table that goes back', onTable([10, 0.1], [10, 0.2]), 'lamps[0].lamp.load.points[1].voltage'],
     ['a table that feeds the mains', onTable([10, 0.1], [20, -0.1]), 'lamps[0].lamp.load.points[1].current'],
     ['a reservoir of no capacitance', onLoad({ ...reservoir, capacitance: 0 }), 'lamps[0].lamp.load.capacitance'],
-    ['a reservoir of no surge resistance', onLoad({ ...reservoir, surgeResistance: 0 }), 'lamps[0].lamp.load.surgeResistance'],
+    ['a reservoir of negative surge resistance', onLoad({ ...reservoir, surgeResistance: -1 }), 'lamps[0].lamp.load.surgeResistance'],
     ['a reservoir drained to nothing', onLoad({ ...reservoir, minimumVoltage: 0 }), 'lamps[0].lamp.load.minimumVoltage'],
     [
       'a reservoir that nothing drains',
@@ -115,7 +131,7 @@ describe('what is refused', () => {
   });
 
   test('names every fault, not only the first', () => {
-    const faulty = { ...onMains({ voltage: -1 }), lamps: [{ count: 0, lamp: filament(40, mains230, { seriesResistance: 0 }) }] };
+    const faulty = { ...onMains({ voltage: -1 }), lamps: [{ count: 0, lamp: filament(40, mains230, { seriesResistance: -1 }) }] };
     expect(paths(faulty)).toEqual(expect.arrayContaining(['mains.voltage', 'lamps[0].count', 'lamps[0].lamp.input.seriesResistance']));
   });
 

@@ -3,6 +3,7 @@
  * nearly ideal switch on a stiff supply for comparisons with closed forms. Each builder takes what a test wants different.
  */
 import type { DiacDrive, Dimmer, IvPoint, Lamp, LampInput, Load, Mains, Pairing, PerPolarity, TimedDrive } from '../../model/pairing.ts';
+import { LEAST_RESISTANCE } from '../../model/tolerances.ts';
 
 export const mains230: Mains = { voltage: 230, frequency: 50, sourceResistance: 0.5 };
 export const mains120: Mains = { voltage: 120, frequency: 60, sourceResistance: 0.5 };
@@ -71,8 +72,8 @@ export function everydayDimmer(change: Partial<Dimmer> = {}): Dimmer {
   };
 }
 
-/** Ohm in series with the load through a switch without drop: choke 1 mOhm, triac 0.1 mOhm */
-export const SWITCH_RESISTANCE = 1.1e-3;
+/** Ohm in series with the load through a switch without drop: choke and triac, the least the model lets each have */
+export const SWITCH_RESISTANCE = 2 * LEAST_RESISTANCE;
 
 /** A switch that needs next to no current to latch and to hold, without drop, choke or snubber; opens at once. */
 export function idealDimmer(change: Partial<Dimmer> = {}): Dimmer {
@@ -81,8 +82,8 @@ export function idealDimmer(change: Partial<Dimmer> = {}): Dimmer {
     holdingCurrent: both(1e-4),
     turnOffTime: 0,
     onVoltage: 0,
-    onResistance: 1e-4,
-    choke: { inductance: 0, resistance: 1e-3, lossResistance: null },
+    onResistance: LEAST_RESISTANCE,
+    choke: { inductance: 0, resistance: LEAST_RESISTANCE, lossResistance: null },
     snubber: null,
     drive: firedAt(90),
     ...change,

@@ -56,7 +56,7 @@ describe.each(data.cases)('$resistance_Ohm Ohm on $voltage_V V, $latchingCurrent
   });
 
   test('finds the edges of the window at their closed form', () => {
-    deviations.absolute('earliest latch', `${c.resistance_Ohm} Ohm`, edge(0.001, 90) + pulseAngle, c.latchesFrom_deg, 1e-5);
+    deviations.absolute('earliest latch', `${c.resistance_Ohm} Ohm`, edge(0.001, 90) + pulseAngle, c.latchesFrom_deg, 1e-4);
     // a falling current that is within rounding (0.3 uA) of the latching current as the gate comes counts as below it
     deviations.absolute('latest latch', `${c.resistance_Ohm} Ohm`, edge(90, 179.9), c.latchesUpTo_deg, 1e-3);
   });
@@ -65,7 +65,7 @@ describe.each(data.cases)('$resistance_Ohm Ohm on $voltage_V V, $latchingCurrent
     for (const turnOffTime of [0, 15e-6]) {
       for (const record of firedInto(90, turnOffTime)) {
         const expected = c.ends_deg + turnOffTime * c.frequency_Hz * 360;
-        deviations.absolute('end of conduction', `${c.resistance_Ohm} Ohm`, record.ends[0] as number, expected, 1e-5);
+        deviations.absolute('end of conduction', `${c.resistance_Ohm} Ohm`, record.ends[0] as number, expected, 1e-4);
       }
     }
   });
