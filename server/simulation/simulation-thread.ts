@@ -4,7 +4,10 @@ import { judgePairing, recordWaveforms } from '../../model/index.ts';
 import type { SimulationTask } from './simulation.ts';
 
 export default function runTask(task: SimulationTask): unknown {
-  if (task.kind === 'judge') return judgePairing(task.pairing, task.options);
+  if (task.kind === 'judge') {
+    if (task.begun !== undefined) Atomics.store(task.begun, 0, 1);
+    return judgePairing(task.pairing, task.options);
+  }
   return withColumnsMoved(recordWaveforms(task.pairing, task.dialPositions, task.place));
 }
 

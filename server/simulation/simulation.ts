@@ -21,8 +21,30 @@ export interface Simulation {
   recordWaveforms(pairing: Pairing, dialPositions: readonly number[], place: WaveformPlace): Promise<Simulated<Waveforms>>;
 }
 
+export type BackgroundFailure =
+  | ModelFailure
+  /** the thread died or hung over this pairing, and a fresh one did so again */
+  | { readonly kind: 'thread-lost'; readonly detail: string; readonly attempts: number }
+  /** the threads are being ended: the pairing was not judged, and nothing is wrong with it */
+  | { readonly kind: 'stopping' };
+
+export type BackgroundJudged =
+  | { readonly ok: true; readonly value: Judgement /** in the thread */; readonly took_ms: number }
+  | { readonly ok: false; readonly failure: BackgroundFailure };
+
+/** Judging that nobody waits for: behind every interactive question, never refused for a full queue, held to a deadline. */
+export interface BackgroundSimulation {
+  judgeInBackground(pairing: Pairing, options: JudgeOptions): Promise<BackgroundJudged>;
+}
+
 export type SimulationTask =
-  | { readonly kind: 'judge'; readonly pairing: Pairing; readonly options: JudgeOptions }
+  | {
+      readonly kind: 'judge';
+      readonly pairing: Pairing;
+      readonly options: JudgeOptions;
+      /** one whole number in shared memory that the thread sets to 1 when it begins */
+      readonly begun?: Int32Array;
+    }
   | {
       readonly kind: 'waveforms';
       readonly pairing: Pairing;
