@@ -53,6 +53,11 @@ export function migrate(record: Database.Database, now: () => Date, migrations: 
   for (const migration of migrations) applyMissing.immediate(migration);
 }
 
+/** Throws where this code does not know the schema of a record; changes nothing. */
+export function refuseUnknownSchema(record: Database.Database, migrations: readonly Migration[] = readMigrations()): void {
+  refuseForeignSchema(appliedMigrations(record), migrations);
+}
+
 type Applied = Pick<Migration, 'number' | 'name' | 'sha256'>;
 
 function appliedMigrations(record: Database.Database): readonly Applied[] {

@@ -9,15 +9,22 @@ import { migrate } from './migrations.ts';
 
 export type RecordDatabase = Database.Database;
 
-/** "HOLD" in ASCII: marks the file as ours for anyone who runs `file` on it. */
-const APPLICATION_ID = 0x484f4c44;
+/** "HOLD" in ASCII: marks the file as ours, for this code and for anyone who runs `file` on it. */
+export const APPLICATION_ID = 0x484f4c44;
+/** "REST" in ASCII: restore.ts has begun to replace what the file holds, and has not finished. */
+export const RESTORING_ID = 0x52455354;
 
 /** Opens the file (creating it and its folder), brings its schema up to date, and refuses a schema newer than this code. */
 export function openRecord(file: string, now: () => Date): RecordDatabase {
   mkdirSync(dirname(file), { recursive: true });
   const record = new Database(file);
   try {
+    // Before the first pragma, so that a file of something else is not turned into one with a write-ahead log.
+    refuseOtherContents(record);
     statePragmas(record);
+    // And again now that this connection holds the file: a restore that began in between is seen, and none can begin from here on.
+    refuseOtherContents(record);
+    record.pragma(`application_id = ${APPLICATION_ID}`);
     migrate(record, now);
   } catch (error) {
     record.close();
@@ -45,7 +52,17 @@ function statePragmas(record: RecordDatabase): void {
   record.pragma('trusted_schema = OFF');
   record.pragma('cell_size_check = ON');
   record.pragma('recursive_triggers = OFF');
-  record.pragma(`application_id = ${APPLICATION_ID}`);
+}
+
+function refuseOtherContents(record: RecordDatabase): void {
+  const id = record.pragma('application_id', { simple: true });
+  if (id === APPLICATION_ID) return;
+  if (id === RESTORING_ID) throw new Error(`${record.name} is being restored, or a restore broke off: run \`npm run restore\` again.`);
+  if (id !== 0 || !isEmpty(record)) throw new Error(`${record.name} is an SQLite file of something else, not a record of Holdfast.`);
+}
+
+export function isEmpty(record: RecordDatabase): boolean {
+  return record.prepare('SELECT count(*) FROM sqlite_schema').pluck().get() === 0;
 }
 
 /** Whether the record answers a read. */
