@@ -5,6 +5,8 @@
 import type { IncomingMessage, ServerResponse } from 'node:http';
 import Fastify, { type FastifyBaseLogger, type FastifyInstance, type RawServerDefault } from 'fastify';
 import type { ZodTypeProvider } from 'fastify-type-provider-zod';
+import type { EntryStore } from '../db/entries.ts';
+import type { EntrySearch } from '../db/entry-search.ts';
 import type { VerdictStore } from '../db/verdicts.ts';
 import { createMetrics } from './metrics.ts';
 import { documentCalls } from './plugins/call-documents.ts';
@@ -14,6 +16,8 @@ import { validateBySchema } from './plugins/schema-validation.ts';
 import { addSecurityHeaders } from './plugins/security-headers.ts';
 import { refuseWhileStopping } from './plugins/stopping.ts';
 import { clientErrorText, replyToError, sendProblem } from './problem-replies.ts';
+import { entryRoutes } from './routes/entries.ts';
+import { entryListRoutes } from './routes/entry-lists.ts';
 import { healthRoutes } from './routes/health.ts';
 import { metricsRoute } from './routes/metrics.ts';
 import { verdictWaveformRoutes } from './routes/verdict-waveforms.ts';
@@ -24,6 +28,8 @@ export interface AppDependencies {
   readonly logger: FastifyBaseLogger;
   readonly simulation: Simulation;
   readonly verdicts: VerdictStore;
+  readonly entries: EntryStore;
+  readonly entrySearch: EntrySearch;
   /** whether the record answers a read */
   readonly isRecordReadable: () => boolean;
   readonly simulationLoad: () => { readonly threads: number; readonly waiting: number; readonly completed: number };
@@ -77,5 +83,7 @@ export async function buildApp(dependencies: AppDependencies): Promise<App> {
   await app.register(metricsRoute(dependencies, metrics));
   await app.register(verdictRoutes(dependencies, metrics));
   await app.register(verdictWaveformRoutes(dependencies));
+  await app.register(entryRoutes(dependencies));
+  await app.register(entryListRoutes(dependencies));
   return app;
 }

@@ -2,6 +2,8 @@
 import { join } from 'node:path';
 import closeWithGrace from 'close-with-grace';
 import pino from 'pino';
+import { entryStore } from '../db/entries.ts';
+import { entrySearch } from '../db/entry-search.ts';
 import { closeRecord, isRecordReadable, openRecord } from '../db/record.ts';
 import { verdictStore } from '../db/verdicts.ts';
 import { buildApp } from './app.ts';
@@ -31,6 +33,8 @@ async function start(environment: Environment): Promise<void> {
       logger,
       simulation,
       verdicts: verdictStore(record),
+      entries: entryStore(record),
+      entrySearch: entrySearch(record),
       isRecordReadable: () => isRecordReadable(record),
       simulationLoad: simulation.load,
       now,

@@ -20,10 +20,16 @@ export const PROBLEMS = {
   'malformed-http': { status: 400, title: 'The request is not HTTP as it should be', when: 'the URL or a header cannot be read' },
   'no-such-call': { status: 404, title: 'There is no such call', when: 'no call has this method and path' },
   'verdict-not-found': { status: 404, title: 'There is no such verdict', when: 'no verdict is stored under this id' },
+  'entry-not-found': { status: 404, title: 'There is no such entry', when: 'the catalogue has no entry, or no revision, under this id' },
   'not-acceptable': {
     status: 406,
     title: 'The answer has no form that the request accepts',
     when: '`Accept` names none of the media types of the call',
+  },
+  'entry-was-changed': {
+    status: 412,
+    title: 'The entry is not as you expect it',
+    when: '`If-Match` names another revision than the latest, or `If-None-Match: *` an entry that exists: read it again',
   },
   'body-too-large': { status: 413, title: 'The body is too large', when: 'the body exceeds 1 MiB' },
   'unsupported-media-type': { status: 415, title: 'The body has the wrong type', when: 'the body is not `application/json`' },
@@ -36,6 +42,11 @@ export const PROBLEMS = {
     status: 422,
     title: 'This pairing cannot be simulated',
     when: 'every field is valid by itself, yet the circuit they make is outside what the model covers; `issues` says where',
+  },
+  'expectation-missing': {
+    status: 428,
+    title: 'Say which revision you change',
+    when: 'an existing entry is changed without `If-Match`: send the ETag you read, or `*` to overwrite whatever is there',
   },
   internal: { status: 500, title: 'Something went wrong in the service', when: 'the fault is ours; quote `requestId` when you report it' },
   'queue-full': {

@@ -42,6 +42,7 @@ export async function documentCalls(app: App): Promise<void> {
       info: { title: 'Holdfast', version: '1', description: INTRODUCTION.trim() },
       tags: [
         { name: 'verdicts', description: 'Judge pairings and read what was judged.' },
+        { name: 'catalogue', description: 'Keep dimmers and lamps under ids of your own, and find them.' },
         { name: 'operations', description: 'For whoever runs the service.' },
       ],
     },

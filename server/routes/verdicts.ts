@@ -5,6 +5,7 @@ import type { Metrics } from '../metrics.ts';
 import { sendProblem } from '../problem-replies.ts';
 import { askedPairing } from '../schemas/pairing.ts';
 import { problemResponses } from '../schemas/problem.ts';
+import { BAD_CURSOR } from '../schemas/url-values.ts';
 import { verdict } from '../schemas/verdict.ts';
 import { verdictList, verdictListQuery, verdictParams } from '../schemas/verdict-calls.ts';
 import { storedVerdict, verdictPage } from '../verdicts/stored-verdicts.ts';
@@ -94,10 +95,7 @@ export function verdictRoutes(dependencies: AppDependencies, metrics: Metrics): 
       },
       async (request, reply) => {
         const page = verdictPage(verdicts, request.query);
-        if (!page.ok) {
-          const issues = [{ path: 'cursor', message: 'must be `nextCursor` of an earlier page, as it was given' }];
-          return sendProblem(reply, 'invalid-request', 'One thing is wrong with it.', { issues });
-        }
+        if (!page.ok) return sendProblem(reply, 'invalid-request', 'One thing is wrong with it.', { issues: BAD_CURSOR });
         return reply.send({ items: page.items, nextCursor: page.nextCursor });
       },
     );

@@ -1,20 +1,7 @@
 /** Parameters and answers of the calls that read verdicts: ids, filters, cursors, waveforms. */
 import { z } from 'zod';
+import { choiceOf, cursorField, limitField, nextCursorField, numberText } from './url-values.ts';
 import { GRADES, verdictHeading } from './verdict.ts';
-
-const choiceOf = (values: readonly string[]) => `must be one of ${values.map((value) => JSON.stringify(value)).join(', ')}`;
-
-/** A number as a URL carries it. Text that merely coerces (an empty one, `0x10`, ` 5`) is refused. */
-function numberText(from: number, to: number, description: string, whole = false) {
-  const error = `must be a ${whole ? 'whole ' : ''}number from ${from} to ${to}`;
-  const number = whole ? z.int({ error }) : z.number({ error });
-  return z
-    .string({ error: `${error}, given once` })
-    .refine((text) => /^\d{1,6}(\.\d{1,6})?$/.test(text), { error })
-    .transform(Number)
-    .pipe(number.min(from).max(to))
-    .meta({ type: whole ? 'integer' : 'number', minimum: from, maximum: to, description });
-}
 
 export const verdictParams = z.strictObject({
   id: z
@@ -36,17 +23,13 @@ export const verdictListQuery = z.strictObject({
     .describe('Only verdicts of this model version.'),
   mainsVoltage_V: numberText(85, 265, 'Only verdicts at exactly this mains voltage.').optional(),
   mainsFrequency_Hz: numberText(45, 65, 'Only verdicts at exactly this mains frequency.').optional(),
-  limit: numberText(1, 100, 'How many to list. Default 20.', true).optional(),
-  cursor: z
-    .string({ error: 'must be a cursor, given once' })
-    .max(100, { error: 'must be `nextCursor` of an earlier page' })
-    .optional()
-    .describe('`nextCursor` of the page before; absent for the newest.'),
+  limit: limitField,
+  cursor: cursorField,
 });
 
 export const verdictList = z.object({
   items: z.array(verdictHeading).describe('Newest first.'),
-  nextCursor: z.string().nullable().describe('Where the next page begins; null at the end.'),
+  nextCursor: nextCursorField,
 });
 
 export const waveformsQuery = z.strictObject({

@@ -2,12 +2,12 @@
 import type { VerdictHeading as HeadingRow, VerdictRow, VerdictStore } from '../../db/verdicts.ts';
 import type { Judgement } from '../../model/index.ts';
 import type { JudgedPairing } from '../schemas/pairing.ts';
+import { DEFAULT_LIMIT } from '../schemas/url-values.ts';
 import type { Verdict, VerdictHeading } from '../schemas/verdict.ts';
 import type { VerdictListQuery } from '../schemas/verdict-calls.ts';
 import { verdictToWire } from './judgement-to-wire.ts';
 import type { Assumption } from './pairing-completion.ts';
 
-const PAGE_LENGTH = 20;
 const CURSOR = /^before-([1-9]\d{0,14})$/;
 
 export function storedPairing(row: VerdictRow): JudgedPairing {
@@ -38,7 +38,7 @@ export function verdictPage(verdicts: VerdictStore, query: VerdictListQuery): Ve
     mainsVoltage: query.mainsVoltage_V,
     mainsFrequency: query.mainsFrequency_Hz,
   };
-  const limit = query.limit ?? PAGE_LENGTH;
+  const limit = query.limit ?? DEFAULT_LIMIT;
   // One more than asked for tells whether there is a next page.
   const rows = verdicts.page(filter, before, limit + 1);
   const shown = rows.slice(0, limit);

@@ -1,14 +1,72 @@
+CREATE INDEX entries_by_article_number ON entries (kind, article_number, id) WHERE deleted_at IS NULL;
+
+CREATE INDEX entries_by_rated_power ON entries (kind, rated_power, id) WHERE deleted_at IS NULL;
+
+CREATE UNIQUE INDEX entries_present ON entries (kind, id) WHERE deleted_at IS NULL;
+
+CREATE INDEX entry_tags_of_entry ON entry_tags (kind, id);
+
+CREATE INDEX entry_words_of_entry ON entry_words (kind, id, word);
+
 CREATE INDEX verdicts_by_grade ON verdicts (grade, seq);
 
 CREATE INDEX verdicts_by_mains ON verdicts (mains_voltage, mains_frequency, seq);
 
 CREATE INDEX verdicts_by_model_version ON verdicts (model_version, seq);
 
+CREATE TABLE entries (
+  seq INTEGER PRIMARY KEY AUTOINCREMENT,
+  kind TEXT NOT NULL CHECK (kind IN ('dimmer', 'lamp')),
+  id TEXT NOT NULL,
+  -- number of the latest revision
+  revision INTEGER NOT NULL CHECK (revision >= 1),
+  -- `circuit` of the latest revision; null once deleted
+  circuit INTEGER,
+  -- what lists show and search, from the latest revision
+  name TEXT,
+  article_number TEXT,
+  -- W: a lamp's rated power, a dimmer's rated maximum load
+  rated_power REAL,
+  -- ISO 8601, UTC, with milliseconds
+  created_at TEXT NOT NULL CHECK (created_at GLOB '????-??-??T??:??:??.???Z'),
+  revised_at TEXT NOT NULL CHECK (revised_at GLOB '????-??-??T??:??:??.???Z'),
+  deleted_at TEXT CHECK (deleted_at GLOB '????-??-??T??:??:??.???Z'),
+  UNIQUE (kind, id),
+  CHECK ((circuit IS NULL) = (deleted_at IS NOT NULL))
+) STRICT;
+
+CREATE TABLE entry_tags (
+  kind TEXT NOT NULL,
+  tag TEXT NOT NULL,
+  id TEXT NOT NULL,
+  PRIMARY KEY (kind, tag, id)
+) STRICT, WITHOUT ROWID;
+
+CREATE TABLE entry_words (
+  kind TEXT NOT NULL,
+  word TEXT NOT NULL,
+  id TEXT NOT NULL,
+  PRIMARY KEY (kind, word, id)
+) STRICT, WITHOUT ROWID;
+
 CREATE TABLE migrations (
   number INTEGER PRIMARY KEY,
   name TEXT NOT NULL,
   sha256 TEXT NOT NULL,
   applied_at TEXT NOT NULL
+) STRICT;
+
+CREATE TABLE revisions (
+  entry INTEGER NOT NULL REFERENCES entries (seq),
+  revision INTEGER NOT NULL,
+  -- number of the entry's first revision with the same circuit: where two are equal, only text was edited in between
+  circuit INTEGER NOT NULL,
+  -- SHA-256 of the canonical circuit
+  circuit_sha256 BLOB NOT NULL CHECK (length(circuit_sha256) = 32),
+  -- the entry as it was sent, canonical
+  content TEXT NOT NULL CHECK (json_valid(content)),
+  revised_at TEXT NOT NULL CHECK (revised_at GLOB '????-??-??T??:??:??.???Z'),
+  PRIMARY KEY (entry, revision)
 ) STRICT;
 
 CREATE TABLE verdicts (

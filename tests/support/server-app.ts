@@ -1,7 +1,9 @@
 /** Builds the application for a test on a record of its own, with the simulation the test chooses, and closes it afterwards. */
 import pino from 'pino';
 import { onTestFinished } from 'vitest';
-import { isRecordReadable } from '../../db/record.ts';
+import { type EntryStore, entryStore } from '../../db/entries.ts';
+import { entrySearch } from '../../db/entry-search.ts';
+import { isRecordReadable, type RecordDatabase } from '../../db/record.ts';
 import { type VerdictStore, verdictStore } from '../../db/verdicts.ts';
 import { type App, type AppDependencies, buildApp } from '../../server/app.ts';
 import { directSimulation } from '../../server/simulation/direct-simulation.ts';
@@ -9,7 +11,9 @@ import { FIXED_NOW, temporaryRecord } from './server-temporary-record.ts';
 
 export interface TestApp {
   readonly app: App;
+  readonly record: RecordDatabase;
   readonly verdicts: VerdictStore;
+  readonly entries: EntryStore;
   readonly post: (body: unknown) => ReturnType<typeof postJson>;
   readonly get: (url: string, headers?: { readonly [name: string]: string }) => ReturnType<typeof getUrl>;
   /** what the application logged, a line an entry */
@@ -19,18 +23,29 @@ export interface TestApp {
 export async function testApp(changes: Partial<AppDependencies> = {}): Promise<TestApp> {
   const record = temporaryRecord();
   const verdicts = verdictStore(record);
+  const entries = entryStore(record);
   const logged: string[] = [];
   const app = await buildApp({
     logger: pino({ level: 'info' }, { write: (line: string) => void logged.push(line) }),
     simulation: directSimulation,
     verdicts,
+    entries,
+    entrySearch: entrySearch(record),
     isRecordReadable: () => isRecordReadable(record),
     simulationLoad: () => ({ threads: 1, waiting: 0, completed: 0 }),
     now: () => FIXED_NOW,
     ...changes,
   });
   onTestFinished(() => app.close());
-  return { app, verdicts, logged, post: (body) => postJson(app, body), get: (url, headers = {}) => getUrl(app, url, headers) };
+  return {
+    app,
+    record,
+    verdicts,
+    entries,
+    logged,
+    post: (body) => postJson(app, body),
+    get: (url, headers = {}) => getUrl(app, url, headers),
+  };
 }
 
 /** Listens on the loopback address, and gives the port that was free. */

@@ -1,0 +1,31 @@
+/** Values as a URL carries them: numbers as text, choices, cursors, the length of a page. Each is given once. */
+import { z } from 'zod';
+
+export const choiceOf = (values: readonly string[]) => `must be one of ${values.map((value) => JSON.stringify(value)).join(', ')}`;
+
+/** Text that merely coerces to a number (an empty one, `0x10`, ` 5`) is refused. */
+export function numberText(from: number, to: number, description: string, whole = false) {
+  const error = `must be a ${whole ? 'whole ' : ''}number from ${from} to ${to}`;
+  const number = whole ? z.int({ error }) : z.number({ error });
+  return z
+    .string({ error: `${error}, given once` })
+    .refine((text) => /^\d{1,6}(\.\d{1,6})?$/.test(text), { error })
+    .transform(Number)
+    .pipe(number.min(from).max(to))
+    .meta({ type: whole ? 'integer' : 'number', minimum: from, maximum: to, description });
+}
+
+export const limitField = numberText(1, 100, 'How many to list. Default 20.', true).optional();
+
+export const DEFAULT_LIMIT = 20;
+
+export const cursorField = z
+  .string({ error: 'must be a cursor, given once' })
+  .max(200, { error: 'must be `nextCursor` of an earlier page' })
+  .optional()
+  .describe('`nextCursor` of the page before; absent for the first page.');
+
+export const nextCursorField = z.string().nullable().describe('Where the next page begins; null at the end.');
+
+/** Says in one issue that a cursor was not one of ours. */
+export const BAD_CURSOR = [{ path: 'cursor', message: 'must be `nextCursor` of an earlier page, as it was given' }];
