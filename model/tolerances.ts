@@ -73,6 +73,8 @@ export const REPEAT_FLOOR = 1e-8;
 /** half-cycles simulated before observing a pattern that does not repeat, and half-cycles observed then */
 export const SETTLE_HALF_CYCLES = 60;
 export const OBSERVE_HALF_CYCLES = 60;
+/** s, interval below which that search does not halve on */
+export const PEAK_TIME = 1e-9;
 /** relative accuracy to which the largest current of a segment is searched */
 export const PEAK_TOLERANCE = 1e-4;
 
@@ -102,3 +104,14 @@ export const CARRY_OVER_ANGLE = 10;
 export const WAVEFORM_HALF_CYCLES = 4;
 /** even samples per half-cycle, besides the edges of every switching */
 export const WAVEFORM_SAMPLES = 400;
+
+// --- margins --------------------------------------------------------------------------------------------------------------------
+
+/** a margin below this share marks a dial row as near an edge: parts scatter by more */
+export const NEAR_EDGE = 0.01;
+/** a current counts as having dipped once it has recovered to this multiple of its lowest value; the final decline never does */
+export const DIP_RECOVERY = 1.1;
+/** a ring is no longer looked at once it has decayed by this many e-foldings: to 0.1 % of what it was */
+export const RING_FADED = 7;
+/** samples per period of the fastest living ring when dips are looked for; each is refined afterwards */
+export const DIP_SAMPLES = 24;

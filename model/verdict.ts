@@ -9,6 +9,17 @@ export type DialState = 'dark' | 'skipping' | 're-firing' | 'dropping-out' | 'lo
 export type Grade = 'suitable' | 'conditional' | 'unsuitable' | 'undetermined';
 export type Sweep = 'up' | 'down';
 
+/** How near another outcome was: relative change of the parameter that would have brought it about (0.03 = 3 %), null where the
+ * question did not arise */
+export interface Margins {
+  /** latching current: peak current in a gate pulse against it */
+  readonly latching: number | null;
+  /** holding current, or turn-off time: lowest current before the final decline, longest passage below it, or what an opened triac lacked */
+  readonly holding: number | null;
+  /** breakover voltage: peak timing voltage in a silent half-cycle against it */
+  readonly breakover: number | null;
+}
+
 export interface DialRow {
   readonly sweep: Sweep;
   /** dial position, 0..100 % */
@@ -45,6 +56,9 @@ export interface DialRow {
   readonly dcCurrent: number;
   /** the diac stayed on because the timing resistor feeds it more than its holding current */
   readonly diacStuck: boolean;
+  readonly margins: Margins;
+  /** some margin is under NEAR_EDGE: a part a hair different would do something else */
+  readonly nearEdge: boolean;
 }
 
 export type ReasonCode =
@@ -287,6 +301,29 @@ export interface Remedies {
   /** every candidate that was simulated, found wanting or not */
   readonly tried: readonly { readonly kind: Remedy['kind']; readonly candidates: number }[];
   /** one plain sentence, also where nothing was found */
+  readonly summary: string;
+  readonly counters: Effort;
+}
+
+// --- requirement --------------------------------------------------------------------------------------------------------------------
+
+/** The largest currents of one ratio IH/IL with which the pairing is suitable: data-sheet maxima at 25 degrees C, alike in both polarities. */
+export interface RequirementPoint {
+  readonly latchingCurrent: number;
+  readonly holdingCurrent: number;
+  /** multiple of both currents at which it was seen not to be suitable any more; null where it is up to the largest currents looked at */
+  readonly failsAt: number | null;
+  /** corner that fails there, and why */
+  readonly decidedBy: CornerName | null;
+  readonly cause: StopCause | null;
+  /** half of both currents does as well; false: smaller currents fail, so that the boundary is not a plain limit */
+  readonly smallerDoes: boolean;
+}
+
+export interface Requirement {
+  /** by falling IH/IL; empty where no currents do */
+  readonly points: readonly RequirementPoint[];
+  /** what the points mean, or why there are none */
   readonly summary: string;
   readonly counters: Effort;
 }

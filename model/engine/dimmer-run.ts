@@ -40,6 +40,12 @@ export interface OpeningListener {
   opening(run: DimmerRun): void;
 }
 
+/** hears of the gate and of passages below the holding current; times in s since the half-cycle's zero crossing */
+export interface TriacListener {
+  gate(on: boolean, time: number): void;
+  below(on: boolean, time: number): void;
+}
+
 const of = (p: PerPolarity, sign: Sign): number => (sign === 1 ? p.positive : p.negative);
 
 export class DimmerRun {
@@ -53,6 +59,7 @@ export class DimmerRun {
   events = 0;
   segmentListener: SegmentListener | null = null;
   openingListener: OpeningListener | null = null;
+  triacListener: TriacListener | null = null;
   /** with an ideal switch the triac, once fired, stays on to the end: for asking when the lamps themselves would stop */
   readonly idealSwitch: boolean;
 
@@ -211,6 +218,7 @@ export class DimmerRun {
   private setGate(on: boolean): void {
     if (on === this.gated) return;
     this.gated = on;
+    this.triacListener?.gate(on, this.time);
     if (on) {
       this.pulseLatched = this.latched;
       this.pulseGated = true;
@@ -230,9 +238,16 @@ export class DimmerRun {
 
   private fallBelowHolding(): void {
     this.below = true;
+    this.triacListener?.below(true, this.time);
     if (this.idealSwitch) return;
     this.belowDeadline = this.time + this.dimmer.turnOffTime;
     if (this.dimmer.turnOffTime === 0) this.unlatch();
+  }
+
+  private riseAboveHolding(): void {
+    if (this.below) this.triacListener?.below(false, this.time);
+    this.below = false;
+    this.belowDeadline = Number.POSITIVE_INFINITY;
   }
 
   private unlatch(): void {
@@ -249,8 +264,7 @@ export class DimmerRun {
       const sign: Sign = side === 1 ? 1 : -1;
       this.switchTo(sign === 1 ? SWITCH.triacOnPositive : SWITCH.triacOnNegative);
       if (this.latched && of(this.dimmer.holdingCurrent, sign) <= this.knee) {
-        this.below = false;
-        this.belowDeadline = Number.POSITIVE_INFINITY;
+        this.riseAboveHolding();
       }
       return;
     }
@@ -258,8 +272,7 @@ export class DimmerRun {
     if (!falling) {
       // only an unlatched triac has the latching current, only one below holding the holding current, as its far bound
       if (this.latched) {
-        this.below = false;
-        this.belowDeadline = Number.POSITIVE_INFINITY;
+        this.riseAboveHolding();
       } else this.latch();
       return;
     }

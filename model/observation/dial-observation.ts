@@ -6,13 +6,16 @@ import type { DimmerRun, SegmentListener } from '../engine/dimmer-run.ts';
 import type { HalfCycle } from '../engine/half-cycle.ts';
 import { RepeatWatch } from '../engine/settling.ts';
 import { DROP_OUT_ANGLE, OBSERVE_HALF_CYCLES, SETTLE_HALF_CYCLES } from '../tolerances.ts';
+import type { Margins } from '../verdict.ts';
 import { HalfCycleMeasures, type Measures } from './half-cycle-measures.ts';
+import { closestMargins, MarginWatch } from './margins.ts';
 import { OwnCurrentEnd } from './own-current-end.ts';
 
 export interface ObservedHalfCycle {
   readonly record: HalfCycle;
   readonly measures: Measures;
   readonly earlyDropOuts: number;
+  readonly margins: Margins;
 }
 
 export interface DialObservation {
@@ -38,6 +41,7 @@ export class DialObserver {
   private readonly watch: RepeatWatch;
   private readonly measures = new HalfCycleMeasures();
   private readonly ownEnd: OwnCurrentEnd;
+  private readonly margins: MarginWatch;
   private readonly plan: ObservationPlan;
   /** hears of the segments of observed half-cycles besides the measures */
   private readonly alsoListening: SegmentListener | null;
@@ -46,6 +50,7 @@ export class DialObserver {
     this.run = run;
     this.watch = new RepeatWatch(run.network);
     this.ownEnd = new OwnCurrentEnd(run, plan.dropOutAngle);
+    this.margins = new MarginWatch(run.dimmer, run.halfPeriod);
     this.plan = plan;
     this.alsoListening = alsoListening;
   }
@@ -67,9 +72,7 @@ export class DialObserver {
       run.state(watch.slot);
       period = watch.note(record);
     }
-    const pattern = period % 2 === 0 ? period : 2 * period;
     const observed: ObservedHalfCycle[] = [];
-    const wanted = period > 0 ? pattern : this.plan.observe;
     run.segmentListener = {
       segment: (mode, coordinates, start, duration, halfCycle) => {
         this.measures.segment(mode, coordinates, start, duration, halfCycle);
@@ -77,17 +80,35 @@ export class DialObserver {
       },
     };
     run.openingListener = this.ownEnd;
+    run.triacListener = this.margins;
+    this.margins.reset();
     try {
-      while (observed.length < wanted) {
+      while (observed.length < (period > 0 ? wholePattern(period) : this.plan.observe)) {
         this.measures.begin();
         const { outcome, record } = run.finishHalfCycle();
         if (outcome === 'undecided') return { outcome: 'undecided', halfCycles: [], repeatsAfter: null, settled };
-        observed.push({ record, measures: this.measures.current, earlyDropOuts: this.ownEnd.earlyDropOuts(record) });
+        const early = this.ownEnd.earlyDropOuts(record);
+        const margins = closestMargins([this.margins.close(record, this.measures.segments), early.margins]);
+        observed.push({ record, measures: this.measures.current, earlyDropOuts: early.count, margins });
+        if (period > 0) continue;
+        run.state(watch.slot);
+        period = watch.note(record);
       }
     } finally {
       run.segmentListener = null;
       run.openingListener = null;
+      run.triacListener = null;
     }
-    return { outcome: 'observed', halfCycles: observed, repeatsAfter: period > 0 ? period : null, settled };
+    // a pattern found while observing: its last repetition stands for all
+    const kept = period > 0 ? observed.slice(-wholePattern(period)) : observed;
+    return {
+      outcome: 'observed',
+      halfCycles: kept,
+      repeatsAfter: period > 0 ? period : null,
+      settled: settled + observed.length - kept.length,
+    };
   }
 }
+
+/** half-cycles that show a pattern in both polarities */
+const wholePattern = (period: number): number => (period % 2 === 0 ? period : 2 * period);

@@ -1,8 +1,10 @@
 /** Sums an observation up into one dial row. */
 
+import { NEAR_EDGE } from '../tolerances.ts';
 import type { DialRow, DialState, Sweep } from '../verdict.ts';
 import type { DialObservation, ObservedHalfCycle } from './dial-observation.ts';
 import { type DialThresholds, dialStates } from './dial-state.ts';
+import { closestMargins } from './margins.ts';
 
 const mean = (values: readonly number[]): number => (values.length === 0 ? 0 : values.reduce((a, b) => a + b, 0) / values.length);
 
@@ -31,6 +33,7 @@ export function dialRow(
   const firstAngles = lit.map((h) => h.record.firings[0] as number);
   const time = halfCycles.length * halfPeriod || 1;
   const sum = (pick: (h: ObservedHalfCycle) => number): number => halfCycles.reduce((total, h) => total + pick(h), 0);
+  const margins = closestMargins(halfCycles.map((h) => h.margins));
   const measured = {
     firings: {
       min: counts.length === 0 ? 0 : Math.min(...counts),
@@ -53,6 +56,8 @@ export function dialRow(
     peakCurrent: halfCycles.reduce((most, h) => Math.max(most, h.measures.peakCurrent), 0),
     dcCurrent: sum((h) => h.measures.charge) / time,
     diacStuck: halfCycles.some((h) => h.record.diacStuck),
+    margins,
+    nearEdge: [margins.latching, margins.holding, margins.breakover].some((m) => m !== null && m < NEAR_EDGE),
   };
   const states: DialState[] = observation.outcome === 'undecided' ? ['undecided'] : dialStates(measured, thresholds);
   return { sweep, position, state: states[0] as DialState, alsoStates: states.slice(1), ...measured };

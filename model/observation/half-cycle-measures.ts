@@ -18,12 +18,17 @@ export interface Measures {
 export class HalfCycleMeasures implements SegmentListener {
   current: Measures = { charge: 0, squaredCurrent: 0, peakCurrent: 0, lampEnergy: 0 };
 
+  /** segments of the half-cycle, in order */
+  segments: Segment[] = [];
+
   begin(): void {
+    this.segments = [];
     this.current = { charge: 0, squaredCurrent: 0, peakCurrent: 0, lampEnergy: 0 };
   }
 
   segment(mode: Mode, coordinates: Float64Array, start: number, duration: number, halfCycle: number): void {
     const segment = new Segment(mode, coordinates, start, duration, halfCycle);
+    this.segments.push(segment);
     const m = this.current;
     m.charge += segment.integral(OUTPUT.lineCurrent);
     m.squaredCurrent += segment.productIntegral(OUTPUT.lineCurrent, OUTPUT.lineCurrent);
