@@ -11,7 +11,8 @@ import type { KnownCircuit } from './circuits.ts';
 
 const CYCLES = 16;
 
-function deck({ sine, lamp }: KnownCircuit): string {
+/** what ngspice reads */
+export function undimmedDeck({ sine, lamp }: KnownCircuit): string {
   const end = CYCLES / sine.frequency;
   return [
     'a lamp on undimmed mains',
@@ -31,7 +32,7 @@ export function recordWithNgspice(circuit: KnownCircuit): PhasePoint[] {
   try {
     const netlist = join(folder, 'deck.cir');
     const raw = join(folder, 'out.raw');
-    writeFileSync(netlist, deck(circuit));
+    writeFileSync(netlist, undimmedDeck(circuit));
     const { status, stderr } = spawnSync('ngspice', ['-b', '-r', raw, netlist], { encoding: 'utf8', timeout: 60_000 });
     if (status !== 0) throw new Error(`ngspice ended with ${status}: ${stderr.slice(-2000)}`);
     const { columns, rows } = readRaw(readFileSync(raw));

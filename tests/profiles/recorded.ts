@@ -18,7 +18,7 @@ export interface Scope extends Sine {
   /** bits over +-400 V and +-0.4 A, 0 for none */
   readonly bits: number;
   readonly range: readonly [number, number];
-  /** share of the fundamental at three times its frequency, in opposite phase at the crest: flat-topped mains */
+  /** share of the fundamental at three times its frequency in the recorded voltage; the current stays that of a pure sine */
   readonly thirdHarmonic: number;
 }
 
