@@ -3,7 +3,14 @@
  * same bits. Expected failures come back as values (failures.ts); a throw is a bug.
  */
 export type { ModelFailure, Outcome } from './failures.ts';
+export { ASSUMABLE_PATHS } from './judgement/assumed/assumable-at.ts';
 export { judgePairing } from './judgement/judge-pairing.ts';
+export { judgeVariants, type Variant } from './judgement/judge-variants.ts';
+export { COLD_FACTOR, MOST_COUNTS } from './judgement/judgement-figures.ts';
+export { judgeCounts } from './judgement/lamp-count.ts';
+export { findRemedies } from './judgement/remedies/find-remedies.ts';
+export { requirementBoundary } from './judgement/requirement.ts';
+export { supplyBand } from './judgement/supply-band.ts';
 export { recordWaveforms } from './observation/waveform-recording.ts';
 export type * from './pairing.ts';
 export { DROP_OUT_ANGLE } from './tolerances.ts';

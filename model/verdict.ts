@@ -128,7 +128,8 @@ export interface AssumedValue {
 }
 
 /** The one assumed value whose measurement would turn an undetermined grade into a sure one. SI. */
-export interface WouldSettle {
+export interface ValueWouldSettle {
+  readonly kind: 'value';
   readonly path: string;
   /** what it is, in words: "the diac's breakover voltage" */
   readonly what: string;
@@ -144,6 +145,25 @@ export interface WouldSettle {
   readonly detail: string;
   /** other assumed values that, changed alone within their range, look as if they flipped the grade too (tried at a few dial positions) */
   readonly alsoOpen: readonly string[];
+}
+
+/** Where a lamp is known only by its class and the class's circuits are judged both ways: what to ask its maker for. */
+export interface CircuitWouldSettle {
+  readonly kind: 'circuit';
+  readonly ask: string;
+  /** one plain sentence */
+  readonly detail: string;
+}
+
+export type WouldSettle = ValueWouldSettle | CircuitWouldSettle;
+
+/** How a pairing is judged with one of the circuits that its lamps may have. */
+export interface VariantGrade {
+  readonly name: string;
+  readonly grade: Grade;
+  readonly decidedBy: CornerName;
+  /** % where conditional, else null */
+  readonly lowestDial: number | null;
 }
 
 /** Work done, part of every result. */
@@ -176,6 +196,8 @@ export interface Judgement {
   readonly decidedBy: CornerName;
   /** null unless an assumed value leaves the grade undetermined */
   readonly wouldSettle: WouldSettle | null;
+  /** the circuits that the lamps may have, where only their class is known, each judged; the rest of the judgement is that of the worst */
+  readonly variants: readonly VariantGrade[];
   readonly counters: Effort;
 }
 

@@ -4,7 +4,7 @@ import { LEAST_STEADY_RANGE } from '../tolerances.ts';
 import type { CornerInputs, DialRow, JudgeOptions } from '../verdict.ts';
 import { atCorner } from './corners.ts';
 import { walkDial } from './dial-visit.ts';
-import { isDecided } from './early-ending.ts';
+import { type Goal, isDecided } from './early-ending.ts';
 import type { EffortTally } from './effort.ts';
 import { TRIAL_POSITIONS } from './judgement-figures.ts';
 
@@ -21,20 +21,21 @@ export function topPositions(positions: readonly number[]): number[] {
   return positions.filter((p) => p > top - LEAST_STEADY_RANGE || p === top);
 }
 
-/** whether the way up through these positions, from rest, is already enough to say that it does not work */
+/** whether the way up through these positions, from rest, is already enough to say that it misses the goal */
 export function failsOnTheWayUp(
   pairing: Pairing,
   corner: CornerInputs,
   options: JudgeOptions,
   positions: readonly number[],
   effort: EffortTally,
+  goal: Goal = 'grade',
 ): boolean {
   const there = atCorner(pairing, corner);
   const rows: DialRow[] = [];
   let failed = false;
   walkDial(there, { ...options, dialPositions: positions }, effort, null, (row) => {
     rows.push(row);
-    failed = isDecided('grade', there, rows, positions);
+    failed = isDecided(goal, there, rows, positions);
     return failed || rows.length === positions.length;
   });
   return failed;

@@ -18,27 +18,29 @@ import { summarize, summarizeCorner } from './summary.ts';
 export function judgePairing(pairing: Pairing, options: JudgeOptions): Outcome<Judgement> {
   const issues = [...checkPairing(pairing), ...checkOptions(options), ...checkJudgeExtras(options)];
   if (issues.length > 0) return { ok: false, failure: { kind: 'invalid-pairing', issues } };
-  const effort = new EffortTally();
+  return { ok: true, value: judgeChecked(pairing, options, new EffortTally()) };
+}
+
+/** for a pairing and options that were checked; `effort` may already hold the work that led to it */
+export function judgeChecked(pairing: Pairing, options: JudgeOptions, effort: EffortTally): Judgement {
   // the nominal corner is the evidence that is shown: always the whole dial
   const rows = visitWholeDial(pairing, options, effort);
   const nominal: JudgedCorner = { corner: nominalOf(pairing), rows, graded: gradeDial(pairing, rows) };
   const over = overCorners(pairing, options, effort, { known: [nominal] });
   const settle = options.corners === 'all' ? wouldSettle(pairing, options, over, effort) : null;
   return {
-    ok: true,
-    value: {
-      grade: settle === null ? over.grade : 'undetermined',
-      summary: settle === null ? summaryOf(pairing, rows, nominal, over) : settle.detail,
-      conditions: settle === null && over.lowestDial !== null ? [lowestDialCondition(over.lowestDial)] : [],
-      reasons: [...nominal.graded.reasons, ...cornerReasons(over)],
-      dial: rows,
-      popOn: nominal.graded.popOn,
-      corners: over.judged.map(cornerResult),
-      sparedCorners: over.spared,
-      decidedBy: over.decisive.corner.name,
-      wouldSettle: settle,
-      counters: effort.total,
-    },
+    grade: settle === null ? over.grade : 'undetermined',
+    summary: settle === null ? summaryOf(pairing, rows, nominal, over) : settle.detail,
+    conditions: settle === null && over.lowestDial !== null ? [lowestDialCondition(over.lowestDial)] : [],
+    reasons: [...nominal.graded.reasons, ...cornerReasons(over)],
+    dial: rows,
+    popOn: nominal.graded.popOn,
+    corners: over.judged.map(cornerResult),
+    sparedCorners: over.spared,
+    decidedBy: over.decisive.corner.name,
+    wouldSettle: settle,
+    variants: [],
+    counters: effort.total,
   };
 }
 

@@ -51,8 +51,14 @@ export const MOST_ADDED_LAMPS = 2;
 
 // --- requirement ----------------------------------------------------------------------------------------------------------------
 
-/** IH/IL along which the boundary is sought, one point each: dense where both currents bind, and down to what data sheets show */
+/** IH/IL along which the boundary is sought, one point each, falling: dense where both currents bind, and down to what data sheets show */
 export const REQUIREMENT_RATIOS: readonly number[] = [1, 0.9, 0.8, 0.7, 0.6, 0.5, 0.45, 0.4, 0.35, 0.3, 0.25, 0.2];
 /** A, latching currents between which the boundary is sought: no triac for a wall dimmer latches below the one or above the other */
 export const LEAST_LATCHING = 1e-3;
 export const MOST_LATCHING = 1;
+/** factor between the latching currents first tried on a ratio that no other gives a hint for */
+export const LADDER_RATIO = 4;
+/** a point is found once the smallest current known to fail is within this factor of it: finer than such currents are ever stated */
+export const REQUIREMENT_RATIO = 1.01;
+/** share of a point's currents at which it is checked that smaller ones do as well */
+export const PROBE_BELOW = 0.5;

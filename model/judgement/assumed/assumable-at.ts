@@ -16,6 +16,12 @@ export interface OpenValue {
 
 const LAMP_PATH = /^lamps\[(\d+)\]\.(lamp\..+)$/;
 
+/** every path that is looked at, the lamp's with `[]` for the index of its group */
+export const ASSUMABLE_PATHS: readonly string[] = [
+  ...Object.keys(ASSUMABLE_OF_DIMMER),
+  ...Object.keys(ASSUMABLE_OF_LAMP).map((path) => `lamps[].${path}`),
+];
+
 function lookUp(path: string): { readonly about: Assumable; readonly group: number } | null {
   const [, group, inLamp] = LAMP_PATH.exec(path) ?? [];
   const about = inLamp === undefined ? ASSUMABLE_OF_DIMMER[path] : ASSUMABLE_OF_LAMP[inLamp];

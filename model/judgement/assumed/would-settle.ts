@@ -4,7 +4,7 @@
  * trying a few dial positions first: an upset on a narrow part of the dial can go unnoticed.
  */
 import type { Pairing } from '../../pairing.ts';
-import type { CornerInputs, Grade, JudgeOptions, WouldSettle } from '../../verdict.ts';
+import type { CornerInputs, Grade, JudgeOptions, ValueWouldSettle } from '../../verdict.ts';
 import { failsOnTheWayUp, topPositions, trialPositions } from '../dial-trial.ts';
 import type { EffortTally } from '../effort.ts';
 import { RANKING_HALVINGS, SETTLING_HALVINGS, SURE_TRIES } from '../judgement-figures.ts';
@@ -21,15 +21,16 @@ interface Flip {
 /** part of the way from the assumed value to the end */
 const along = ({ value, end }: Flip, share: number): number => value.assumed + (end - value.assumed) * share;
 
-/** degrees of the mains' half-cycle during which the triac no longer conducts, where that is most: how near a corner is to a drop-out */
-function idleTail({ rows }: JudgedCorner): number {
-  return Math.max(0, ...rows.map((r) => 180 - (r.firingAngle ?? 180) - (r.conductionAngle ?? 0)));
+/** smallest relative change of a current or voltage that would have brought another outcome about somewhere on the dial */
+function nearness({ rows }: JudgedCorner): number {
+  const margins = rows.flatMap((r) => [r.margins.latching, r.margins.holding, r.margins.breakover]).filter((m) => m !== null);
+  return Math.min(Number.POSITIVE_INFINITY, ...margins);
 }
 
-/** the corner at which a changed value is tried: the one that decides, or of several good ones the one nearest to a drop-out */
+/** the corner at which a changed value is tried: the one that decides, or of several good ones the one nearest to another outcome */
 function cornerToTry({ grade, decisive, judged }: OverCorners): CornerInputs {
   if (!isWorkable(grade)) return decisive.corner;
-  return judged.reduce((a, b) => (idleTail(b) > idleTail(a) ? b : a)).corner;
+  return judged.reduce((a, b) => (nearness(b) < nearness(a) ? b : a)).corner;
 }
 
 class Settling {
@@ -104,7 +105,7 @@ function nearestSureFlip(settling: Settling, values: readonly OpenValue[]): { fl
   return null;
 }
 
-export function wouldSettle(pairing: Pairing, options: JudgeOptions, base: OverCorners, effort: EffortTally): WouldSettle | null {
+export function wouldSettle(pairing: Pairing, options: JudgeOptions, base: OverCorners, effort: EffortTally): ValueWouldSettle | null {
   const values = (options.assumed ?? []).map((a) => openValue(pairing, a)).filter((v) => v !== null);
   if (values.length === 0 || base.grade === 'undetermined') return null;
   const settling = new Settling(base, options, effort);
@@ -118,6 +119,7 @@ export function wouldSettle(pairing: Pairing, options: JudgeOptions, base: OverC
   const [gradeBelow, gradeAbove] = upward ? [base.grade, beyond] : [beyond, base.grade];
   const [runs, fails] = isWorkable(gradeAbove) ? ['above', 'below'] : ['below', 'above'];
   return {
+    kind: 'value',
     path,
     what: about.what,
     assumed,
