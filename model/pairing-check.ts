@@ -41,6 +41,7 @@ class Checks {
 function checkLamp(c: Checks, path: string, lamp: Lamp): void {
   const { input, load } = lamp;
   c.notNegative(`${path}.input.seriesResistance`, input.seriesResistance);
+  c.notNegative(`${path}.input.seriesCapacitance`, input.seriesCapacitance);
   c.notNegative(`${path}.input.inductance`, input.inductance);
   if (input.inductorLoss !== null) c.positive(`${path}.input.inductorLoss`, input.inductorLoss);
   c.notNegative(`${path}.input.capacitance`, input.capacitance);

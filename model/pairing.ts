@@ -105,6 +105,8 @@ export interface Lamp {
 
 export interface LampInput {
   readonly seriesResistance: number;
+  /** in series behind the series resistor, before everything else (a capacitive dropper), 0 when absent */
+  readonly seriesCapacitance: number;
   readonly inductance: number;
   readonly inductorLoss: number | null;
   readonly capacitance: number;

@@ -13,6 +13,9 @@ export const RESERVOIR_LEAKAGE = 1e9;
 export const LEAST_RESISTANCE = 1e-3;
 /** Ohm, stands for an absent ("null") inductor loss where two inductors would meet with nothing else at the node. Larger only stiffens. */
 export const ABSENT_LOSS = 1e6;
+/** Ohm, across a capacitor in series with a lamp: its discharge resistor (470 kOhm to 1 MOhm, from memory). Without one the charge left
+ * on it would never go, and a bridge that blocks both ways would make it a pure integrator */
+export const DROPPER_DISCHARGE = 1e6;
 /** V, both diodes of a bridge together (common practice, 0.7 V each) */
 export const BRIDGE_DROP = 1.4;
 /** F, at the input of a lamp whose curve falls and that has no input capacitor: a falling curve without any capacitance has several
@@ -87,6 +90,9 @@ export const DROP_OUT_ANGLE = 30;
 export const OWN_CURRENT_SHARE = 0.05;
 /** step in which the end of the lamps' own current is looked for, degrees: well under any sensible drop-out angle */
 export const OWN_CURRENT_STEP = 0.5;
+/** degrees after the first angle that can be no early end within which the lamps' own end is still looked for, so that the margin there
+ * is not judged from 180 degrees */
+export const OWN_END_DOUBT = 5;
 /** largest modulation (max - min)/(max + min) of half-cycle energy within one polarity. Modulation at a quarter of twice the mains
  * frequency (25 or 30 Hz: every second full cycle differs) that gives a short-term flicker value PstLM of 1 (IEC TR 61547-1 filter,
  * for light that follows power without storage) */

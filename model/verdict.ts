@@ -14,7 +14,8 @@ export type Sweep = 'up' | 'down';
 export interface Margins {
   /** latching current: peak current in a gate pulse against it */
   readonly latching: number | null;
-  /** holding current, or turn-off time: lowest current before the final decline, longest passage below it, or what an opened triac lacked */
+  /** holding current, or turn-off time: lowest current before the final decline against it, longest passage below it against
+   * the turn-off time, or the current at the moment from which an end of conduction is no longer early */
   readonly holding: number | null;
   /** breakover voltage: peak timing voltage in a silent half-cycle against it */
   readonly breakover: number | null;

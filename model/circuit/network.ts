@@ -8,7 +8,7 @@
  * Each state is scaled to the square root of its energy (x = v sqrt(C), x = i sqrt(L)), so that one norm serves all of them.
  */
 import type { DiacDrive, LampGroup, Pairing } from '../pairing.ts';
-import { ABSENT_LOSS, LEAST_RESISTANCE, LINE_LEAKAGE, STRAY_CAPACITANCE } from '../tolerances.ts';
+import { ABSENT_LOSS, DROPPER_DISCHARGE, LEAST_RESISTANCE, LINE_LEAKAGE, STRAY_CAPACITANCE } from '../tolerances.ts';
 import { bleederCurve, type Curve, curveFalls, drainCurve, largerCurve, resistorCurve, tableCurve } from './lamp-curve.ts';
 
 /** node numbers; NEUTRAL is the reference and is not solved for */
@@ -143,6 +143,15 @@ class Layout {
     if (capacitance > 0) this.capacitors.push({ a, b, capacitance, resistance: atLeast(resistance), state: this.state(capacitance) });
   }
 
+  /** capacitor with its discharge resistor from a to a new node, which is returned; no capacitance: a itself */
+  dropperFrom(a: number, capacitance: number, discharge: number): number {
+    if (capacitance === 0) return a;
+    const b = this.node();
+    this.capacitor(a, b, capacitance);
+    this.conductor(a, b, discharge);
+    return b;
+  }
+
   /** inductor with parallel loss from a to a new node, which is returned; no inductance: a itself */
   inductorFrom(a: number, inductance: number, loss: number | null): number {
     if (inductance === 0) return a;
@@ -177,7 +186,8 @@ function layGroup(
   const n = group.count;
   const to = layout.node();
   layout.conductor(line, to, input.seriesResistance / n);
-  const node = layout.inductorFrom(to, input.inductance / n, input.inductorLoss === null ? null : input.inductorLoss / n);
+  const behind = layout.dropperFrom(to, input.seriesCapacitance * n, DROPPER_DISCHARGE / n);
+  const node = layout.inductorFrom(behind, input.inductance / n, input.inductorLoss === null ? null : input.inductorLoss / n);
   const curve = staticCurve(group);
   const stray = load.kind !== 'reservoir' && curve !== null && curveFalls(curve) ? STRAY_CAPACITANCE : 0;
   layout.capacitor(node, NEUTRAL, Math.max(input.capacitance, stray) * n);

@@ -4,11 +4,12 @@
  */
 import type { DimmerRun, SegmentListener } from '../engine/dimmer-run.ts';
 import type { HalfCycle } from '../engine/half-cycle.ts';
+import { Segment } from '../engine/segment.ts';
 import { RepeatWatch } from '../engine/settling.ts';
 import { DROP_OUT_ANGLE, OBSERVE_HALF_CYCLES, SETTLE_HALF_CYCLES } from '../tolerances.ts';
 import type { Margins } from '../verdict.ts';
 import { HalfCycleMeasures, type Measures } from './half-cycle-measures.ts';
-import { closestMargins, MarginWatch } from './margins.ts';
+import { MarginWatch } from './margins.ts';
 import { OwnCurrentEnd } from './own-current-end.ts';
 
 export interface ObservedHalfCycle {
@@ -24,6 +25,8 @@ export interface DialObservation {
   /** period of the pattern in half-cycles, null where it did not repeat */
   readonly repeatsAfter: number | null;
   readonly settled: number;
+  /** least breakover margin of the silent half-cycles that were not observed, null where there were none */
+  readonly breakoverWhileSettling: number | null;
 }
 
 export interface ObservationPlan {
@@ -65,9 +68,26 @@ export class DialObserver {
     watch.reset();
     let settled = 0;
     let period = 0;
+    let settling: number | null = null;
+    let segments: Segment[] | null = [];
+    const collect: SegmentListener = {
+      segment(mode, coordinates, start, duration, halfCycle) {
+        segments?.push(new Segment(mode, coordinates, start, duration, halfCycle));
+      },
+    };
     while (period === 0 && settled < this.plan.settle) {
+      // while nothing fires, how near it came counts from the first half-cycle on: the start is when the timing voltage swings widest
+      run.segmentListener = segments === null ? null : collect;
       const { outcome, record } = run.finishHalfCycle();
-      if (outcome === 'undecided') return { outcome: 'undecided', halfCycles: [], repeatsAfter: null, settled };
+      run.segmentListener = null;
+      if (outcome === 'undecided')
+        return { outcome: 'undecided', halfCycles: [], repeatsAfter: null, settled, breakoverWhileSettling: null };
+      const silent = record.firings.length === 0 && record.conduction === 0;
+      if (silent && segments !== null) {
+        const margin = this.margins.breakover(segments);
+        if (margin !== null) settling = Math.min(settling ?? margin, margin);
+      }
+      segments = silent ? [] : null;
       settled++;
       run.state(watch.slot);
       period = watch.note(record);
@@ -86,9 +106,10 @@ export class DialObserver {
       while (observed.length < (period > 0 ? wholePattern(period) : this.plan.observe)) {
         this.measures.begin();
         const { outcome, record } = run.finishHalfCycle();
-        if (outcome === 'undecided') return { outcome: 'undecided', halfCycles: [], repeatsAfter: null, settled };
-        const early = this.ownEnd.earlyDropOuts(record);
-        const margins = closestMargins([this.margins.close(record, this.measures.segments), early.margins]);
+        if (outcome === 'undecided')
+          return { outcome: 'undecided', halfCycles: [], repeatsAfter: null, settled, breakoverWhileSettling: null };
+        const early = this.ownEnd.earlyEnds(record);
+        const margins = this.margins.close(record, this.measures.segments, early);
         observed.push({ record, measures: this.measures.current, earlyDropOuts: early.count, margins });
         if (period > 0) continue;
         run.state(watch.slot);
@@ -106,6 +127,7 @@ export class DialObserver {
       halfCycles: kept,
       repeatsAfter: period > 0 ? period : null,
       settled: settled + observed.length - kept.length,
+      breakoverWhileSettling: settling,
     };
   }
 }

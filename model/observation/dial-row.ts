@@ -33,7 +33,10 @@ export function dialRow(
   const firstAngles = lit.map((h) => h.record.firings[0] as number);
   const time = halfCycles.length * halfPeriod || 1;
   const sum = (pick: (h: ObservedHalfCycle) => number): number => halfCycles.reduce((total, h) => total + pick(h), 0);
-  const margins = closestMargins(halfCycles.map((h) => h.margins));
+  const margins = closestMargins([
+    ...halfCycles.map((h) => h.margins),
+    { latching: null, holding: null, breakover: observation.breakoverWhileSettling },
+  ]);
   const measured = {
     firings: {
       min: counts.length === 0 ? 0 : Math.min(...counts),

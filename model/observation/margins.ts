@@ -10,6 +10,7 @@ import type { Segment } from '../engine/segment.ts';
 import type { Dimmer } from '../pairing.ts';
 import { DIP_RECOVERY, DIP_SAMPLES } from '../tolerances.ts';
 import type { Margins } from '../verdict.ts';
+import type { EarlyEnds } from './own-current-end.ts';
 
 interface Span {
   readonly from: number;
@@ -62,10 +63,10 @@ export class MarginWatch implements TriacListener {
   }
 
   /** the margins of the half-cycle that has just ended, from its segments; null where the question did not arise */
-  close(record: HalfCycle, segments: readonly Segment[]): Margins {
+  close(record: HalfCycle, segments: readonly Segment[], early: EarlyEnds): Margins {
     const margins: Margins = {
       latching: this.latching(segments),
-      holding: this.holding(segments),
+      holding: this.holding(segments, early),
       breakover: record.firings.length === 0 && record.conduction === 0 ? this.breakover(segments) : null,
     };
     this.gates = [];
@@ -95,7 +96,7 @@ export class MarginWatch implements TriacListener {
     return closest;
   }
 
-  private holding(segments: readonly Segment[]): number | null {
+  private holding(segments: readonly Segment[], early: EarlyEnds): number | null {
     const { turnOffTime } = this.dimmer;
     let closest: number | null = null;
     const offer = (margin: number): void => {
@@ -103,7 +104,17 @@ export class MarginWatch implements TriacListener {
     };
     for (const e of this.excursions) if (turnOffTime > 0) offer(1 - (e.to - e.from) / turnOffTime);
     for (const dip of this.dips(segments)) offer(dip - 1);
+    if (early.lacking !== null) offer(1 - early.lacking);
+    else if (early.earlyUntil !== null) offer(this.currentAt(segments, early.earlyUntil - turnOffTime) - 1);
     return closest;
+  }
+
+  /** triac current at a moment of the half-cycle, as a multiple of the holding current */
+  private currentAt(segments: readonly Segment[], time: number): number {
+    const { holdingCurrent } = this.dimmer;
+    const segment = segments.find((s) => time >= s.start && time <= s.start + s.duration);
+    const current = segment?.value(OUTPUT.triacCurrent, time - segment.start) ?? 0;
+    return current >= 0 ? current / holdingCurrent.positive : -current / holdingCurrent.negative;
   }
 
   /** lowest currents from which the current recovered, as multiples of the holding current, outside gate pulses and excursions */
@@ -112,9 +123,16 @@ export class MarginWatch implements TriacListener {
     const found: number[] = [];
     let lowest = Number.POSITIVE_INFINITY;
     let lowestAt: Dip | null = null;
+    // after a passage below the holding current the current has to come down again first; after a gate pulse it may dip from the start
+    let highest = Number.POSITIVE_INFINITY;
+    const startOver = (afterGate: boolean): void => {
+      lowest = Number.POSITIVE_INFINITY;
+      lowestAt = null;
+      highest = afterGate ? Number.POSITIVE_INFINITY : 0;
+    };
     for (const segment of segments) {
       if (segment.mode.configuration.triac === 'open') {
-        lowest = Number.POSITIVE_INFINITY;
+        startOver(true);
         continue;
       }
       const current = segment.reader(OUTPUT.triacCurrent);
@@ -124,27 +142,29 @@ export class MarginWatch implements TriacListener {
         const time = segment.start + s;
         const amperes = current(s);
         const sign = amperes >= 0 ? 1 : -1;
-        const ratio = Math.abs(amperes) / (sign === 1 ? holdingCurrent.positive : holdingCurrent.negative);
+        const limit = sign === 1 ? holdingCurrent.positive : holdingCurrent.negative;
+        const ratio = Math.abs(amperes) / limit;
         const inGate = this.gates.some((g) => time >= g.from && time < g.to) || (this.gateSince !== null && time >= this.gateSince);
         if (ratio < 1 || inGate) {
-          lowest = Number.POSITIVE_INFINITY;
+          startOver(inGate);
           continue;
         }
-        if (ratio < lowest) {
+        highest = Math.max(highest, ratio);
+        if (ratio * DIP_RECOVERY < highest && ratio < lowest) {
           lowest = ratio;
           lowestAt = { segment, from: times[k - 1] ?? 0, to: times[k + 1] ?? segment.duration, sign };
         } else if (lowestAt !== null && ratio > lowest * DIP_RECOVERY) {
-          const limit = lowestAt.sign === 1 ? holdingCurrent.positive : holdingCurrent.negative;
           found.push(refined(lowestAt, lowest * limit) / limit);
-          lowest = ratio;
-          lowestAt = null;
+          startOver(false);
+          highest = ratio;
         }
       }
     }
     return found;
   }
 
-  private breakover(segments: readonly Segment[]): number | null {
+  /** the breakover margin of a silent half-cycle */
+  breakover(segments: readonly Segment[]): number | null {
     const { drive, wiring } = this.dimmer;
     if (drive.kind !== 'diac') return null;
     const orientation = wiring === 'two-wire' ? 1 : -1;

@@ -7,10 +7,17 @@ import { triacKnee } from '../circuit/mode-system.ts';
 import { DimmerRun, type OpeningListener } from '../engine/dimmer-run.ts';
 import type { HalfCycle } from '../engine/half-cycle.ts';
 import { Segment } from '../engine/segment.ts';
-import { OWN_CURRENT_SHARE, OWN_CURRENT_STEP } from '../tolerances.ts';
-import type { Margins } from '../verdict.ts';
+import { OWN_CURRENT_SHARE, OWN_CURRENT_STEP, OWN_END_DOUBT } from '../tolerances.ts';
 
-const NO_MARGINS: Margins = { latching: null, holding: null, breakover: null };
+/** early ends of one half-cycle's conductions */
+export interface EarlyEnds {
+  readonly count: number;
+  /** s into the half-cycle: the last moment at which an opening of the last conduction would have been early (at the latest, where the
+   * lamps' own end was not looked for); null where nothing conducted */
+  readonly earlyUntil: number | null;
+  /** current at that moment, as a multiple of the holding current, where the triac was open by then */
+  readonly lacking: number | null;
+}
 
 export class OwnCurrentEnd implements OpeningListener {
   private readonly ideal: DimmerRun;
@@ -31,42 +38,45 @@ export class OwnCurrentEnd implements OpeningListener {
     this.ideal.takeOver(run);
   }
 
-  /** this half-cycle's conductions that ended early, and how near the last of them was to going on; to be called once it is over */
-  earlyDropOuts(record: HalfCycle): { readonly count: number; readonly margins: Margins } {
+  /** this half-cycle's conductions that ended early; to be called once it is over */
+  earlyEnds(record: HalfCycle): EarlyEnds {
     const { ends, firings } = record;
     // whatever was followed by another firing dropped out
     const refired = Math.max(0, Math.min(ends.length, firings.length - 1));
     const last = ends[ends.length - 1];
-    if (last === undefined || this.openedIn !== record.index || last > 180 - this.dropOutAngle || ends.length === refired) {
-      return { count: refired, margins: NO_MARGINS };
+    if (last === undefined || this.openedIn !== record.index || last > 180 - this.dropOutAngle + OWN_END_DOUBT || ends.length === refired) {
+      // an end after that angle is not early, wherever the lamps' own end lies
+      const asked = last !== undefined && ends.length > refired;
+      return { count: refired, earlyUntil: asked ? (1 - this.dropOutAngle / 180) * this.ideal.halfPeriod : null, lacking: null };
     }
-    const { end, holding } = this.runOn(last);
-    if (end - last <= this.dropOutAngle) return { count: refired, margins: NO_MARGINS };
-    return { count: refired + 1, margins: { ...NO_MARGINS, holding } };
+    const { ideal } = this;
+    const sign = ideal.index % 2 === 0 ? 1 : -1;
+    const currents = this.ownCurrent(sign);
+    const least = OWN_CURRENT_SHARE * triacKnee(ideal.dimmer);
+    const opened = (last / 180) * ideal.halfPeriod;
+    const end = currents.findLast((c) => c.current > least)?.time ?? opened;
+    const earlyUntil = end - (this.dropOutAngle / 180) * ideal.halfPeriod;
+    if (earlyUntil <= opened) return { count: refired, earlyUntil: Math.max(0, earlyUntil), lacking: null };
+    const limit = sign === 1 ? ideal.dimmer.holdingCurrent.positive : ideal.dimmer.holdingCurrent.negative;
+    // the triac opens the turn-off time after its current fell below
+    const then = currents.find((c) => c.time >= earlyUntil - ideal.dimmer.turnOffTime)?.current ?? 0;
+    return { count: refired + 1, earlyUntil, lacking: then / limit };
   }
 
-  /** runs on from the opening: where the lamps' own current ends, degrees, and by how much a lower holding current would have held */
-  private runOn(opened: number): { readonly end: number; readonly holding: number | null } {
+  /** runs on from the opening with the switch closed: the current in the mains' direction, sampled to the end of the half-cycle */
+  private ownCurrent(sign: 1 | -1): { readonly time: number; readonly current: number }[] {
     const { ideal } = this;
-    const { holdingCurrent } = ideal.dimmer;
-    const sign = ideal.index % 2 === 0 ? 1 : -1;
-    const limit = sign === 1 ? holdingCurrent.positive : holdingCurrent.negative;
-    const least = OWN_CURRENT_SHARE * triacKnee(ideal.dimmer);
     const step = (OWN_CURRENT_STEP / 180) * ideal.halfPeriod;
-    let end = (opened / 180) * ideal.halfPeriod;
-    let most = 0;
+    const currents: { time: number; current: number }[] = [];
     ideal.segmentListener = {
       segment(mode, coordinates, start, duration, halfCycle) {
-        const segment = new Segment(mode, coordinates, start, duration, halfCycle);
-        most = segment.largest(OUTPUT.triacCurrent, sign, most);
-        const current = segment.reader(OUTPUT.triacCurrent);
+        const current = new Segment(mode, coordinates, start, duration, halfCycle).reader(OUTPUT.triacCurrent);
         for (let at = Math.ceil(start / step) * step; at < start + duration; at += step) {
-          if (sign * current(at - start) > least) end = at;
+          currents.push({ time: at, current: sign * current(at - start) });
         }
       },
     };
     ideal.finishHalfCycle();
-    // a later current above the holding current is a matter of the turn-off time, which this does not measure
-    return { end: (end / ideal.halfPeriod) * 180, holding: most <= limit ? 1 - most / limit : null };
+    return currents;
   }
 }

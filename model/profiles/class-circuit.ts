@@ -40,7 +40,16 @@ export const between = (from: number, to: number, place: number): number => from
 export const betweenRatios = (from: number, to: number, place: number): number => from * (to / from) ** place;
 
 export function inputWith(parts: Partial<LampInput>): LampInput {
-  return { seriesResistance: 22, inductance: 0, inductorLoss: null, capacitance: 0, damper: null, bleeder: null, ...parts };
+  return {
+    seriesResistance: 22,
+    seriesCapacitance: 0,
+    inductance: 0,
+    inductorLoss: null,
+    capacitance: 0,
+    damper: null,
+    bleeder: null,
+    ...parts,
+  };
 }
 
 /** 4.7 mH and about 1 kOhm of core loss for each mH: the largest usual interference inductor */

@@ -8,6 +8,7 @@ import { CORRECTED_CONVERTER } from './class-corrected-converter.ts';
 import { FILAMENT } from './class-filament.ts';
 import { LINEAR_STRING } from './class-linear-string.ts';
 import { RESERVOIR_DRIVER } from './class-reservoir-driver.ts';
+import { SERIES_CAPACITOR_DROPPER } from './class-series-capacitor-dropper.ts';
 import { LAMP_CLASSES, type LampClass } from './lamp-class.ts';
 import { type ProfileOutcome, refused } from './profile-failures.ts';
 import { CLASS_POWER_TOLERANCE, POWER_FACTOR_ABOVE, POWER_FACTOR_BELOW, RANGE_PLACES, SCALE_ROUNDS } from './profile-tolerances.ts';
@@ -37,11 +38,11 @@ export interface ClassLamps {
   readonly candidates: readonly ClassCandidate[];
 }
 
-const RANGES: { readonly [name in LampClass]: ClassRange | null } = {
+const RANGES: { readonly [name in LampClass]: ClassRange } = {
   'reservoir-driver': RESERVOIR_DRIVER,
   'corrected-converter': CORRECTED_CONVERTER,
   'linear-string': LINEAR_STRING,
-  'series-capacitor-dropper': null,
+  'series-capacitor-dropper': SERIES_CAPACITOR_DROPPER,
   filament: FILAMENT,
 };
 
@@ -83,12 +84,6 @@ export function lampsOfClass(asked: ClassLamp): ProfileOutcome<ClassLamps> {
   if (issues.length > 0) return refused({ kind: 'invalid-profile', detail: 'The class cannot be worked out as given.', issues });
   const { lampClass, powerFactor } = asked;
   const range = RANGES[lampClass];
-  if (range === null) {
-    const detail =
-      'A series-capacitor dropper has a capacitor in series before its bridge, which the simulated circuit does not have; a capacitor across the ' +
-      'input and a resistor in its place would hide the inrush at the firing and the reversal after the crest, on which the verdict turns.';
-    return refused({ kind: 'class-not-representable', detail, lampClass });
-  }
   const evenly = Array.from({ length: RANGE_PLACES }, (_, k) => k / (RANGE_PLACES - 1));
   const met: ClassCandidate[] = [];
   const candidates = range.circuits.flatMap((circuit) => {

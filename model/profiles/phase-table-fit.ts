@@ -45,7 +45,15 @@ export interface ProfileFit {
 const rounded = (value: number): number => Number(value.toPrecision(FITTED_DIGITS));
 
 function inputOf(seriesResistance: number, capacitance: number): LampInput {
-  return { seriesResistance, inductance: 0, inductorLoss: null, capacitance: rounded(capacitance), damper: null, bleeder: null };
+  return {
+    seriesResistance,
+    seriesCapacitance: 0,
+    inductance: 0,
+    inductorLoss: null,
+    capacitance: rounded(capacitance),
+    damper: null,
+    bleeder: null,
+  };
 }
 
 const NOT_IN_RECORD = 'an undimmed record cannot show it: as given, or the default';

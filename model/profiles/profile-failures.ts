@@ -9,7 +9,6 @@ export type ProfileFailure =
       readonly detail: string;
       readonly issues: readonly { readonly path: string; readonly message: string }[];
     }
-  | { readonly kind: 'class-not-representable'; readonly detail: string; readonly lampClass: LampClass }
   /** no circuit of the class has the stated power factor; `range` is what the class's circuits have */
   | {
       readonly kind: 'class-does-not-fit';

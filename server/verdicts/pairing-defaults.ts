@@ -70,7 +70,12 @@ export const RATINGS_DEFAULTS = {
 export const DRIVE_KIND_DEFAULT = always<'diac' | 'timed'>('diac', 'the usual drive of a rotary dimmer');
 
 export const DIAC_DEFAULTS = {
-  fixedResistance_kOhm: { at230: 6.8, at120: 3.3, basis: GENERIC },
+  fixedResistance_kOhm: {
+    at230: 22,
+    at120: 10,
+    basis:
+      'from memory; leaves a gap of about 24 degrees at full dial, as is common practice, so that no dimmer fires again just before the zero crossing',
+  },
   potentiometer_kOhm: { at230: 330, at120: 150, basis: GENERIC },
   capacitance_nF: always(100, GENERIC),
   breakover_V: always(32, 'nominal breakover of the common diac, from memory'),

@@ -89,6 +89,7 @@ function lampToModel({ ratedPower_W, input, load }: JudgedLamp): model.Lamp {
     ratedPower: ratedPower_W,
     input: {
       seriesResistance: input.seriesResistance_Ohm,
+      seriesCapacitance: 0,
       inductance: milli(input.inductance_mH),
       inductorLoss: orNull(input.inductorLoss_kOhm, kilo),
       capacitance: nano(input.capacitance_nF),

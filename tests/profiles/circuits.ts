@@ -32,6 +32,21 @@ export const staticCircuits: readonly KnownCircuit[] = [
   },
 ];
 
+export const dropperCircuits: readonly KnownCircuit[] = [
+  {
+    name: 'a series capacitor of 1 uF before a string of 80 V at 230 V',
+    sine: at230,
+    lamp: table(
+      [
+        [0, 0],
+        [76, 0],
+        [84, 0.1],
+      ],
+      { seriesResistance: 100, seriesCapacitance: 1e-6 },
+    ),
+  },
+];
+
 export const reservoirCircuits: readonly KnownCircuit[] = [
   { name: 'an 8 W reservoir lamp of 4.7 uF at 230 V', sine: at230, lamp: reservoir(8, 4.7e-6, 50, { capacitance: 22e-9 }) },
   {

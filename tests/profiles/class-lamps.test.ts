@@ -8,7 +8,7 @@ const supplies = [
   { voltage: 230, frequency: 50 },
   { voltage: 120, frequency: 60 },
 ];
-const classes: readonly LampClass[] = ['reservoir-driver', 'corrected-converter', 'linear-string', 'filament'];
+const classes: readonly LampClass[] = ['reservoir-driver', 'corrected-converter', 'linear-string', 'series-capacitor-dropper', 'filament'];
 
 function asked(lampClass: LampClass, change: Partial<ClassLamp> = {}): ClassLamp {
   return { lampClass, power: 8, powerFactor: null, voltage: 230, frequency: 50, ...change };
@@ -95,11 +95,4 @@ test('a rating that cannot be worked with is named', () => {
 
 test('the same class gives the same bits twice', () => {
   expect(JSON.stringify(spanned(asked('reservoir-driver')))).toBe(JSON.stringify(spanned(asked('reservoir-driver'))));
-});
-
-test('a series-capacitor dropper is refused with the reason', () => {
-  expect(refusal(asked('series-capacitor-dropper'))).toMatchObject({
-    kind: 'class-not-representable',
-    detail: expect.stringContaining('in series before its bridge'),
-  });
 });

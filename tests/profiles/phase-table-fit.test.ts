@@ -6,7 +6,7 @@ import { fitPhaseTable, type ProfileFit } from '../../model/profiles/phase-table
 import { RESIDUAL_LIMIT } from '../../model/profiles/profile-tolerances.ts';
 import { runUndimmed } from '../../model/profiles/undimmed-lamp.ts';
 import { ngspiceVersion } from '../ngspice/run.ts';
-import { type KnownCircuit, reservoirCircuits, staticCircuits } from './circuits.ts';
+import { dropperCircuits, type KnownCircuit, reservoirCircuits, staticCircuits } from './circuits.ts';
 import { frozenTable } from './frozen.ts';
 import { recordWithNgspice } from './ngspice-record.ts';
 
@@ -78,7 +78,7 @@ describe('a phase table recorded by ngspice (frozen)', () => {
   });
 
   test('is met at its own points by the undimmed run of this model', () => {
-    for (const circuit of [...staticCircuits, ...reservoirCircuits]) {
+    for (const circuit of [...staticCircuits, ...reservoirCircuits, ...dropperCircuits]) {
       const table = frozenTable(circuit);
       const run = runUndimmed(circuit.lamp, circuit.sine);
       if (run === null) throw new Error('does not run');
@@ -98,6 +98,10 @@ describe.skipIf(missing)(missing ? 'skipped: the program ngspice is not installe
   test.each(reservoirCircuits.slice(0, 1))('gives $name back within 5 %', (circuit) => {
     expectReservoir(circuit, { ...circuit.sine, points: recordWithNgspice(circuit) });
   });
+});
+
+test('a series capacitor is refused as a phase table: no form that is fitted has one', () => {
+  expect(refusal(frozenTable(dropperCircuits[0] as KnownCircuit))).toMatchObject({ kind: 'residual-too-large' });
 });
 
 describe('the residual', () => {

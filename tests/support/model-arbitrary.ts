@@ -121,6 +121,7 @@ const bleeders: fc.Arbitrary<Bleeder> = fc.oneof(
 
 const inputs: fc.Arbitrary<LampInput> = fc.record({
   seriesResistance: logarithmic(0.1, 220),
+  seriesCapacitance: orZero(logarithmic(0.22e-6, 4.7e-6)),
   inductance: orZero(logarithmic(0.1e-3, 10e-3)),
   inductorLoss: orNull(logarithmic(1e3, 50e3)),
   capacitance: orZero(logarithmic(1e-9, 470e-9)),
@@ -159,20 +160,21 @@ const loads: fc.Arbitrary<Load> = fc.oneof(
 const lamps: fc.Arbitrary<Lamp> = fc.record({ ratedPower: fc.constant(null), input: inputs, load: loads });
 
 /**
- * As lamps are built: what draws through a bridge has some ohms before it, an input inductor has a core that loses something and a film
- * capacitor behind it. Without these a valid lamp can still be an oscillator (a falling curve that an inductor feeds), which no event
+ * As lamps are built: what draws through a bridge has some ohms before it, an input inductor has a core that loses something and, as
+ * an active bleeder, a film capacitor behind it. Without these a valid lamp can still be an oscillator (a falling curve that an inductor feeds), which no event
  * budget follows to its end.
  */
 function asBuilt(lamp: Lamp): Lamp {
   const { input } = lamp;
-  const bridged = lamp.load.kind !== 'resistive' || input.bleeder?.kind === 'active';
+  const active = input.bleeder?.kind === 'active';
+  const bridged = lamp.load.kind !== 'resistive' || active;
   return {
     ...lamp,
     input: {
       ...input,
       seriesResistance: bridged ? Math.max(input.seriesResistance, 4.7) : input.seriesResistance,
       inductorLoss: input.inductance > 0 ? (input.inductorLoss ?? 5e3) : input.inductorLoss,
-      capacitance: input.inductance > 0 && bridged ? Math.max(input.capacitance, 10e-9) : input.capacitance,
+      capacitance: active || (input.inductance > 0 && bridged) ? Math.max(input.capacitance, 10e-9) : input.capacitance,
     },
   };
 }

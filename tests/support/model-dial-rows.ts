@@ -24,6 +24,10 @@ export function dialRow(position: number, change: Partial<DialRow> = {}): DialRo
     peakCurrent: 0.5,
     dcCurrent: 0,
     diacStuck: false,
+    margins: { latching: null, holding: null, breakover: null },
+    nearEdge: false,
+    margins: { latching: null, holding: null, breakover: null },
+    nearEdge: false,
     ...change,
   };
 }

@@ -90,7 +90,15 @@ export function idealDimmer(change: Partial<Dimmer> = {}): Dimmer {
   });
 }
 
-const bareInput: LampInput = { seriesResistance: 1e-3, inductance: 0, inductorLoss: null, capacitance: 0, damper: null, bleeder: null };
+const bareInput: LampInput = {
+  seriesResistance: 1e-3,
+  seriesCapacitance: 0,
+  inductance: 0,
+  inductorLoss: null,
+  capacitance: 0,
+  damper: null,
+  bleeder: null,
+};
 
 /** a lamp with nothing before its load but a milliohm */
 export const bareLamp = (load: Load, input: Partial<LampInput> = {}): Lamp => ({
