@@ -7,7 +7,9 @@ import Fastify, { type FastifyBaseLogger, type FastifyInstance, type RawServerDe
 import type { ZodTypeProvider } from 'fastify-type-provider-zod';
 import type { EntryStore } from '../db/entries.ts';
 import type { EntrySearch } from '../db/entry-search.ts';
+import type { ImportStaging } from '../db/import-staging.ts';
 import type { VerdictStore } from '../db/verdicts.ts';
+import type { ImportLimits } from './imports/import-limits.ts';
 import { createMetrics } from './metrics.ts';
 import { documentCalls } from './plugins/call-documents.ts';
 import { countRequests } from './plugins/request-counting.ts';
@@ -19,6 +21,7 @@ import { clientErrorText, replyToError, sendProblem } from './problem-replies.ts
 import { entryRoutes } from './routes/entries.ts';
 import { entryListRoutes } from './routes/entry-lists.ts';
 import { healthRoutes } from './routes/health.ts';
+import { importRoutes } from './routes/imports.ts';
 import { metricsRoute } from './routes/metrics.ts';
 import { verdictWaveformRoutes } from './routes/verdict-waveforms.ts';
 import { verdictRoutes } from './routes/verdicts.ts';
@@ -30,6 +33,8 @@ export interface AppDependencies {
   readonly verdicts: VerdictStore;
   readonly entries: EntryStore;
   readonly entrySearch: EntrySearch;
+  readonly importStaging: ImportStaging;
+  readonly importLimits: ImportLimits;
   /** whether the record answers a read */
   readonly isRecordReadable: () => boolean;
   readonly simulationLoad: () => { readonly threads: number; readonly waiting: number; readonly completed: number };
@@ -42,8 +47,10 @@ export type App = FastifyInstance<RawServerDefault, IncomingMessage, ServerRespo
 const BODY_LIMIT = 1024 * 1024;
 /** ms; stopping waits for idle connections no longer than this */
 const KEEP_ALIVE_TIMEOUT = 5_000;
-/** ms for a request's bytes to arrive in full */
-const REQUEST_TIMEOUT = 30_000;
+/** ms for a request's headers to arrive in full: long enough for any line, short for those who only hold connections open */
+const HEADERS_TIMEOUT = 30_000;
+/** ms for a request's bytes to arrive in full: a list of lamps over a slow line, which is also taken in only as fast as it is staged */
+const REQUEST_TIMEOUT = 600_000;
 
 export async function buildApp(dependencies: AppDependencies): Promise<App> {
   const { logger } = dependencies;
@@ -52,6 +59,7 @@ export async function buildApp(dependencies: AppDependencies): Promise<App> {
     bodyLimit: BODY_LIMIT,
     keepAliveTimeout: KEEP_ALIVE_TIMEOUT,
     requestTimeout: REQUEST_TIMEOUT,
+    http: { headersTimeout: HEADERS_TIMEOUT },
     forceCloseConnections: 'idle',
     // plugins/stopping.ts answers for itself, with a problem document
     return503OnClosing: false,
@@ -85,5 +93,6 @@ export async function buildApp(dependencies: AppDependencies): Promise<App> {
   await app.register(verdictWaveformRoutes(dependencies));
   await app.register(entryRoutes(dependencies));
   await app.register(entryListRoutes(dependencies));
+  await app.register(importRoutes(dependencies));
   return app;
 }

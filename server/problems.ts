@@ -17,6 +17,11 @@ export const PROBLEMS = {
     when: 'a field is unknown, missing, of the wrong type, out of range or at odds with another; `issues` lists every one',
   },
   'malformed-json': { status: 400, title: 'The body is not JSON', when: 'the body is empty, cut off or not JSON' },
+  'unreadable-list': {
+    status: 400,
+    title: 'The list cannot be read',
+    when: 'a list for import is cut off, is not text in the encoding that it says, or breaks the rules of its type; nothing of it is kept',
+  },
   'malformed-http': { status: 400, title: 'The request is not HTTP as it should be', when: 'the URL or a header cannot be read' },
   'no-such-call': { status: 404, title: 'There is no such call', when: 'no call has this method and path' },
   'verdict-not-found': { status: 404, title: 'There is no such verdict', when: 'no verdict is stored under this id' },
@@ -32,7 +37,16 @@ export const PROBLEMS = {
     when: '`If-Match` names another revision than the latest, or `If-None-Match: *` an entry that exists: read it again',
   },
   'body-too-large': { status: 413, title: 'The body is too large', when: 'the body exceeds 1 MiB' },
-  'unsupported-media-type': { status: 415, title: 'The body has the wrong type', when: 'the body is not `application/json`' },
+  'list-too-large': {
+    status: 413,
+    title: 'The list is too large',
+    when: 'a list for import has too many bytes or rows, or one row is too long; nothing of it is kept',
+  },
+  'unsupported-media-type': {
+    status: 415,
+    title: 'The body has the wrong type',
+    when: 'the body is of a type that the call does not read',
+  },
   'phase-table-needs-fitting': {
     status: 422,
     title: 'A phase table must be fitted first',
@@ -53,6 +67,11 @@ export const PROBLEMS = {
     status: 503,
     title: 'Too many pairings are waiting',
     when: 'the simulation queue is full; `Retry-After` says when to ask again',
+  },
+  'imports-busy': {
+    status: 503,
+    title: 'Other lists are being imported',
+    when: 'as many lists as the service takes at once are on their way; `Retry-After` says when to ask again',
   },
   'not-ready': { status: 503, title: 'The service is not ready', when: 'the record cannot be read, or the service is stopping' },
   stopping: { status: 503, title: 'The service is stopping', when: 'the request arrived on an open connection while the service stops' },

@@ -31,7 +31,16 @@ describe('migrations', () => {
   it('make only STRICT tables', () => {
     const tables = temporaryRecord().pragma('table_list') as { name: string; type: string; strict: number }[];
     const ours = tables.filter(({ name, type }) => type === 'table' && !name.startsWith('sqlite_'));
-    expect(ours.map(({ name }) => name).sort()).toEqual(['entries', 'entry_tags', 'entry_words', 'migrations', 'revisions', 'verdicts']);
+    expect(ours.map(({ name }) => name).sort()).toEqual([
+      'entries',
+      'entry_tags',
+      'entry_words',
+      'import_rows',
+      'imports',
+      'migrations',
+      'revisions',
+      'verdicts',
+    ]);
     expect(ours.filter(({ strict }) => strict !== 1)).toEqual([]);
   });
 

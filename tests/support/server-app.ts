@@ -3,9 +3,11 @@ import pino from 'pino';
 import { onTestFinished } from 'vitest';
 import { type EntryStore, entryStore } from '../../db/entries.ts';
 import { entrySearch } from '../../db/entry-search.ts';
+import { importStaging } from '../../db/import-staging.ts';
 import { isRecordReadable, type RecordDatabase } from '../../db/record.ts';
 import { type VerdictStore, verdictStore } from '../../db/verdicts.ts';
 import { type App, type AppDependencies, buildApp } from '../../server/app.ts';
+import { IMPORT_LIMITS } from '../../server/imports/import-limits.ts';
 import { directSimulation } from '../../server/simulation/direct-simulation.ts';
 import { FIXED_NOW, temporaryRecord } from './server-temporary-record.ts';
 
@@ -31,6 +33,8 @@ export async function testApp(changes: Partial<AppDependencies> = {}): Promise<T
     verdicts,
     entries,
     entrySearch: entrySearch(record),
+    importStaging: importStaging(record),
+    importLimits: IMPORT_LIMITS,
     isRecordReadable: () => isRecordReadable(record),
     simulationLoad: () => ({ threads: 1, waiting: 0, completed: 0 }),
     now: () => FIXED_NOW,
