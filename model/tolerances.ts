@@ -89,7 +89,7 @@ export const DROP_OUT_ANGLE = 30;
 /** the lamps' own current counts as ended once it is below this share of the holding current: too little for any triac (our choice) */
 export const OWN_CURRENT_SHARE = 0.05;
 /** step in which the end of the lamps' own current is looked for, degrees: well under any sensible drop-out angle */
-export const OWN_CURRENT_STEP = 0.5;
+export const OWN_CURRENT_STEP = 0.1;
 /** degrees after the first angle that can be no early end within which the lamps' own end is still looked for, so that the margin there
  * is not judged from 180 degrees */
 export const OWN_END_DOUBT = 5;
