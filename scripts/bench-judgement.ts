@@ -45,7 +45,15 @@ const PAIRING: Pairing = {
       count: 2,
       lamp: {
         ratedPower: 8,
-        input: { seriesResistance: 22, inductance: 0, inductorLoss: null, capacitance: 47e-9, damper: null, bleeder: null },
+        input: {
+          seriesResistance: 22,
+          seriesCapacitance: 0,
+          inductance: 0,
+          inductorLoss: null,
+          capacitance: 47e-9,
+          damper: null,
+          bleeder: null,
+        },
         load: {
           kind: 'iv-table',
           points: [
@@ -67,7 +75,15 @@ const UNSUITABLE: Pairing = {
       count: 2,
       lamp: {
         ratedPower: 8,
-        input: { seriesResistance: 22, inductance: 0, inductorLoss: null, capacitance: 22e-9, damper: null, bleeder: null },
+        input: {
+          seriesResistance: 22,
+          seriesCapacitance: 0,
+          inductance: 0,
+          inductorLoss: null,
+          capacitance: 22e-9,
+          damper: null,
+          bleeder: null,
+        },
         load: {
           kind: 'reservoir',
           capacitance: 4.7e-6,

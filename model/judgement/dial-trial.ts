@@ -34,9 +34,10 @@ export function failsOnTheWayUp(
   const rows: DialRow[] = [];
   let failed = false;
   walkDial(there, { ...options, dialPositions: positions }, effort, null, (row) => {
-    rows.push(row);
-    failed = isDecided(goal, there, rows, positions);
-    return failed || rows.length === positions.length;
+    // without early endings the way down is visited too, to measure what leaving it out spares
+    if (rows.length < positions.length) rows.push(row);
+    failed ||= isDecided(goal, there, rows, positions);
+    return options.thorough !== true && (failed || rows.length === positions.length);
   });
   return failed;
 }
