@@ -33,7 +33,7 @@ export class Patient {
     const { base, effort, hardest } = this;
     const options = { ...this.options, dialPositions };
     const { corner } = base.decisive;
-    // a dimmer's currents and the mains do not change with a remedy, so the decisive corner is the changed pairing's too
+    // switched on at the top of the dial it must be steady at once: this passes over a cure that only works for who comes up from dark
     if (failsOnTheWayUp(changed, corner, options, topPositions(dialPositions), effort)) return null;
     const goal = base.grade === 'conditional' ? 'suitable' : 'grade';
     const over = overCorners(changed, options, effort, { goal, first: hardest });
