@@ -20,7 +20,17 @@ export interface ModalBasis {
   readonly condition: number;
 }
 
-const at = (a: Float64Array, k: number): number => a[k] as number;
+/** most states a circuit can have: twelve groups with every optional part stay below */
+const MOST_STATES = 128;
+
+function at(a: Float64Array, k: number): number {
+  return a[k] as number;
+}
+
+/** modulus of a complex number; the entries are far from the ends of the number range, so the plain root does */
+function size(re: number, im: number): number {
+  return Math.sqrt(re * re + im * im);
+}
 
 /** reduces h (n x n) to upper Hessenberg form and accumulates the orthogonal transformation in q */
 function toHessenberg(h: Float64Array, q: Float64Array, n: number): void {
@@ -71,8 +81,8 @@ function wilkinsonShift(re: Float64Array, im: Float64Array, n: number, hi: numbe
   const bcIm = at(re, b) * at(im, c) + at(im, b) * at(re, c);
   const sqRe = halfRe * halfRe - halfIm * halfIm + bcRe;
   const sqIm = 2 * halfRe * halfIm + bcIm;
-  const size = Math.hypot(sqRe, sqIm);
-  let rootRe = Math.sqrt((size + Math.abs(sqRe)) / 2);
+  const modulus = size(sqRe, sqIm);
+  let rootRe = Math.sqrt((modulus + Math.abs(sqRe)) / 2);
   let rootIm = rootRe === 0 ? 0 : sqIm / (2 * rootRe);
   if (sqRe < 0) [rootRe, rootIm] = [Math.abs(rootIm), sqIm < 0 ? -rootRe : rootRe];
   if (halfRe * rootRe + halfIm * rootIm > 0) {
@@ -80,6 +90,29 @@ function wilkinsonShift(re: Float64Array, im: Float64Array, n: number, hi: numbe
     rootIm = -rootIm;
   }
   return [at(re, d) + halfRe + rootRe, at(im, d) + halfIm + rootIm];
+}
+
+/** the rotations of the QR step that is being taken, per column: cosine, complex sine */
+const cos = new Float64Array(MOST_STATES);
+const sinRe = new Float64Array(MOST_STATES);
+const sinIm = new Float64Array(MOST_STATES);
+
+/** applies rotation k from the right to the first `rows` rows */
+function rotateColumns(mRe: Float64Array, mIm: Float64Array, n: number, k: number, rows: number): void {
+  const c = at(cos, k);
+  const sr = at(sinRe, k);
+  const si = at(sinIm, k);
+  for (let r = 0; r < rows; r++) {
+    const u = r * n + k;
+    const ur = at(mRe, u);
+    const ui = at(mIm, u);
+    const wr = at(mRe, u + 1);
+    const wi = at(mIm, u + 1);
+    mRe[u] = c * ur + sr * wr + si * wi;
+    mIm[u] = c * ui + sr * wi - si * wr;
+    mRe[u + 1] = c * wr - sr * ur + si * ui;
+    mIm[u + 1] = c * wi - sr * ui - si * ur;
+  }
 }
 
 /** one explicit QR step on rows lo..hi with a shift, by complex Givens rotations, accumulated in (qRe, qIm) */
@@ -97,17 +130,16 @@ function qrStep(
     re[k * n + k] = at(re, k * n + k) - shift[0];
     im[k * n + k] = at(im, k * n + k) - shift[1];
   }
-  const cos = new Float64Array(n);
-  const sinRe = new Float64Array(n);
-  const sinIm = new Float64Array(n);
   for (let k = lo; k < hi; k++) {
     const p = k * n + k;
     const s = p + n;
-    const top = Math.hypot(at(re, p), at(im, p));
-    const bottom = Math.hypot(at(re, s), at(im, s));
-    const length = Math.hypot(top, bottom);
+    const top = size(at(re, p), at(im, p));
+    const bottom = size(at(re, s), at(im, s));
+    const length = size(top, bottom);
     if (length === 0) {
       cos[k] = 1;
+      sinRe[k] = 0;
+      sinIm[k] = 0;
       continue;
     }
     // rotation [c, s; -conj(s), c] with c real that annuls the subdiagonal
@@ -132,25 +164,9 @@ function qrStep(
       im[w] = c * wi - sr * ui + si * ur;
     }
   }
-  const rotateColumns = (mRe: Float64Array, mIm: Float64Array, k: number, rows: number): void => {
-    const c = at(cos, k);
-    const sr = at(sinRe, k);
-    const si = at(sinIm, k);
-    for (let r = 0; r < rows; r++) {
-      const u = r * n + k;
-      const ur = at(mRe, u);
-      const ui = at(mIm, u);
-      const wr = at(mRe, u + 1);
-      const wi = at(mIm, u + 1);
-      mRe[u] = c * ur + sr * wr + si * wi;
-      mIm[u] = c * ui + sr * wi - si * wr;
-      mRe[u + 1] = c * wr - sr * ur + si * ui;
-      mIm[u + 1] = c * wi - sr * ui - si * ur;
-    }
-  };
   for (let k = lo; k < hi; k++) {
-    rotateColumns(re, im, k, Math.min(k + 2, hi + 1));
-    rotateColumns(qRe, qIm, k, n);
+    rotateColumns(re, im, n, k, Math.min(k + 2, hi + 1));
+    rotateColumns(qRe, qIm, n, k, n);
   }
   for (let k = 0; k < n; k++) {
     re[k * n + k] = at(re, k * n + k) + shift[0];
@@ -250,7 +266,7 @@ function eigenvector(
     }
     let dRe = at(re, k * n + k) - at(re, i * n + i);
     let dIm = at(im, k * n + k) - at(im, i * n + i);
-    if (Math.hypot(dRe, dIm) < smallest) [dRe, dIm] = [smallest, 0];
+    if (size(dRe, dIm) < smallest) [dRe, dIm] = [smallest, 0];
     const square = dRe * dRe + dIm * dIm;
     yRe[i] = (sRe * dRe + sIm * dIm) / square;
     yIm[i] = (sIm * dRe - sRe * dIm) / square;
@@ -265,9 +281,9 @@ function eigenvector(
       vRe[r] = at(vRe, r) + at(qRe, t) * at(yRe, j) - at(qIm, t) * at(yIm, j);
       vIm[r] = at(vIm, r) + at(qRe, t) * at(yIm, j) + at(qIm, t) * at(yRe, j);
     }
-    const size = Math.hypot(at(vRe, r), at(vIm, r));
-    if (size > largest) {
-      largest = size;
+    const modulus = size(at(vRe, r), at(vIm, r));
+    if (modulus > largest) {
+      largest = modulus;
       largestAt = r;
     }
   }
@@ -290,8 +306,8 @@ function decompose(matrix: Float64Array, n: number): ModalBasis {
   const im = new Float64Array(n * n);
   const qIm = new Float64Array(n * n);
   toTriangular(h, im, q, qIm, n);
-  const size = norm(matrix);
-  const realBelow = 1e-13 * size;
+  const scale = norm(matrix);
+  const realBelow = 1e-13 * scale;
   const reals: number[] = [];
   const pairs: number[] = [];
   for (let k = 0; k < n; k++) {
@@ -302,7 +318,7 @@ function decompose(matrix: Float64Array, n: number): ModalBasis {
   // a pair may straddle the threshold by rounding: complete the count from the nearest leftovers
   for (let k = 0; reals.length + 2 * pairs.length < n && k < n; k++) {
     if (!reals.includes(k) && !pairs.includes(k) && at(im, k * n + k) < 0) {
-      const partner = pairs.some((p) => Math.abs(at(h, p * n + p) - at(h, k * n + k)) < 1e-6 * size);
+      const partner = pairs.some((p) => Math.abs(at(h, p * n + p) - at(h, k * n + k)) < 1e-6 * scale);
       if (!partner) reals.push(k);
     }
   }
@@ -310,7 +326,7 @@ function decompose(matrix: Float64Array, n: number): ModalBasis {
   const decay = new Float64Array(count);
   const rotation = new Float64Array(count);
   const basis = new Float64Array(n * n);
-  const smallest = 1e-16 * size || 1e-300;
+  const smallest = 1e-16 * scale || 1e-300;
   [...reals, ...pairs].forEach((k, mode) => {
     const [vRe, vIm] = eigenvector(h, im, q, qIm, n, k, smallest);
     decay[mode] = at(h, k * n + k);
@@ -343,8 +359,8 @@ export function modalBasis(matrix: Float64Array, n: number): ModalBasis {
     const nudged = Float64Array.from(matrix);
     for (let r = 0; r < n; r++) {
       for (let c = 0; c < n; c++) {
-        const size = Math.sqrt(Math.abs(at(matrix, r * n + r) * at(matrix, c * n + c)));
-        nudged[r * n + c] = at(nudged, r * n + c) + nudge * size * pattern(r, c);
+        const weight = Math.sqrt(Math.abs(at(matrix, r * n + r) * at(matrix, c * n + c)));
+        nudged[r * n + c] = at(nudged, r * n + c) + nudge * weight * pattern(r, c);
       }
     }
     const apart = decompose(nudged, n);

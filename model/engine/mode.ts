@@ -128,36 +128,41 @@ function passageBetween(from: Mode, to: Mode): Passage {
   return { to, matrix };
 }
 
-function steadyAnswers(system: ModeSystem, modal: ModalBasis, omega: number) {
+/** sum over k < n of a[from + k * stride] * b[fromB + k * strideB] */
+function dot(a: Float64Array, from: number, stride: number, b: Float64Array, fromB: number, strideB: number, n: number): number {
+  let sum = 0;
+  for (let k = 0, p = from, q = fromB; k < n; k++, p += stride, q += strideB) sum += (a[p] as number) * (b[q] as number);
+  return sum;
+}
+
+/** modal coordinates of a column of the system */
+function inModes(system: ModeSystem, modal: ModalBasis, column: number): Float64Array {
   const n = system.states;
-  const beta = (column: number): Float64Array => {
-    const b = new Float64Array(n);
-    for (let r = 0; r < n; r++) {
-      let sum = 0;
-      for (let c = 0; c < n; c++) sum += (modal.inverse[r * n + c] as number) * (system.rows[c * system.columns + column] as number);
-      b[r] = sum;
-    }
-    return b;
-  };
-  const back = (z: Float64Array): Float64Array => {
-    const x = new Float64Array(n);
-    for (let r = 0; r < n; r++) {
-      let sum = 0;
-      for (let c = 0; c < n; c++) sum += (modal.basis[r * n + c] as number) * (z[c] as number);
-      x[r] = sum;
-    }
-    return x;
-  };
-  // (j omega - Lambda) Z = beta, real coordinates and 2 x 2 blocks; x = Im(X e^{j omega t}) = Re X sin + Im X cos
-  const b = beta(n);
+  const b = new Float64Array(n);
+  for (let r = 0; r < n; r++) b[r] = dot(modal.inverse, r * n, 1, system.rows, column, system.columns, n);
+  return b;
+}
+
+/** states of modal coordinates, written from `to` on */
+function toStates(modal: ModalBasis, z: Float64Array, n: number, into: Float64Array, to: number): void {
+  for (let r = 0; r < n; r++) into[to + r] = dot(modal.basis, r * n, 1, z, 0, 1, n);
+}
+
+/**
+ * Particular solution of the mains sine: (j omega - Lambda) Z = beta in real coordinates and 2 x 2 blocks; x = Im(X e^{j omega t}) =
+ * Re X sin + Im X cos.
+ */
+function driveAnswer(system: ModeSystem, modal: ModalBasis, omega: number): { driveCos: Float64Array; driveSin: Float64Array } {
+  const n = system.states;
+  const b = inModes(system, modal, n);
   const zRe = new Float64Array(n);
   const zIm = new Float64Array(n);
-  const divide = (k: number, pRe: number, pIm: number, qRe: number, qIm: number): void => {
-    const square = qRe * qRe + qIm * qIm;
-    zRe[k] = (pRe * qRe + pIm * qIm) / square;
-    zIm[k] = (pIm * qRe - pRe * qIm) / square;
-  };
-  for (let k = 0; k < modal.reals; k++) divide(k, b[k] as number, 0, -(modal.decay[k] as number), omega);
+  for (let k = 0; k < modal.reals; k++) {
+    const d = modal.decay[k] as number;
+    const square = d * d + omega * omega;
+    zRe[k] = (-d * (b[k] as number)) / square;
+    zIm[k] = (-omega * (b[k] as number)) / square;
+  }
   for (let p = 0; p < modal.pairs; p++) {
     const k = modal.reals + 2 * p;
     const d = modal.decay[modal.reals + p] as number;
@@ -166,28 +171,40 @@ function steadyAnswers(system: ModeSystem, modal: ModalBasis, omega: number) {
     const b2 = b[k + 1] as number;
     const detRe = d * d - omega * omega + q * q;
     const detIm = -2 * d * omega;
-    divide(k, -d * b1 - q * b2, omega * b1, detRe, detIm);
-    divide(k + 1, q * b1 - d * b2, omega * b2, detRe, detIm);
+    const square = detRe * detRe + detIm * detIm;
+    const firstRe = -d * b1 - q * b2;
+    const secondRe = q * b1 - d * b2;
+    zRe[k] = (firstRe * detRe + omega * b1 * detIm) / square;
+    zIm[k] = (omega * b1 * detRe - firstRe * detIm) / square;
+    zRe[k + 1] = (secondRe * detRe + omega * b2 * detIm) / square;
+    zIm[k + 1] = (omega * b2 * detRe - secondRe * detIm) / square;
   }
-  const driveSin = back(zRe);
-  const driveCos = back(zIm);
-  const constantStates = new Float64Array(system.constants * n);
+  const driveSin = new Float64Array(n);
+  const driveCos = new Float64Array(n);
+  toStates(modal, zRe, n, driveSin, 0);
+  toStates(modal, zIm, n, driveCos, 0);
+  return { driveCos, driveSin };
+}
+
+/** particular solutions of the constants, constants x states */
+function constantAnswers(system: ModeSystem, modal: ModalBasis): Float64Array {
+  const n = system.states;
+  const states = new Float64Array(system.constants * n);
   for (let k = 0; k < system.constants; k++) {
-    const c = beta(n + 1 + k);
-    const z = new Float64Array(n);
-    for (let r = 0; r < modal.reals; r++) z[r] = (c[r] as number) === 0 ? 0 : -(c[r] as number) / (modal.decay[r] as number);
+    const c = inModes(system, modal, n + 1 + k);
+    for (let r = 0; r < modal.reals; r++) c[r] = (c[r] as number) === 0 ? 0 : -(c[r] as number) / (modal.decay[r] as number);
     for (let p = 0; p < modal.pairs; p++) {
       const r = modal.reals + 2 * p;
       const d = modal.decay[modal.reals + p] as number;
       const q = modal.rotation[modal.reals + p] as number;
       const c1 = c[r] as number;
       const c2 = c[r + 1] as number;
-      z[r] = -(d * c1 + q * c2) / (d * d + q * q);
-      z[r + 1] = -(d * c2 - q * c1) / (d * d + q * q);
+      c[r] = -(d * c1 + q * c2) / (d * d + q * q);
+      c[r + 1] = -(d * c2 - q * c1) / (d * d + q * q);
     }
-    constantStates.set(back(z), k * n);
+    toStates(modal, c, n, states, k * n);
   }
-  return { driveSin, driveCos, constantStates };
+  return states;
 }
 
 export function linearMode(system: ModeSystem, omega: number, shortest: number): LinearMode {
@@ -204,30 +221,30 @@ export function linearMode(system: ModeSystem, omega: number, shortest: number):
   decay.set(modal.decay);
   rotation.set(modal.rotation);
   rotation[terms - 1] = omega;
-  const { driveSin, driveCos, constantStates } = steadyAnswers(system, modal, omega);
+  const { driveSin, driveCos } = driveAnswer(system, modal, omega);
+  const constantStates = constantAnswers(system, modal);
 
   const outputStride = reals + 3 * (pairs + 1);
   const outputRows = new Float64Array(outputs * outputStride);
   const constantOutputs = new Float64Array(constants * outputs);
   for (let o = 0; o < outputs; o++) {
     const row = (n + o) * columns;
-    const onto = (of: Float64Array, from: number, stride: number): number => {
-      let sum = 0;
-      for (let c = 0; c < n; c++) sum += (system.rows[row + c] as number) * (of[from + c * stride] as number);
-      return sum;
-    };
     let at = o * outputStride;
-    for (let k = 0; k < reals; k++) outputRows[at++] = onto(modal.basis, k, n);
+    for (let k = 0; k < reals; k++) outputRows[at++] = dot(system.rows, row, 1, modal.basis, k, n, n);
     for (let p = 0; p <= pairs; p++) {
       const k = reals + 2 * p;
-      const re = p < pairs ? onto(modal.basis, k, n) : onto(driveCos, 0, 1);
-      const im = p < pairs ? onto(modal.basis, k + 1, n) : onto(driveSin, 0, 1) + (system.rows[row + n] as number);
+      const drive = p === pairs;
+      const re = drive ? dot(system.rows, row, 1, driveCos, 0, 1, n) : dot(system.rows, row, 1, modal.basis, k, n, n);
+      const im = drive
+        ? dot(system.rows, row, 1, driveSin, 0, 1, n) + (system.rows[row + n] as number)
+        : dot(system.rows, row, 1, modal.basis, k + 1, n, n);
       outputRows[at++] = re;
       outputRows[at++] = im;
-      outputRows[at++] = Math.hypot(re, im);
+      outputRows[at++] = Math.sqrt(re * re + im * im);
     }
     for (let k = 0; k < constants; k++) {
-      constantOutputs[k * outputs + o] = onto(constantStates, k * n, 1) + (system.rows[row + n + 1 + k] as number);
+      const own = system.rows[row + n + 1 + k] as number;
+      constantOutputs[k * outputs + o] = dot(system.rows, row, 1, constantStates, k * n, 1, n) + own;
     }
   }
 
@@ -237,19 +254,22 @@ export function linearMode(system: ModeSystem, omega: number, shortest: number):
   for (let t = 0; t < terms; t++) {
     const d = decay[t] as number;
     const q = rotation[t] as number;
-    const speed = Math.hypot(d, q);
+    const speed = Math.sqrt(d * d + q * q);
     const k = t < reals ? t : reals + 2 * (t - reals);
+    // each level's factor is the square of the one below: rounding doubles 17 times, to 1e-11
+    let re = Math.exp(d * shortest) * Math.cos(q * shortest);
+    let im = Math.exp(d * shortest) * Math.sin(q * shortest);
+    let h = shortest;
     for (let level = 0; level < LEVELS; level++) {
-      const h = shortest * 2 ** level;
-      const size = Math.exp(d * h);
-      if (t < reals) factors[level * coordinates + k] = size;
-      else {
-        factors[level * coordinates + k] = size * Math.cos(q * h);
-        factors[level * coordinates + k + 1] = size * Math.sin(q * h);
-      }
-      const growth = Math.max(1, size);
+      factors[level * coordinates + k] = re;
+      if (t >= reals) factors[level * coordinates + k + 1] = im;
+      const growth = d > 0 ? Math.exp(d * h) : 1;
       if (speed * h <= SLOW_LIMIT) bends[level * terms + t] = (growth * speed * speed) / 8;
       else ranges[level * terms + t] = q === 0 ? growth : 2 * growth;
+      const square = re * re - im * im;
+      im *= 2 * re;
+      re = square;
+      h *= 2;
     }
   }
   return {
