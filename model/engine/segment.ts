@@ -172,22 +172,27 @@ export class Segment {
     return this.searchLargest(c, sign, least, from, to, sign * this.valueOf(c, from), sign * this.valueOf(c, to));
   }
 
-  /** halves the interval until no curvature left in it could carry the output above what has been seen */
+  /** halves the interval until no curvature left in it could carry the output above what has been seen (the bound is ModeWalk's) */
   private searchLargest(c: Float64Array, sign: 1 | -1, least: number, a: number, b: number, yA: number, yB: number): number {
     const { linear } = this.mode;
     const best = Math.max(least, yA, yB);
     const h = b - a;
     if (h < PEAK_TIME) return best;
     let stray = 0;
+    let fast = 0;
     for (let t = 0; t < linear.terms; t++) {
       const d = linear.decay[t] as number;
       const q = linear.rotation[t] as number;
       const re = c[2 * t] as number;
       const im = c[2 * t + 1] as number;
       const size = Math.sqrt(re * re + im * im) * Math.exp(d * (d > 0 ? b : a));
-      stray += size * Math.min(((d * d + q * q) * h * h) / 8, 2);
+      const bend = ((d * d + q * q) * h * h) / 8;
+      if (bend < 1) stray += size * bend;
+      else fast += 2 * size;
     }
-    if (Math.max(yA, yB) + stray <= best + PEAK_TOLERANCE * Math.abs(best)) return best;
+    const d = yB - yA;
+    const most = Math.abs(d) >= 4 * stray ? Math.max(yA, yB) : (yA + yB) / 2 + stray + (d * d) / (16 * stray);
+    if (most + fast <= best + PEAK_TOLERANCE * Math.abs(best)) return best;
     const middle = (a + b) / 2;
     const y = sign * this.valueOf(c, middle);
     return this.searchLargest(c, sign, this.searchLargest(c, sign, best, a, middle, yA, y), middle, b, y, yB);
