@@ -4,6 +4,7 @@
  */
 import { createHash } from 'node:crypto';
 import { findability } from './entry-findability.ts';
+import { judgedPairs } from './judged-pairs.ts';
 import type { RecordDatabase } from './record.ts';
 
 export type EntryKind = 'dimmer' | 'lamp';
@@ -49,6 +50,8 @@ export type PutOutcome = 'created' | 'revised' | 'unchanged';
 export interface EntryStore {
   /** Runs `act` as one immediate transaction: all of it is stored or nothing. May be nested. */
   together<T>(act: () => T): T;
+  /** Whether the entry exists and is not deleted. */
+  has(kind: EntryKind, id: string): boolean;
   /** The latest revision; undefined where there is none or it was deleted. */
   find(kind: EntryKind, id: string): EntryRow | undefined;
   /** A given revision, also of a deleted entry. */
@@ -68,6 +71,9 @@ export function entryStore(record: RecordDatabase): EntryStore {
     `SELECT e.seq, e.circuit, ${ROW} FROM entries e JOIN revisions r ON r.entry = e.seq AND r.revision = e.revision
      WHERE e.kind = ? AND e.id = ? AND e.deleted_at IS NULL`,
   );
+  const isPresent = record
+    .prepare<[string, string], number>('SELECT 1 FROM entries WHERE kind = ? AND id = ? AND deleted_at IS NULL')
+    .pluck();
   const ofRevision = record.prepare<[string, string, number], EntryRow>(
     `SELECT ${ROW} FROM entries e JOIN revisions r ON r.entry = e.seq WHERE e.kind = ? AND e.id = ? AND r.revision = ?`,
   );
@@ -89,6 +95,7 @@ export function entryStore(record: RecordDatabase): EntryStore {
   );
   const markDeleted = record.prepare('UPDATE entries SET deleted_at = ?, circuit = NULL WHERE seq = ?');
   const search = findability(record);
+  const pairs = judgedPairs(record);
 
   const appendRevision = (write: EntryWrite, at: string): void => {
     const { kind, id, content, name, articleNumber, ratedPower } = write;
@@ -103,10 +110,12 @@ export function entryStore(record: RecordDatabase): EntryStore {
     const circuit = sameCircuit.get(known.seq, sha256) ?? revision;
     updateEntry.run({ seq: known.seq, revision, circuit, name, articleNumber, ratedPower, at });
     insertRevision.run({ seq: known.seq, revision, circuit, sha256, content, at });
+    if (circuit !== known.circuit) pairs.markStale(known.seq);
   };
 
   return {
     together: (act) => record.transaction(act).immediate(),
+    has: (kind, id) => isPresent.get(kind, id) !== undefined,
     find: (kind, id) => rowOf(present.get(kind, id)),
     findRevision: (kind, id, revision) => ofRevision.get(kind, id, revision),
     put: (write, at) => {
@@ -125,6 +134,7 @@ export function entryStore(record: RecordDatabase): EntryStore {
       if (before === undefined) return false;
       search.forget(kind, id);
       markDeleted.run(at, before.seq);
+      pairs.markStale(before.seq);
       return true;
     },
   };

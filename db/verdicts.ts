@@ -1,35 +1,23 @@
 /**
- * The statements over stored verdicts: insert once, find, and page newest first. Rows go in and out as they are stored; turning
- * their JSON into the service's answers is the server's.
+ * The statements over stored verdicts: insert once, and find. Lists of them are verdict-search.ts. Rows go in and out with their JSON;
+ * turning it into the service's answers is the server's, how it lies on the disk is evidence.ts's.
  */
 import type { Grade } from '../model/index.ts';
+import { type Evidence, readEvidence, type WrittenEvidence, writeEvidence } from './evidence.ts';
 import type { RecordDatabase } from './record.ts';
 
-export interface VerdictRow {
+export interface VerdictRow extends Evidence {
   readonly id: string;
+  /** hexadecimal */
   readonly fingerprint: string;
   readonly model_version: string;
+  /** ISO 8601 */
   readonly created_at: string;
   readonly grade: Grade;
   readonly summary: string;
   readonly mains_voltage: number;
   readonly mains_frequency: number;
-  readonly pairing: string;
-  readonly assumptions: string;
-  readonly judgement: string;
-}
-
-/** What a list shows: the columns, without the JSON. */
-export type VerdictHeading = Pick<
-  VerdictRow,
-  'id' | 'model_version' | 'created_at' | 'grade' | 'summary' | 'mains_voltage' | 'mains_frequency'
-> & { readonly seq: number };
-
-export interface VerdictFilter {
-  readonly grade?: Grade | undefined;
-  readonly modelVersion?: string | undefined;
-  readonly mainsVoltage?: number | undefined;
-  readonly mainsFrequency?: number | undefined;
+  readonly lamp_count: number;
 }
 
 export interface VerdictStore {
@@ -37,50 +25,55 @@ export interface VerdictStore {
   insertOnce(row: VerdictRow): { readonly row: VerdictRow; readonly stored: boolean };
   findById(id: string): VerdictRow | undefined;
   findByFingerprint(fingerprint: string): VerdictRow | undefined;
-  /** Up to `limit` headings with a `seq` below `before`, newest first. */
-  page(filter: VerdictFilter, before: number, limit: number): readonly VerdictHeading[];
   count(): number;
 }
 
-const COLUMNS =
-  'id, fingerprint, model_version, created_at, grade, summary, mains_voltage, mains_frequency, pairing, assumptions, judgement';
-const HEADING_COLUMNS = 'seq, id, model_version, created_at, grade, summary, mains_voltage, mains_frequency';
+interface Stored extends Omit<VerdictRow, 'fingerprint' | 'created_at' | keyof Evidence>, WrittenEvidence {
+  readonly fingerprint: Buffer;
+  readonly created_at: number;
+}
 
-/** The columns a list can be filtered by, with the filter's field. */
-const FILTER_COLUMNS = [
-  ['grade', 'grade'],
-  ['modelVersion', 'model_version'],
-  ['mainsVoltage', 'mains_voltage'],
-  ['mainsFrequency', 'mains_frequency'],
-] as const satisfies readonly (readonly [keyof VerdictFilter, string])[];
+const COLUMNS = 'id, fingerprint, model_version, created_at, grade, summary, mains_voltage, mains_frequency, lamp_count';
+const STORED = `SELECT ${COLUMNS}, encoding, content FROM verdicts JOIN evidence ON verdict = seq`;
 
 export function verdictStore(record: RecordDatabase): VerdictStore {
   const values = COLUMNS.split(', ').map((column) => `@${column}`);
-  const insert = record.prepare(`INSERT INTO verdicts (${COLUMNS}) VALUES (${values.join(', ')}) ON CONFLICT (fingerprint) DO NOTHING`);
-  const byId = record.prepare<[string], VerdictRow>(`SELECT ${COLUMNS} FROM verdicts WHERE id = ?`);
-  const byFingerprint = record.prepare<[string], VerdictRow>(`SELECT ${COLUMNS} FROM verdicts WHERE fingerprint = ?`);
-  const countAll = record.prepare<[], number>('SELECT count(*) FROM verdicts').pluck();
+  const insert = record.prepare(`INSERT INTO verdicts (${COLUMNS}) VALUES (${values.join(', ')})`);
+  const insertEvidence = record.prepare('INSERT INTO evidence (verdict, encoding, content) VALUES (@verdict, @encoding, @content)');
+  const byId = record.prepare<[string], Stored>(`${STORED} WHERE id = ?`);
+  const byFingerprint = record.prepare<[Buffer], Stored>(`${STORED} WHERE fingerprint = ?`);
+  // Rows are never taken out and numbers never left out, so the last number is how many there are; counting would read them all.
+  const last = record.prepare<[], number | null>('SELECT max(seq) FROM verdicts').pluck();
+  const findByFingerprint = (fingerprint: string) => rowOf(byFingerprint.get(Buffer.from(fingerprint, 'hex')));
 
   const insertOnce = record.transaction((row: VerdictRow) => {
-    const stored = insert.run(row).changes === 1;
-    const kept = byFingerprint.get(row.fingerprint);
-    if (kept === undefined) throw new Error(`Verdict ${row.id} was neither stored nor found.`);
-    return { row: kept, stored };
+    // Asked first rather than left to the constraint, which would leave a number out.
+    const known = findByFingerprint(row.fingerprint);
+    if (known !== undefined) return { row: known, stored: false };
+    const { fingerprint, created_at, pairing, assumptions, judgement, ...columns } = row;
+    const binary = { fingerprint: Buffer.from(fingerprint, 'hex'), created_at: Date.parse(created_at) };
+    const { lastInsertRowid } = insert.run({ ...columns, ...binary });
+    insertEvidence.run({ verdict: lastInsertRowid, ...writeEvidence({ pairing, assumptions, judgement }) });
+    const kept = findByFingerprint(fingerprint);
+    if (kept === undefined) throw new Error(`Verdict ${row.id} was stored and not found.`);
+    return { row: kept, stored: true };
   });
 
   return {
     insertOnce: (row) => insertOnce.immediate(row),
-    findById: (id) => byId.get(id),
-    findByFingerprint: (fingerprint) => byFingerprint.get(fingerprint),
-    page: (filter, before, limit) => {
-      const wanted = FILTER_COLUMNS.filter(([field]) => filter[field] !== undefined);
-      const conditions = ['seq < @before', ...wanted.map(([field, column]) => `${column} = @${field}`)];
-      return record
-        .prepare<[object], VerdictHeading>(
-          `SELECT ${HEADING_COLUMNS} FROM verdicts WHERE ${conditions.join(' AND ')} ORDER BY seq DESC LIMIT @limit`,
-        )
-        .all({ ...filter, before, limit });
-    },
-    count: () => countAll.get() ?? 0,
+    findById: (id) => rowOf(byId.get(id)),
+    findByFingerprint,
+    count: () => last.get() ?? 0,
+  };
+}
+
+function rowOf(stored: Stored | undefined): VerdictRow | undefined {
+  if (stored === undefined) return undefined;
+  const { encoding, content, fingerprint, created_at, ...columns } = stored;
+  return {
+    ...columns,
+    fingerprint: fingerprint.toString('hex'),
+    created_at: new Date(created_at).toISOString(),
+    ...readEvidence({ encoding, content }),
   };
 }

@@ -5,10 +5,7 @@
 import type { IncomingMessage, ServerResponse } from 'node:http';
 import Fastify, { type FastifyBaseLogger, type FastifyInstance, type RawServerDefault } from 'fastify';
 import type { ZodTypeProvider } from 'fastify-type-provider-zod';
-import type { EntryStore } from '../db/entries.ts';
-import type { EntrySearch } from '../db/entry-search.ts';
-import type { ImportStaging } from '../db/import-staging.ts';
-import type { VerdictStore } from '../db/verdicts.ts';
+import type { Stores } from '../db/stores.ts';
 import type { ImportLimits } from './imports/import-limits.ts';
 import { createMetrics } from './metrics.ts';
 import { documentCalls } from './plugins/call-documents.ts';
@@ -23,17 +20,16 @@ import { entryListRoutes } from './routes/entry-lists.ts';
 import { healthRoutes } from './routes/health.ts';
 import { importRoutes } from './routes/imports.ts';
 import { metricsRoute } from './routes/metrics.ts';
+import { partnerRoutes } from './routes/partners.ts';
+import { storedVerdictRoutes } from './routes/stored-verdicts.ts';
+import { verdictLookupRoute } from './routes/verdict-lookup.ts';
 import { verdictWaveformRoutes } from './routes/verdict-waveforms.ts';
 import { verdictRoutes } from './routes/verdicts.ts';
 import type { Simulation } from './simulation/simulation.ts';
 
-export interface AppDependencies {
+export interface AppDependencies extends Stores {
   readonly logger: FastifyBaseLogger;
   readonly simulation: Simulation;
-  readonly verdicts: VerdictStore;
-  readonly entries: EntryStore;
-  readonly entrySearch: EntrySearch;
-  readonly importStaging: ImportStaging;
   readonly importLimits: ImportLimits;
   /** whether the record answers a read */
   readonly isRecordReadable: () => boolean;
@@ -90,9 +86,12 @@ export async function buildApp(dependencies: AppDependencies): Promise<App> {
   await app.register(healthRoutes(dependencies));
   await app.register(metricsRoute(dependencies, metrics));
   await app.register(verdictRoutes(dependencies, metrics));
+  await app.register(storedVerdictRoutes(dependencies));
+  await app.register(verdictLookupRoute(dependencies));
   await app.register(verdictWaveformRoutes(dependencies));
   await app.register(entryRoutes(dependencies));
   await app.register(entryListRoutes(dependencies));
+  await app.register(partnerRoutes(dependencies));
   await app.register(importRoutes(dependencies));
   return app;
 }

@@ -2,11 +2,8 @@
 import { join } from 'node:path';
 import closeWithGrace from 'close-with-grace';
 import pino from 'pino';
-import { entryStore } from '../db/entries.ts';
-import { entrySearch } from '../db/entry-search.ts';
-import { importStaging } from '../db/import-staging.ts';
 import { closeRecord, isRecordReadable, openRecord } from '../db/record.ts';
-import { verdictStore } from '../db/verdicts.ts';
+import { storesOf } from '../db/stores.ts';
 import { buildApp } from './app.ts';
 import { type Environment, parseEnvironment, printable } from './environment.ts';
 import { IMPORT_LIMITS } from './imports/import-limits.ts';
@@ -31,17 +28,14 @@ async function start(environment: Environment): Promise<void> {
   const now = () => new Date();
   try {
     const record = openRecord(join(environment.dataFolder, 'holdfast.sqlite'), now);
-    const [entries, staging] = [entryStore(record), importStaging(record)];
-    const resumed = await resumeImports({ entries, staging, now });
+    const stores = storesOf(record);
+    const resumed = await resumeImports({ entries: stores.entries, staging: stores.importStaging, now });
     if (resumed > 0) logger.info({ imports: resumed }, 'finished imports that an earlier process had taken in');
     const simulation = startSimulationPool({ threads: environment.workers, queueLimit: environment.queueLimit });
     const app = await buildApp({
       logger,
       simulation,
-      verdicts: verdictStore(record),
-      entries,
-      entrySearch: entrySearch(record),
-      importStaging: staging,
+      ...stores,
       importLimits: IMPORT_LIMITS,
       isRecordReadable: () => isRecordReadable(record),
       simulationLoad: simulation.load,

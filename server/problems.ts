@@ -47,6 +47,11 @@ export const PROBLEMS = {
     title: 'The body has the wrong type',
     when: 'the body is of a type that the call does not read',
   },
+  'entries-not-known': {
+    status: 422,
+    title: 'The pairing names an entry that the catalogue does not have',
+    when: 'a `dimmerId` or a `lampId` of a pairing is not in the catalogue; `issues` says where',
+  },
   'phase-table-needs-fitting': {
     status: 422,
     title: 'A phase table must be fitted first',

@@ -1,14 +1,15 @@
 /**
- * A pairing on the wire: as asked (`askedPairing`, the body of POST /v1/verdicts) and as judged (`judgedPairing`, every default filled
+ * A pairing on the wire: as asked (`referringPairing`, the body of POST /v1/verdicts; `askedPairing` once its references are resolved) and as judged (`judgedPairing`, every default filled
  * in). What was judged is itself a valid question, with itself as the answer.
  */
 import { z } from 'zod';
 import { MAINS_DEFAULTS, OPTIONS_DEFAULTS } from '../verdicts/pairing-defaults.ts';
 import { askedDimmer, judgedDimmer } from './dimmer.ts';
+import { entryId } from './entry.ts';
 import { askedLamp, judgedLamp } from './lamp.ts';
 import { choice, list, quantity, reportNotRising, wholeNumber, withRule } from './quantities.ts';
 
-const mainsFields = {
+export const mainsFields = {
   voltage_V: quantity('V', 85, 265, { is: 'R.m.s. voltage of the mains' }),
   frequency_Hz: quantity('Hz', 45, 65, { is: 'Frequency of the mains' }),
   sourceResistance_Ohm: quantity('Ohm', 0.01, 20, { is: 'Resistance of the wiring', otherwise: MAINS_DEFAULTS.sourceResistance_Ohm }),
@@ -74,23 +75,35 @@ export const EXAMPLE_PAIRING = {
   ],
 };
 
-export const askedPairing = z
+const askedMains = z
+  .strictObject({ ...mainsFields, sourceResistance_Ohm: mainsFields.sourceResistance_Ohm.optional() })
+  .describe('The supply.');
+const dimmerInFull = askedDimmer.describe('The dimmer. Only the two triac currents are required.');
+const groupInFull = z.strictObject({ count: countField, lamp: askedLamp });
+const otherFields = {
+  addedLoad: addedLoad.optional(),
+  options: z.strictObject(optionFields).partial().optional().describe('How the pairing is judged.'),
+};
+const lampGroups = <G extends z.ZodType>(group: G) =>
+  list(group, 1, 12, 'lamp groups', 'The lamps on the circuit, each kind of lamp once with its count');
+
+/** A pairing with everything given in full. */
+export const askedPairing = z.strictObject({ mains: askedMains, dimmer: dimmerInFull, lamps: lampGroups(groupInFull), ...otherFields });
+
+/** A pairing in which the dimmer and each lamp may be named by their ids in the catalogue instead. */
+export const referringPairing = z
   .strictObject({
-    mains: z.strictObject({ ...mainsFields, sourceResistance_Ohm: mainsFields.sourceResistance_Ohm.optional() }).describe('The supply.'),
-    dimmer: askedDimmer.describe('The dimmer. Only the two triac currents are required.'),
-    lamps: list(
-      z.strictObject({ count: countField, lamp: askedLamp }),
-      1,
-      12,
-      'lamp groups',
-      'The lamps on the circuit, each kind of lamp once with its count',
-    ),
-    addedLoad: addedLoad.optional(),
-    options: z.strictObject(optionFields).partial().optional().describe('How the pairing is judged.'),
+    mains: askedMains,
+    dimmer: z
+      .union([dimmerInFull, z.strictObject({ dimmerId: entryId('dimmer') })])
+      .describe("The dimmer in full, or a catalogue's dimmer by its id."),
+    lamps: lampGroups(z.union([groupInFull, z.strictObject({ lampId: entryId('lamp'), count: countField })])),
+    ...otherFields,
   })
   .meta({
     id: 'AskedPairing',
-    description: 'One dimmer, one or more groups of lamps, the mains, and an optional added load.',
+    description:
+      'One dimmer, one or more groups of lamps, the mains, and an optional added load. A dimmer or a lamp of the catalogue can be named by its id; it is judged as its latest revision says.',
     examples: [EXAMPLE_PAIRING],
   });
 
@@ -104,6 +117,7 @@ export const judgedPairing = z
   })
   .meta({ id: 'JudgedPairing', description: 'The pairing with every default filled in. Sent as a question it gets the same verdict.' });
 
+export type ReferringPairing = z.output<typeof referringPairing>;
 export type AskedPairing = z.output<typeof askedPairing>;
 export type AskedDimmer = AskedPairing['dimmer'];
 export type AskedLamp = AskedPairing['lamps'][number]['lamp'];

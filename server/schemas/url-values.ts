@@ -15,6 +15,35 @@ export function numberText(from: number, to: number, description: string, whole 
     .meta({ type: whole ? 'integer' : 'number', minimum: from, maximum: to, description });
 }
 
+/** A date, taken as its first moment, or a moment, as ms since 1970. Both in UTC unless an offset says otherwise. */
+export function momentText(description: string) {
+  const error = 'must be a date like 2026-03-02 or a moment like 2026-03-02T08:00:00Z, given once';
+  return z
+    .union([z.iso.date(), z.iso.datetime({ offset: true })], { error })
+    .transform((text) => Date.parse(text))
+    .meta({ type: 'string', format: 'date-time', description });
+}
+
+/** true or false. */
+export function flagText(description: string) {
+  return z
+    .enum(['true', 'false'], { error: choiceOf(['true', 'false']) })
+    .transform((text) => text === 'true')
+    .meta({ type: 'boolean', description });
+}
+
+/** Names of a closed set, with commas between them. */
+export function namesText<const N extends string>(names: readonly N[], description: string) {
+  const error = `must be one or more of ${names.join(', ')}, each once, with commas between them`;
+  const isListOf = (parts: readonly string[]) =>
+    new Set(parts).size === parts.length && parts.every((part) => (names as readonly string[]).includes(part));
+  return z
+    .string({ error })
+    .refine((text) => isListOf(text.split(',')), { error })
+    .transform((text) => text.split(',') as N[])
+    .meta({ type: 'string', description });
+}
+
 export const limitField = numberText(1, 100, 'How many to list. Default 20.', true).optional();
 
 export const DEFAULT_LIMIT = 20;

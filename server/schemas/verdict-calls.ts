@@ -1,7 +1,7 @@
-/** Parameters and answers of the calls that read verdicts: ids, filters, cursors, waveforms. */
+/** Parameters and answers of the calls that read one verdict: its id, its fields, its waveforms. */
 import { z } from 'zod';
-import { choiceOf, cursorField, limitField, nextCursorField, numberText } from './url-values.ts';
-import { GRADES, verdictHeading } from './verdict.ts';
+import { choiceOf, namesText, numberText } from './url-values.ts';
+import { VERDICT_FIELDS } from './verdict.ts';
 
 export const verdictParams = z.strictObject({
   id: z
@@ -10,26 +10,11 @@ export const verdictParams = z.strictObject({
     .describe('Id of a stored verdict.'),
 });
 
-export const verdictListQuery = z.strictObject({
-  grade: z
-    .enum(GRADES, { error: choiceOf(GRADES) })
-    .optional()
-    .describe('Only verdicts of this grade.'),
-  modelVersion: z
-    .string({ error: 'must be a model version, given once' })
-    .min(1, { error: 'must not be empty' })
-    .max(40, { error: 'must be at most 40 characters' })
-    .optional()
-    .describe('Only verdicts of this model version.'),
-  mainsVoltage_V: numberText(85, 265, 'Only verdicts at exactly this mains voltage.').optional(),
-  mainsFrequency_Hz: numberText(45, 65, 'Only verdicts at exactly this mains frequency.').optional(),
-  limit: limitField,
-  cursor: cursorField,
-});
-
-export const verdictList = z.object({
-  items: z.array(verdictHeading).describe('Newest first.'),
-  nextCursor: nextCursorField,
+export const verdictQuery = z.strictObject({
+  fields: namesText(
+    VERDICT_FIELDS,
+    'Only these fields of the verdict, as `grade,summary,conditions`: leaves out the dial rows. Absent for all.',
+  ).optional(),
 });
 
 export const waveformsQuery = z.strictObject({
@@ -65,4 +50,3 @@ export const waveforms = z
   });
 
 export type WaveformsAnswer = z.output<typeof waveforms>;
-export type VerdictListQuery = z.output<typeof verdictListQuery>;

@@ -1,16 +1,16 @@
-/** A verdict on the wire: grade, reasons and evidence for one pairing, and the headings that lists show. */
+/** A verdict on the wire: grade, reasons and evidence for one pairing. */
 import { z } from 'zod';
 import { judgedPairing } from './pairing.ts';
 
 export const GRADES = ['suitable', 'conditional', 'unsuitable', 'undetermined'] as const;
 
-const gradeField = z
+export const gradeField = z
   .enum(GRADES)
   .describe(
     'suitable: every lit dial position is steady, up and down, and the currents are within the ratings. conditional: so under the stated conditions. unsuitable: no such range, or a rating is exceeded. undetermined: it hinges on a value that was assumed.',
   );
-const createdAtField = z.string().meta({ format: 'date-time', description: 'When it was computed, UTC.' });
-const summaryField = z.string().describe('The verdict in one sentence.');
+export const createdAtField = z.string().meta({ format: 'date-time', description: 'When it was computed, UTC.' });
+export const summaryField = z.string().describe('The verdict in one sentence.');
 
 const dialState = z
   .enum(['dark', 'skipping', 're-firing', 'dropping-out', 'lopsided', 'wandering', 'undecided', 'steady'])
@@ -114,17 +114,7 @@ export const verdict = z
   })
   .meta({ id: 'Verdict', description: 'Grade, reasons and evidence for one pairing.' });
 
-export const verdictHeading = z
-  .object({
-    id: z.string(),
-    modelVersion: z.string(),
-    createdAt: createdAtField,
-    grade: gradeField,
-    summary: summaryField,
-    mains: z.object({ voltage_V: z.number(), frequency_Hz: z.number() }),
-  })
-  .meta({ id: 'VerdictHeading', description: 'A stored verdict as lists show it.' });
+export const VERDICT_FIELDS = Object.keys(verdict.shape) as (keyof Verdict)[];
 
 export type Verdict = z.output<typeof verdict>;
 export type Evidence = z.output<typeof evidence>;
-export type VerdictHeading = z.output<typeof verdictHeading>;

@@ -60,12 +60,16 @@ function flattenUnion(issue: Extract<ZodIssue, { code: 'invalid_union' }>, path:
   return [{ path: wirePath(path), message: issue.input === undefined ? `is missing: it ${message}` : message }];
 }
 
-/** how far the input is from a branch: infinite by another type, then by foreign and missing fields, then by wrong values */
+/** how far the input is from a branch: infinite by another type, then by each foreign field and by missing ones, then by wrong values */
 function distanceOf(issues: readonly ZodIssue[]): number {
-  const distances = issues.map((issue) => {
+  let distance = 0;
+  let misses = false;
+  for (const issue of issues) {
     if (issue.code === 'invalid_type' && issue.path.length === 0) return Number.POSITIVE_INFINITY;
-    if (issue.code === 'unrecognized_keys') return 10 * issue.keys.length;
-    return issue.code === 'invalid_type' && issue.input === undefined ? 10 : 1;
-  });
-  return distances.reduce((sum, distance) => sum + distance, 0);
+    if (issue.code === 'unrecognized_keys') distance += 10 * issue.keys.length;
+    else if (issue.code === 'invalid_type' && issue.input === undefined) misses = true;
+    else distance += 1;
+  }
+  // However many are missing: what is empty is no nearer to the branch that needs least.
+  return misses ? distance + 10 : distance;
 }

@@ -9,7 +9,7 @@ import type { Assumption } from './pairing-completion.ts';
 
 /**
  * Seven significant digits and no less than a millionth of the wire's unit: finer than the model's accuracy, short enough to read, and
- * the rounding noise of a symmetrical circuit reads as the 0 it is. The record keeps every bit.
+ * the rounding noise of a symmetrical circuit reads as the 0 it is.
  */
 function shown(value: number): number {
   return Number(Number(value.toPrecision(7)).toFixed(6));

@@ -10,6 +10,7 @@ import type { Simulation, SimulationFailure } from '../simulation/simulation.ts'
 import { canonicalJson, fingerprintOf, verdictIdOf } from './canonical-inputs.ts';
 import { type Assumption, type Completion, completePairing } from './pairing-completion.ts';
 import { toModel } from './pairing-to-model.ts';
+import { recordedJudgement } from './recorded-judgement.ts';
 import { storedVerdict } from './stored-verdicts.ts';
 
 export interface JudgingDependencies {
@@ -40,7 +41,7 @@ export function verdictJudging({ simulation, verdicts, now }: JudgingDependencie
     const { pairing: modelPairing, options } = toModel(pairing);
     const simulated = await simulation.judge(modelPairing, options);
     if (!simulated.ok) return simulated;
-    const row = rowOf(fingerprint, pairing, assumptions, simulated.value, now());
+    const row = verdictRowOf(fingerprint, pairing, assumptions, simulated.value, now());
     return { ok: true, ...verdicts.insertOnce(row) };
   };
 
@@ -73,7 +74,7 @@ function answer(row: VerdictRow, source: VerdictSource): JudgingResult {
   return { ok: true, verdict, source, halfCycles: source === 'computed' ? verdict.counters.halfCycles : 0 };
 }
 
-function rowOf(
+export function verdictRowOf(
   fingerprint: string,
   pairing: JudgedPairing,
   assumptions: readonly Assumption[],
@@ -89,8 +90,9 @@ function rowOf(
     summary: judgement.summary,
     mains_voltage: pairing.mains.voltage_V,
     mains_frequency: pairing.mains.frequency_Hz,
+    lamp_count: pairing.lamps.reduce((sum, { count }) => sum + count, 0),
     pairing: canonicalJson(pairing),
     assumptions: JSON.stringify(assumptions),
-    judgement: JSON.stringify(judgement),
+    judgement: JSON.stringify(recordedJudgement(judgement)),
   };
 }

@@ -1,9 +1,12 @@
 import { mkdirSync, writeFileSync } from 'node:fs';
 import { join } from 'node:path';
 import { pathToFileURL } from 'node:url';
-import { describe, expect, it } from 'vitest';
+import Database from 'better-sqlite3';
+import { describe, expect, it, onTestFinished } from 'vitest';
 import { migrate, readMigrations } from '../../db/migrations.ts';
 import { closeRecord, openRecord, type RecordDatabase } from '../../db/record.ts';
+import { NEWEST, verdictSearch } from '../../db/verdict-search.ts';
+import { verdictStore } from '../../db/verdicts.ts';
 import { FIXED_NOW, temporaryFolder, temporaryRecord } from '../support/server-temporary-record.ts';
 
 const now = () => FIXED_NOW;
@@ -35,8 +38,10 @@ describe('migrations', () => {
       'entries',
       'entry_tags',
       'entry_words',
+      'evidence',
       'import_rows',
       'imports',
+      'judged_pairs',
       'migrations',
       'revisions',
       'verdicts',
@@ -80,5 +85,58 @@ describe('migrations', () => {
   it('are refused where a number is missing or a name is out of line', () => {
     expect(() => readMigrations(folderWith({ '0001-a.sql': '', '0003-c.sql': '' }))).toThrow(/0003-c\.sql.*2 was expected/);
     expect(() => readMigrations(folderWith({ '1-a.sql': '' }))).toThrow(/not named like/);
+  });
+});
+
+describe('a record of before the evidence was compressed', () => {
+  it('keeps every verdict, in order, readable to the letter, and numbered without gaps', () => {
+    const file = join(temporaryFolder(), 'holdfast.sqlite');
+    const old = new Database(file);
+    old.pragma('application_id = 0x484f4c44');
+    migrate(old, now, readMigrations().slice(0, 3));
+    const pairing = '{"lamps":[{"count":2},{"count":3}],"mains":{"voltage_V":230.5}}';
+    const columns = {
+      grade: 'suitable',
+      summary: 'Old.',
+      mains_voltage: 230.5,
+      mains_frequency: 50,
+      pairing,
+      assumptions: '[{"value":0.10}]',
+    };
+    const insert = old.prepare(
+      `INSERT INTO verdicts (seq, id, fingerprint, model_version, created_at, grade, summary, mains_voltage, mains_frequency, pairing,
+         assumptions, judgement)
+       VALUES (@seq, @id, @fingerprint, '1', @created_at, @grade, @summary, @mains_voltage, @mains_frequency, @pairing, @assumptions, @judgement)`,
+    );
+    const fingerprints = ['0a', 'ff'].map((byte) => byte.repeat(32));
+    for (const [index, fingerprint] of fingerprints.entries()) {
+      const created_at = `2026-02-0${index + 1}T23:59:59.00${index + 1}Z`;
+      const id = fingerprint.slice(0, 26);
+      insert.run({ seq: index * 7 + 3, id, fingerprint, created_at, judgement: `{"grade":"suitable","number":${index}}`, ...columns });
+    }
+    old.close();
+
+    const record = openRecord(file, now);
+    onTestFinished(() => closeRecord(record));
+    const store = verdictStore(record);
+    expect(store.count()).toBe(2);
+    expect(fingerprints.map((fingerprint) => store.findByFingerprint(fingerprint))).toEqual(
+      fingerprints.map((fingerprint, index) => ({
+        id: fingerprint.slice(0, 26),
+        fingerprint,
+        model_version: '1',
+        created_at: `2026-02-0${index + 1}T23:59:59.00${index + 1}Z`,
+        lamp_count: 5,
+        judgement: `{"grade":"suitable","number":${index}}`,
+        ...columns,
+        // The text was kept and is parsed and written again: 0.10 is 0.1.
+        assumptions: '[{"value":0.1}]',
+      })),
+    );
+    const { headings } = verdictSearch(record).page({}, NEWEST, 10);
+    expect(headings.map(({ seq, id }) => [seq, id])).toEqual([
+      [2, 'f'.repeat(26)],
+      [1, '0a'.repeat(13)],
+    ]);
   });
 });

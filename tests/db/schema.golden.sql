@@ -10,11 +10,27 @@ CREATE INDEX entry_words_of_entry ON entry_words (kind, id, word);
 
 CREATE INDEX import_rows_by_entry ON import_rows (import, id) WHERE id IS NOT NULL;
 
-CREATE INDEX verdicts_by_grade ON verdicts (grade, seq);
+CREATE INDEX judged_pairs_by_dimmer ON judged_pairs (dimmer, created_at, verdict);
 
-CREATE INDEX verdicts_by_mains ON verdicts (mains_voltage, mains_frequency, seq);
+CREATE INDEX judged_pairs_by_lamp ON judged_pairs (lamp, created_at, verdict);
 
-CREATE INDEX verdicts_by_model_version ON verdicts (model_version, seq);
+CREATE INDEX judged_pairs_by_pair ON judged_pairs (dimmer, lamp, created_at, verdict);
+
+CREATE INDEX judged_pairs_of_circuit ON judged_pairs (circuit_row);
+
+CREATE INDEX judged_pairs_of_verdict ON judged_pairs (verdict);
+
+CREATE INDEX judged_pairs_stale ON judged_pairs (created_at, verdict) WHERE stale = 1;
+
+CREATE INDEX verdicts_by_grade ON verdicts (grade, created_at);
+
+CREATE INDEX verdicts_by_lamp_count ON verdicts (lamp_count, created_at);
+
+CREATE INDEX verdicts_by_mains ON verdicts (mains_voltage, created_at);
+
+CREATE INDEX verdicts_by_model_version ON verdicts (model_version, created_at);
+
+CREATE INDEX verdicts_by_time ON verdicts (created_at);
 
 CREATE TABLE entries (
   seq INTEGER PRIMARY KEY AUTOINCREMENT,
@@ -51,6 +67,15 @@ CREATE TABLE entry_words (
   PRIMARY KEY (kind, word, id)
 ) STRICT, WITHOUT ROWID;
 
+CREATE TABLE evidence (
+  verdict INTEGER PRIMARY KEY REFERENCES verdicts (seq),
+  -- how `content` is written: 0 as JSON text, 1 as db/evidence.ts says
+  encoding INTEGER NOT NULL CHECK (encoding IN (0, 1)),
+  -- {pairing, assumptions, judgement}: the completed pairing in wire form, which the verdict can be computed again from; the defaults
+  -- that were filled in, [{path, value, basis}]; the model's Judgement, in SI units
+  content BLOB NOT NULL
+) STRICT;
+
 CREATE TABLE import_rows (
   seq INTEGER PRIMARY KEY,
   import INTEGER NOT NULL REFERENCES imports (id),
@@ -75,6 +100,29 @@ CREATE TABLE imports (
   state TEXT NOT NULL CHECK (state IN ('arriving', 'applying')),
   -- ISO 8601, UTC, with milliseconds
   begun_at TEXT NOT NULL CHECK (begun_at GLOB '????-??-??T??:??:??.???Z')
+) STRICT;
+
+CREATE TABLE judged_pairs (
+  seq INTEGER PRIMARY KEY,
+  verdict INTEGER NOT NULL REFERENCES verdicts (seq),
+  -- the verdict's created_at, so that lists by entry have the order of all lists
+  created_at INTEGER NOT NULL,
+  -- `seq` of the first row of the same circuit: all of them are stale together
+  circuit_row INTEGER NOT NULL,
+  -- null where the dimmer, or this group's lamp, was given in full and not by its id
+  dimmer INTEGER REFERENCES entries (seq),
+  dimmer_revision INTEGER,
+  lamp INTEGER REFERENCES entries (seq),
+  lamp_revision INTEGER,
+  -- lamps of this group
+  lamp_count INTEGER NOT NULL,
+  -- 1 where the pair stands for itself: one group of lamps, nothing added, judged no less strictly than by default
+  plain INTEGER NOT NULL CHECK (plain IN (0, 1)),
+  -- 1 once the dimmer or a lamp of the circuit is no longer what was judged
+  stale INTEGER NOT NULL CHECK (stale IN (0, 1)),
+  CHECK ((dimmer IS NULL) = (dimmer_revision IS NULL)),
+  CHECK ((lamp IS NULL) = (lamp_revision IS NULL)),
+  CHECK (dimmer IS NOT NULL OR lamp IS NOT NULL)
 ) STRICT;
 
 CREATE TABLE migrations (
@@ -102,19 +150,15 @@ CREATE TABLE verdicts (
   -- first 26 hexadecimal digits of the fingerprint: what URLs carry
   id TEXT NOT NULL UNIQUE CHECK (length(id) = 26),
   -- SHA-256 of the canonical inputs and the model version: the same question has the same one
-  fingerprint TEXT NOT NULL UNIQUE CHECK (length(fingerprint) = 64),
+  fingerprint BLOB NOT NULL UNIQUE CHECK (length(fingerprint) = 32),
   model_version TEXT NOT NULL,
-  -- ISO 8601, UTC, with milliseconds
-  created_at TEXT NOT NULL CHECK (created_at GLOB '????-??-??T??:??:??.???Z'),
+  -- ms since 1970-01-01 UTC
+  created_at INTEGER NOT NULL,
   grade TEXT NOT NULL CHECK (grade IN ('suitable', 'conditional', 'unsuitable', 'undetermined')),
   summary TEXT NOT NULL,
   -- V r.m.s. and Hz
   mains_voltage REAL NOT NULL,
   mains_frequency REAL NOT NULL,
-  -- the completed pairing, in wire form: what the verdict can be computed again from
-  pairing TEXT NOT NULL CHECK (json_valid(pairing)),
-  -- the defaults that were filled in: [{path, value, basis}]
-  assumptions TEXT NOT NULL CHECK (json_valid(assumptions)),
-  -- the model's Judgement, in SI units
-  judgement TEXT NOT NULL CHECK (json_valid(judgement))
+  -- all lamps on the circuit
+  lamp_count INTEGER NOT NULL
 ) STRICT;

@@ -53,12 +53,28 @@ export const BAD_INPUT_CASES: readonly BadInputCase[] = [
     says: /capacitance_nF/,
   },
   {
-    title: 'a catalogue reference, which this version has none of',
+    title: 'a dimmer both by its id and in full',
     breakIt: (p) => {
-      p.dimmer = { dimmerId: 'hall' };
+      p.dimmer.dimmerId = 'hall';
     },
     path: 'dimmer.dimmerId',
     says: /not a field/,
+  },
+  {
+    title: 'an id that no entry can have',
+    breakIt: (p) => {
+      p.dimmer = { dimmerId: 'hall 1' };
+    },
+    path: 'dimmer.dimmerId',
+    says: /letters, digits/,
+  },
+  {
+    title: 'a lamp by its id without a count',
+    breakIt: (p) => {
+      p.lamps = [{ lampId: 'candle' }];
+    },
+    path: 'lamps[0].count',
+    says: /is missing/,
   },
   {
     title: 'a missing mains',

@@ -203,7 +203,7 @@ describe('GET /v1/verdicts', () => {
   it('shows headings without the evidence', async () => {
     const { get } = await withVerdicts(1);
     const { items } = (await get('/v1/verdicts')).json();
-    expect(Object.keys(items[0]).sort()).toEqual(['createdAt', 'grade', 'id', 'mains', 'modelVersion', 'summary']);
+    expect(Object.keys(items[0]).sort()).toEqual(['count', 'createdAt', 'grade', 'id', 'judgedFor', 'mains', 'modelVersion', 'summary']);
   });
 
   it('is empty before anything was judged', async () => {

@@ -1,21 +1,16 @@
 /** Builds the application for a test on a record of its own, with the simulation the test chooses, and closes it afterwards. */
 import pino from 'pino';
 import { onTestFinished } from 'vitest';
-import { type EntryStore, entryStore } from '../../db/entries.ts';
-import { entrySearch } from '../../db/entry-search.ts';
-import { importStaging } from '../../db/import-staging.ts';
 import { isRecordReadable, type RecordDatabase } from '../../db/record.ts';
-import { type VerdictStore, verdictStore } from '../../db/verdicts.ts';
+import { type Stores, storesOf } from '../../db/stores.ts';
 import { type App, type AppDependencies, buildApp } from '../../server/app.ts';
 import { IMPORT_LIMITS } from '../../server/imports/import-limits.ts';
 import { directSimulation } from '../../server/simulation/direct-simulation.ts';
 import { FIXED_NOW, temporaryRecord } from './server-temporary-record.ts';
 
-export interface TestApp {
+export interface TestApp extends Stores {
   readonly app: App;
   readonly record: RecordDatabase;
-  readonly verdicts: VerdictStore;
-  readonly entries: EntryStore;
   readonly post: (body: unknown) => ReturnType<typeof postJson>;
   readonly get: (url: string, headers?: { readonly [name: string]: string }) => ReturnType<typeof getUrl>;
   /** what the application logged, a line an entry */
@@ -24,16 +19,12 @@ export interface TestApp {
 
 export async function testApp(changes: Partial<AppDependencies> = {}): Promise<TestApp> {
   const record = temporaryRecord();
-  const verdicts = verdictStore(record);
-  const entries = entryStore(record);
+  const stores = storesOf(record);
   const logged: string[] = [];
   const app = await buildApp({
     logger: pino({ level: 'info' }, { write: (line: string) => void logged.push(line) }),
     simulation: directSimulation,
-    verdicts,
-    entries,
-    entrySearch: entrySearch(record),
-    importStaging: importStaging(record),
+    ...stores,
     importLimits: IMPORT_LIMITS,
     isRecordReadable: () => isRecordReadable(record),
     simulationLoad: () => ({ threads: 1, waiting: 0, completed: 0 }),
@@ -44,8 +35,7 @@ export async function testApp(changes: Partial<AppDependencies> = {}): Promise<T
   return {
     app,
     record,
-    verdicts,
-    entries,
+    ...stores,
     logged,
     post: (body) => postJson(app, body),
     get: (url, headers = {}) => getUrl(app, url, headers),

@@ -1,0 +1,31 @@
+/** Everything the service asks of an open record, each family of statements prepared once. */
+import { type EntryStore, entryStore } from './entries.ts';
+import { type EntrySearch, entrySearch } from './entry-search.ts';
+import { type ImportStaging, importStaging } from './import-staging.ts';
+import { type JudgedPairs, judgedPairs } from './judged-pairs.ts';
+import { type PartnerSearch, partnerSearch } from './partner-search.ts';
+import type { RecordDatabase } from './record.ts';
+import { type VerdictSearch, verdictSearch } from './verdict-search.ts';
+import { type VerdictStore, verdictStore } from './verdicts.ts';
+
+export interface Stores {
+  readonly verdicts: VerdictStore;
+  readonly verdictSearch: VerdictSearch;
+  readonly judgedPairs: JudgedPairs;
+  readonly partnerSearch: PartnerSearch;
+  readonly entries: EntryStore;
+  readonly entrySearch: EntrySearch;
+  readonly importStaging: ImportStaging;
+}
+
+export function storesOf(record: RecordDatabase): Stores {
+  return {
+    verdicts: verdictStore(record),
+    verdictSearch: verdictSearch(record),
+    judgedPairs: judgedPairs(record),
+    partnerSearch: partnerSearch(record),
+    entries: entryStore(record),
+    entrySearch: entrySearch(record),
+    importStaging: importStaging(record),
+  };
+}
