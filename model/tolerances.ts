@@ -120,4 +120,4 @@ export const DIP_RECOVERY = 1.1;
 /** a ring is no longer looked at once it has decayed by this many e-foldings: to 0.1 % of what it was */
 export const RING_FADED = 7;
 /** samples per period of the fastest living ring when dips are looked for; each is refined afterwards */
-export const DIP_SAMPLES = 24;
+export const DIP_SAMPLES = 8;

@@ -201,16 +201,16 @@ export class Segment {
   /** times after the segment's start that resolve its output: `perPeriod` a period of each ring while the ring lives, and at least that
    * many altogether */
   sampleTimes(perPeriod: number): number[] {
-    const { rotation, decay } = this.mode.linear;
+    const { rotation, decay, terms } = this.mode.linear;
     const times: number[] = [];
     let at = 0;
     while (at < this.duration) {
       times.push(at);
       let fastest = 0;
-      rotation.forEach((q, t) => {
+      for (let t = 0; t < terms; t++) {
         const faded = -(decay[t] as number) * at > RING_FADED;
-        if (q > fastest && !faded) fastest = q;
-      });
+        if (!faded && (rotation[t] as number) > fastest) fastest = rotation[t] as number;
+      }
       at += Math.min(this.duration, (2 * Math.PI) / fastest) / perPeriod;
     }
     times.push(this.duration);

@@ -109,6 +109,12 @@ export class MarginWatch implements TriacListener {
     return closest;
   }
 
+  private inGate(time: number): boolean {
+    if (this.gateSince !== null && time >= this.gateSince) return true;
+    for (const g of this.gates) if (time >= g.from && time < g.to) return true;
+    return false;
+  }
+
   /** triac current at a moment of the half-cycle, as a multiple of the holding current */
   private currentAt(segments: readonly Segment[], time: number): number {
     const { holdingCurrent } = this.dimmer;
@@ -125,28 +131,26 @@ export class MarginWatch implements TriacListener {
     let lowestAt: Dip | null = null;
     // after a passage below the holding current the current has to come down again first; after a gate pulse it may dip from the start
     let highest = Number.POSITIVE_INFINITY;
-    const startOver = (afterGate: boolean): void => {
-      lowest = Number.POSITIVE_INFINITY;
-      lowestAt = null;
-      highest = afterGate ? Number.POSITIVE_INFINITY : 0;
-    };
     for (const segment of segments) {
       if (segment.mode.configuration.triac === 'open') {
-        startOver(true);
+        lowest = Number.POSITIVE_INFINITY;
+        lowestAt = null;
+        highest = Number.POSITIVE_INFINITY;
         continue;
       }
       const current = segment.reader(OUTPUT.triacCurrent);
       const times = segment.sampleTimes(DIP_SAMPLES);
       for (let k = 0; k < times.length; k++) {
         const s = times[k] as number;
-        const time = segment.start + s;
         const amperes = current(s);
         const sign = amperes >= 0 ? 1 : -1;
         const limit = sign === 1 ? holdingCurrent.positive : holdingCurrent.negative;
         const ratio = Math.abs(amperes) / limit;
-        const inGate = this.gates.some((g) => time >= g.from && time < g.to) || (this.gateSince !== null && time >= this.gateSince);
-        if (ratio < 1 || inGate) {
-          startOver(inGate);
+        const gated = this.inGate(segment.start + s);
+        if (ratio < 1 || gated) {
+          lowest = Number.POSITIVE_INFINITY;
+          lowestAt = null;
+          highest = gated ? Number.POSITIVE_INFINITY : 0;
           continue;
         }
         highest = Math.max(highest, ratio);
@@ -155,7 +159,8 @@ export class MarginWatch implements TriacListener {
           lowestAt = { segment, from: times[k - 1] ?? 0, to: times[k + 1] ?? segment.duration, sign };
         } else if (lowestAt !== null && ratio > lowest * DIP_RECOVERY) {
           found.push(refined(lowestAt, lowest * limit) / limit);
-          startOver(false);
+          lowest = Number.POSITIVE_INFINITY;
+          lowestAt = null;
           highest = ratio;
         }
       }
