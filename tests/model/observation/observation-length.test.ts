@@ -31,11 +31,12 @@ describe('settling and observing on the reference grid', () => {
       'settled and observed for twice as long',
       { ...OBSERVATION_PLAN, settle: 2 * OBSERVATION_PLAN.settle, observe: 2 * OBSERVATION_PLAN.observe },
     ],
-  ])('shows the same states where a wandering circuit is %s', (_, longer) => {
+  ])('shows the same state where a wandering circuit is %s', (_, longer) => {
     for (const { name, pairing, position } of wandering) {
       const usual = rowAt(pairing, position, OBSERVATION_PLAN);
       const long = rowAt(pairing, position, longer);
-      expect([long.state, ...long.alsoStates], name).toEqual([usual.state, ...usual.alsoStates]);
+      // the states besides it may gain or lose "lopsided": where firings come and go, so do the polarities' shares
+      expect(long.state, name).toBe(usual.state);
     }
   });
 });
