@@ -1,0 +1,156 @@
+/**
+ * Measures the engine: half-cycles per second on one core for each load kind, its steps and events, what building the modes of a new
+ * dial position costs, how a sweep grows with lamp groups, and, alternately in the same call, what ngspice makes of the same circuits.
+ * Every figure is the median of several runs with its least and most.
+ *
+ *   npm run bench:engine [-- --runs 5] [--no-ngspice] [--grid]
+ *
+ * --grid adds a two-way sweep of 21 positions of every circuit of the reference grid. Run it on an otherwise idle machine.
+ */
+import { parseArgs } from 'node:util';
+import type { Configuration } from '../model/circuit/configuration.ts';
+import { linearKey } from '../model/circuit/configuration.ts';
+import { closeModeSystem, openModeSystem } from '../model/circuit/mode-system.ts';
+import { layNetwork } from '../model/circuit/network.ts';
+import { DimmerRun } from '../model/engine/dimmer-run.ts';
+import { linearMode } from '../model/engine/mode.ts';
+import type { Pairing } from '../model/index.ts';
+import { sweepDial } from '../model/observation/dial-sweep.ts';
+import { LADDER_LEVELS } from '../model/tolerances.ts';
+import { cases } from '../tests/ngspice/cases.ts';
+import { ngspiceVersion, runNgspice } from '../tests/ngspice/run.ts';
+import { type BenchCircuit, benchCircuits, groupedPairing } from './bench-circuits.ts';
+import { figure, machineLine, type Spread, spreadOf } from './bench-figures.ts';
+
+const DIALS = [20, 40, 60, 80, 100];
+const POSITIONS = Array.from({ length: 21 }, (_, k) => 5 * k);
+/** half-cycles per timed run and dial position, and before timing begins: settled, and compiled */
+const TIMED = 4000;
+const WARM_UP = 2000;
+const NGSPICE_HALF_CYCLES = 8;
+
+const { values } = parseArgs({
+  options: {
+    runs: { type: 'string', default: '5' },
+    'no-ngspice': { type: 'boolean', default: false },
+    grid: { type: 'boolean', default: false },
+  },
+});
+const runs = Number(values.runs);
+
+const told = (s: Spread): string => `${figure(s.median)} (${figure(s.least)} to ${figure(s.most)})`;
+
+interface EngineRate {
+  readonly perSecond: number;
+  readonly steps: number;
+  readonly events: number;
+}
+
+/** one timed run over the dial positions: half-cycles over the time that all of them took together */
+function timeEngine(atDials: readonly DimmerRun[]): EngineRate {
+  const before = atDials.map((run) => ({ steps: run.steps, events: run.events }));
+  const began = performance.now();
+  for (const run of atDials) for (let k = 0; k < TIMED; k++) run.finishHalfCycle();
+  const seconds = (performance.now() - began) / 1000;
+  const halfCycles = TIMED * atDials.length;
+  const sum = (pick: (run: DimmerRun, k: number) => number): number => atDials.reduce((total, run, k) => total + pick(run, k), 0);
+  return {
+    perSecond: halfCycles / seconds,
+    steps: sum((run, k) => run.steps - (before[k]?.steps ?? 0)) / halfCycles,
+    events: sum((run, k) => run.events - (before[k]?.events ?? 0)) / halfCycles,
+  };
+}
+
+function settledRuns(pairing: Pairing): DimmerRun[] {
+  return DIALS.map((dial) => {
+    const run = new DimmerRun(layNetwork(pairing), pairing.dimmer);
+    run.setDial(dial);
+    for (let k = 0; k < WARM_UP; k++) run.finishHalfCycle();
+    return run;
+  });
+}
+
+async function timeNgspice(pairing: Pairing): Promise<number> {
+  const began = performance.now();
+  for (const dial of DIALS) await runNgspice(pairing, dial, { halfCycles: NGSPICE_HALF_CYCLES });
+  return (NGSPICE_HALF_CYCLES * DIALS.length) / ((performance.now() - began) / 1000);
+}
+
+/** microseconds to build one mode anew at another timing resistance, over the configurations that the circuit passes through */
+function timeRebuild(pairing: Pairing): { readonly perMode: number; readonly modes: number } {
+  const network = layNetwork(pairing);
+  const met = new Map<string, Configuration>();
+  const run = new DimmerRun(network, pairing.dimmer);
+  run.segmentListener = { segment: (mode) => void met.set(linearKey(mode.configuration), mode.configuration) };
+  run.setDial(60);
+  for (let k = 0; k < 20; k++) run.finishHalfCycle();
+  const open = [...met.values()].map((c) => openModeSystem(network, pairing.dimmer, c));
+  const shortest = run.halfPeriod / 2 ** LADDER_LEVELS;
+  const repeats = Math.ceil(400 / open.length);
+  const began = performance.now();
+  for (let k = 0; k < repeats; k++) for (const system of open) linearMode(closeModeSystem(system, 50e3 + k), network.omega, shortest);
+  return { perMode: ((performance.now() - began) * 1000) / (repeats * open.length), modes: open.length };
+}
+
+function timeSweep(pairing: Pairing): { readonly ms: number; readonly modesBuilt: number; readonly halfCycles: number } {
+  const began = performance.now();
+  const { counters } = sweepDial(pairing, POSITIONS);
+  return { ms: performance.now() - began, modesBuilt: counters.modesBuilt, halfCycles: counters.halfCycles };
+}
+
+async function benchCircuit(circuit: BenchCircuit, withNgspice: boolean): Promise<{ engine: number; ratio: number | null; sweep: number }> {
+  const atDials = settledRuns(circuit.pairing);
+  const engine: EngineRate[] = [];
+  const ngspice: number[] = [];
+  for (let r = 0; r < runs; r++) {
+    engine.push(timeEngine(atDials));
+    // ngspice is timed three times at most: it takes seconds
+    if (withNgspice && r < 3) ngspice.push(await timeNgspice(circuit.pairing));
+  }
+  const sweeps = Array.from({ length: runs + 2 }, () => timeSweep(circuit.pairing)).slice(2);
+  const rebuild = Array.from({ length: runs }, () => timeRebuild(circuit.pairing));
+  const rate = spreadOf(engine.map((e) => e.perSecond));
+  const sweep = spreadOf(sweeps.map((s) => s.ms));
+  const perMode = spreadOf(rebuild.map((b) => b.perMode));
+  const share = (perMode.median * (sweeps[0]?.modesBuilt ?? 0)) / 1000 / sweep.median;
+  console.log(`${circuit.kind}: ${circuit.name}`);
+  console.log(
+    `  engine     ${told(rate)} half-cycles/s, ${figure(engine[0]?.steps ?? 0)} steps and ${figure(engine[0]?.events ?? 0)} events each`,
+  );
+  console.log(`  sweep      ${told(sweep)} ms for 21 positions up and down, ${sweeps[0]?.halfCycles} half-cycles`);
+  console.log(`  new modes  ${told(perMode)} us each, ${sweeps[0]?.modesBuilt} in the sweep: ${figure(100 * share)} % of it`);
+  const reference = ngspice.length === 0 ? null : spreadOf(ngspice);
+  if (reference !== null) {
+    console.log(`  ngspice    ${told(reference)} half-cycles/s: the engine is ${figure(rate.median / reference.median)} times as fast`);
+  }
+  return { engine: rate.median, ratio: reference === null ? null : rate.median / reference.median, sweep: sweep.median };
+}
+
+function benchGroups(): void {
+  console.log('growth with different lamp groups (sweep of 21 positions, ms):');
+  for (let groups = 1; groups <= 6; groups++) {
+    const pairing = groupedPairing(groups);
+    const times = Array.from({ length: runs + 1 }, () => timeSweep(pairing)).slice(1);
+    console.log(`  ${groups}: ${told(spreadOf(times.map((t) => t.ms)))}, ${times[0]?.halfCycles} half-cycles`);
+  }
+}
+
+function benchGrid(): void {
+  const times = cases.map((c) => {
+    timeSweep(c.pairing);
+    return spreadOf(Array.from({ length: 3 }, () => timeSweep(c.pairing).ms)).median;
+  });
+  console.log(`reference grid, ${cases.length} circuits: a sweep of 21 positions takes ${told(spreadOf(times))} ms`);
+}
+
+console.log(machineLine());
+const version = values['no-ngspice'] ? null : ngspiceVersion();
+if (version === null && !values['no-ngspice']) console.log('ngspice is not installed: engine alone');
+const results: { engine: number; ratio: number | null; sweep: number }[] = [];
+for (const circuit of benchCircuits()) results.push(await benchCircuit(circuit, version !== null));
+console.log(`over ${results.length} circuits: ${told(spreadOf(results.map((r) => r.engine)))} half-cycles/s`);
+const ratios = results.map((r) => r.ratio).filter((r) => r !== null);
+if (ratios.length > 0) console.log(`  against ${version}: ${told(spreadOf(ratios))} times as fast`);
+console.log(`  sweep: ${told(spreadOf(results.map((r) => r.sweep)))} ms`);
+benchGroups();
+if (values.grid) benchGrid();
