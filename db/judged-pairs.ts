@@ -58,6 +58,8 @@ export interface JudgedPairs {
   markStale(entry: number): void;
   /** A verdict's ties, first made first, at most `limit`. */
   ofVerdict(verdict: number, limit: number): readonly JudgedPairRow[];
+  /** A text that changes with whatever `ofPair` depends on; undefined where either entry is not there. */
+  stampOf(dimmerId: string, lampId: string): string | undefined;
   /** The verdicts of two entries for each other, newest first, at most `limit`. */
   ofPair(dimmerId: string, lampId: string, limit: number): readonly PairVerdictRow[];
 }
@@ -112,6 +114,15 @@ export function judgedPairs(record: RecordDatabase): JudgedPairs {
      ORDER BY p.created_at DESC, p.verdict DESC LIMIT ?`,
   );
 
+  const stampOf = record
+    .prepare<[string, string], string>(
+      `SELECT d.circuit || ' ' || l.circuit || ' ' ||
+         coalesce((SELECT max(p.seq) FROM judged_pairs p WHERE p.dimmer = d.seq AND p.lamp = l.seq), 0)
+       FROM entries d CROSS JOIN entries l
+       WHERE d.kind = 'dimmer' AND d.id = ? AND d.deleted_at IS NULL AND l.kind = 'lamp' AND l.id = ? AND l.deleted_at IS NULL`,
+    )
+    .pluck();
+
   const partFor = (dimmer: JudgedEntry | undefined, { lamp, count }: JudgedGroup): Part => ({
     dimmer: dimmer === undefined ? null : seqOf('dimmer', dimmer.id),
     dimmer_revision: dimmer?.revision ?? null,
@@ -150,6 +161,7 @@ export function judgedPairs(record: RecordDatabase): JudgedPairs {
     tie: (verdictId, circuit) => tie.immediate(verdictId, circuit),
     markStale: (entry) => void markEntry.run({ entry }),
     ofVerdict: (verdict, limit) => ofVerdict.all(verdict, limit),
+    stampOf: (dimmerId, lampId) => stampOf.get(dimmerId, lampId),
     ofPair: (dimmerId, lampId, limit) => ofPair.all(dimmerId, lampId, limit),
   };
 }

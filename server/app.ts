@@ -15,6 +15,7 @@ import { validateBySchema } from './plugins/schema-validation.ts';
 import { addSecurityHeaders } from './plugins/security-headers.ts';
 import { refuseWhileStopping } from './plugins/stopping.ts';
 import { clientErrorText, replyToError, sendProblem } from './problem-replies.ts';
+import { badgeRoutes } from './routes/badges.ts';
 import { entryRoutes } from './routes/entries.ts';
 import { entryListRoutes } from './routes/entry-lists.ts';
 import { healthRoutes } from './routes/health.ts';
@@ -92,6 +93,7 @@ export async function buildApp(dependencies: AppDependencies): Promise<App> {
   await app.register(entryRoutes(dependencies));
   await app.register(entryListRoutes(dependencies));
   await app.register(partnerRoutes(dependencies));
+  await app.register(badgeRoutes(dependencies));
   await app.register(importRoutes(dependencies));
   return app;
 }
