@@ -86,7 +86,7 @@ export const ASSUMABLE_OF_DIMMER: { readonly [path: string]: Assumable } = {
     'capacitance',
   ),
   'dimmer.drive.fixedResistance': ofDiac(
-    { what: 'the fixed timing resistor', unit: 'kOhm', scale: 1e3, range: bySupply([3.3e3, 10e3], [1.5e3, 6.8e3]), measure: NO_TEST },
+    { what: 'the fixed timing resistor', unit: 'kOhm', scale: 1e3, range: bySupply([10e3, 33e3], [4.7e3, 15e3]), measure: NO_TEST },
     'fixedResistance',
   ),
   'dimmer.drive.gateResistance': ofDiac(
