@@ -7,6 +7,7 @@ const ROOT = new URL('..', import.meta.url).pathname;
 
 export interface ServiceProcess {
   readonly address: string;
+  readonly pid: number;
   /** asks it to stop and gives the exit code, null where it was killed */
   stop(): Promise<number | null>;
 }
@@ -23,6 +24,7 @@ export async function startService(dataFolder: string): Promise<ServiceProcess> 
   if (typeof address !== 'string') throw new Error(`The service ended with ${address} before it listened.`);
   return {
     address,
+    pid: child.pid ?? 0,
     stop: () => {
       child.kill('SIGTERM');
       return exit;

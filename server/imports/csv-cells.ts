@@ -6,7 +6,7 @@ import type { Issue } from '../schemas/wire-parsing.ts';
 import type { Column } from './csv-columns.ts';
 import { type DecimalStyle, quoted, readNumber } from './csv-numbers.ts';
 
-export type CellsReading = { readonly ok: true; readonly value: unknown } | { readonly ok: false; readonly issues: readonly Issue[] };
+export type CellsReading = { readonly ok: true; readonly value: object } | { readonly ok: false; readonly issues: readonly Issue[] };
 
 type Cell = { readonly ok: true; readonly value: unknown } | { readonly ok: false; readonly message: string };
 
@@ -76,8 +76,9 @@ function besideOf(column: Column, cells: readonly string[], columns: readonly Co
 function place(entry: Branch, path: readonly string[], value: unknown): string | undefined {
   let branch = entry;
   for (const [depth, field] of path.slice(0, -1).entries()) {
-    const inner = branch[field] ?? {};
-    if (typeof inner !== 'object') return `is given together with ${path.slice(0, depth + 1).join('.')}: one or the other`;
+    const inner = branch[field] === undefined ? {} : branch[field];
+    if (typeof inner !== 'object' || inner === null)
+      return `is given together with ${path.slice(0, depth + 1).join('.')}: one or the other`;
     branch[field] = inner;
     branch = inner as Branch;
   }

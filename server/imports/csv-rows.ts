@@ -32,7 +32,8 @@ export async function* csvRows(
       continue;
     }
     const read = readCells(cells, columns, style, row);
-    yield read.ok ? { row, value: read.value } : { row, issues: read.issues, id: idOf(cells, columns) };
+    // The part that all columns but the texts lie in is there even where all of them are empty, so that what is missing is named.
+    yield read.ok ? { row, value: { [kind]: {}, ...read.value } } : { row, issues: read.issues, id: idOf(cells, columns) };
   }
   if (columns === undefined) throw new ListRefused('unreadable-list', 'The list is empty: its first row must name the columns.');
 }

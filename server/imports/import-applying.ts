@@ -10,7 +10,7 @@ import type { Entry } from '../schemas/entry.ts';
 import { pacing } from './pacing.ts';
 
 /** rows put in one transaction: some ms */
-const BATCH = 32;
+const BATCH = 96;
 
 export interface ApplyingDependencies {
   readonly entries: EntryStore;

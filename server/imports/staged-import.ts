@@ -11,7 +11,7 @@ import { pacing } from './pacing.ts';
 import { checkRow, refused } from './row-check.ts';
 
 /** rows staged in one transaction: a few ms */
-const BATCH = 64;
+const BATCH = 128;
 
 export interface StagedImport {
   readonly importId: number;
