@@ -7,9 +7,9 @@ import type { EntryKind, EntryStore, PutOutcome } from '../../db/entries.ts';
 import type { ImportStaging, StagedRow } from '../../db/import-staging.ts';
 import { type EntryOf, putEntry } from '../catalogue/entries.ts';
 import type { Entry } from '../schemas/entry.ts';
-import { pacing } from './pacing.ts';
+import { pacing, STRETCH } from './pacing.ts';
 
-/** rows put in one transaction: some ms */
+/** rows put in one transaction at most; the transaction ends earlier where they take longer than a stretch of work may */
 const BATCH = 96;
 
 export interface ApplyingDependencies {
@@ -51,13 +51,24 @@ async function applyAll(
     if (!result.ok) throw new Error('A put that expects nothing was refused.');
     return result.outcome;
   };
+  /** What became of the first of the rows: as many as can be put in one stretch, at least one where there is one. */
+  const putSome = (rows: readonly StagedRow[]): readonly PutOutcome[] => {
+    const begun = performance.now();
+    const at = now();
+    const outcomes: PutOutcome[] = [];
+    for (const row of rows) {
+      outcomes.push(put(row, at));
+      if (performance.now() - begun > STRETCH) break;
+    }
+    return outcomes;
+  };
   const applyBatch = (after: number): number | undefined =>
     entries.together(() => {
       const rows = staging.toApply(importId, after, BATCH);
-      const at = now();
-      const outcomes = dryRun ? undone(entries, () => rows.map((row) => put(row, at))) : rows.map((row) => put(row, at));
-      for (const [index, { row }] of rows.entries()) staging.note(importId, row, outcomes[index] as PutOutcome);
-      return rows.at(-1)?.row;
+      const putThem = () => putSome(rows);
+      const outcomes = dryRun ? undone(entries, putThem) : putThem();
+      for (const [index, outcome] of outcomes.entries()) staging.note(importId, rows[index]?.row ?? 0, outcome);
+      return rows[outcomes.length - 1]?.row;
     });
 
   for (let after = applyBatch(0); after !== undefined; after = applyBatch(after)) {

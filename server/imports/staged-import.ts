@@ -11,7 +11,7 @@ import { pacing } from './pacing.ts';
 import { checkRow, refused } from './row-check.ts';
 
 /** rows staged in one transaction: a few ms */
-const BATCH = 128;
+const BATCH = 64;
 
 export interface StagedImport {
   readonly importId: number;
