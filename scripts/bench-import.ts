@@ -23,6 +23,8 @@ export interface ImportMeasurement {
   readonly rowsPerSecond: number;
   /** MiB; the kernel's own high-water mark where it keeps one, else the highest of the samples */
   readonly peakMemory_MiB: number;
+  /** MiB; the same before the import: what the process and its simulation thread hold anyway */
+  readonly memoryBefore_MiB: number;
   /** ms, of /health/live asked at a fixed rate: without anything else, and during the import */
   readonly healthIdle_ms: Latency;
   readonly healthDuring_ms: Latency;
@@ -50,6 +52,7 @@ export async function measureImport(rows = 100_000): Promise<ImportMeasurement> 
       await wait(IDLE_CHECKS * HEALTH_INTERVAL);
       const healthIdle_ms = await idle.stop();
 
+      const memoryBefore_MiB = peakMemory(service.pid) ?? Number.NaN;
       const during = healthChecks(service.address);
       const started = performance.now();
       const created = await importFile(service.address, file);
@@ -63,6 +66,7 @@ export async function measureImport(rows = 100_000): Promise<ImportMeasurement> 
         duration_s,
         rowsPerSecond: rows / duration_s,
         peakMemory_MiB,
+        memoryBefore_MiB,
         healthIdle_ms,
         healthDuring_ms,
       };
@@ -157,7 +161,7 @@ export function importMeasurementText(measured: ImportMeasurement): string {
   return [
     `${measured.rows} lamps, ${(measured.bytes / 2 ** 20).toFixed(1)} MiB of CSV`,
     `imported in    ${measured.duration_s.toFixed(1)} s, ${Math.round(measured.rowsPerSecond)} rows/s`,
-    `peak memory    ${Math.round(measured.peakMemory_MiB)} MiB of the whole service process`,
+    `peak memory    ${Math.round(measured.peakMemory_MiB)} MiB of the whole service process, ${Math.round(measured.memoryBefore_MiB)} MiB before`,
     `/health/live   ${latency(measured.healthDuring_ms)}`,
     `  when idle    ${latency(measured.healthIdle_ms)}`,
   ].join('\n');
