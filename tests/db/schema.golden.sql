@@ -10,6 +10,8 @@ CREATE INDEX entry_words_of_entry ON entry_words (kind, id, word);
 
 CREATE INDEX import_rows_by_entry ON import_rows (import, id) WHERE id IS NOT NULL;
 
+CREATE INDEX imports_by_state ON imports (state, id);
+
 CREATE INDEX judged_pairs_by_dimmer ON judged_pairs (dimmer, created_at, verdict);
 
 CREATE INDEX judged_pairs_by_lamp ON judged_pairs (lamp, created_at, verdict);
