@@ -26,8 +26,6 @@ export function dialRow(position: number, change: Partial<DialRow> = {}): DialRo
     diacStuck: false,
     margins: { latching: null, holding: null, breakover: null },
     nearEdge: false,
-    margins: { latching: null, holding: null, breakover: null },
-    nearEdge: false,
     ...change,
   };
 }
