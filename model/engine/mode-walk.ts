@@ -48,6 +48,8 @@ export class ModeWalk {
   private watchedCount = 0;
   private readonly suspects = new Int32Array(MOST_GUARDS);
   private level = 6;
+  private slope = 0;
+  private curvature = 0;
   private firstStep = true;
   private growing = false;
   private readonly shortest: number;
@@ -174,21 +176,32 @@ export class ModeWalk {
     return sum;
   }
 
-  private slopeOf(z: Float64Array, output: number): number {
+  /** first and second derivative of an output at the coordinates, into `slope` and `curvature` */
+  private differentiate(z: Float64Array, output: number): void {
     const { linear } = this.mode;
     const { outputRows, outputStride, decay, rotation, terms } = linear;
     const { reals } = linear.modal;
     let at = output * outputStride;
-    let sum = 0;
-    for (let k = 0; k < reals; k++, at++) sum += (outputRows[at] as number) * (decay[k] as number) * (z[k] as number);
+    let first = 0;
+    let second = 0;
+    for (let k = 0; k < reals; k++, at++) {
+      const d = decay[k] as number;
+      const share = (outputRows[at] as number) * (z[k] as number) * d;
+      first += share;
+      second += share * d;
+    }
     for (let t = reals, k = reals; t < terms; t++, k += 2, at += 3) {
       const d = decay[t] as number;
       const q = rotation[t] as number;
-      const re = z[k] as number;
-      const im = z[k + 1] as number;
-      sum += (outputRows[at] as number) * (d * re - q * im) + (outputRows[at + 1] as number) * (q * re + d * im);
+      const a = outputRows[at] as number;
+      const b = outputRows[at + 1] as number;
+      const re = d * (z[k] as number) - q * (z[k + 1] as number);
+      const im = q * (z[k] as number) + d * (z[k + 1] as number);
+      first += a * re + b * im;
+      second += a * (d * re - q * im) + b * (q * re + d * im);
     }
-    return sum;
+    this.slope = first;
+    this.curvature = second;
   }
 
   /** the state now, in the mode's own coordinates */
@@ -288,10 +301,12 @@ export class ModeWalk {
     let lo = 0;
     let hi = span;
     const enough = ROOT_SHARE * (slack[g] as number);
-    // first guess: inverse cubic through both ends with their slopes; then Newton, kept inside the bracket
-    const s0 = this.slopeOf(this.z, output) * inside;
-    const s1 = this.slopeOf(this.zNext, output) * inside;
-    let at = inverseHermite(f0, f1, s0, s1, span);
+    // first guess: the quintic through value, slope and curvature at both ends; then Newton, kept inside the bracket
+    this.differentiate(this.z, output);
+    const slope0 = this.slope * inside * span;
+    const bend0 = this.curvature * inside * span * span;
+    this.differentiate(this.zNext, output);
+    let at = span * quinticRoot(f0, f1, slope0, this.slope * inside * span, bend0, this.curvature * inside * span * span);
     for (let k = 0; k < 60; k++) {
       if (!(at > lo && at < hi)) at = k < 6 ? lo + ((hi - lo) * f0) / (f0 - f1) : (lo + hi) / 2;
       this.advance(this.zNext, this.z, at);
@@ -305,8 +320,8 @@ export class ModeWalk {
         f1 = f;
       }
       if (hi - lo <= EVENT_TIME) break;
-      const slope = this.slopeOf(this.zNext, output) * inside;
-      at = k < 12 ? at - f / slope : (lo + hi) / 2;
+      this.differentiate(this.zNext, output);
+      at = k < 12 ? at - f / (this.slope * inside) : (lo + hi) / 2;
     }
     this.advance(this.zNext, this.z, hi);
     return hi;
@@ -494,12 +509,25 @@ export class ModeWalk {
   }
 }
 
-/** where a cubic in f through (f0, 0) and (f1, span) with slopes 1/s0, 1/s1 passes f = 0; the straight line where slopes are of no use */
-function inverseHermite(f0: number, f1: number, s0: number, s1: number, span: number): number {
-  const width = f1 - f0;
-  const u = -f0 / width;
-  if (!(s0 < 0 && s1 < 0)) return span * u;
-  const m0 = width / s0;
-  const m1 = width / s1;
-  return u * (u * (span * (3 - 2 * u) + (u - 1) * m1) + (u - 1) * (u - 1) * m0);
+/** where between 0 and 1 the quintic with these values, slopes and curvatures at 0 and 1 passes zero, having fallen from f0 > 0 to f1 */
+function quinticRoot(f0: number, f1: number, slope0: number, slope1: number, bend0: number, bend1: number): number {
+  const rise = f1 - f0 - slope0 - bend0 / 2;
+  const turn = slope1 - slope0 - bend0;
+  const bend = bend1 - bend0;
+  const c3 = 10 * rise - 4 * turn + bend / 2;
+  const c4 = -15 * rise + 7 * turn - bend;
+  const c5 = 6 * rise - 3 * turn + bend / 2;
+  let lo = 0;
+  let hi = 1;
+  let u = f0 / (f0 - f1);
+  for (let k = 0; k < 8; k++) {
+    const value = f0 + u * (slope0 + u * (bend0 / 2 + u * (c3 + u * (c4 + u * c5))));
+    if (value > 0) lo = u;
+    else hi = u;
+    const next = u - value / (slope0 + u * (bend0 + u * (3 * c3 + u * (4 * c4 + u * 5 * c5))));
+    const kept = next > lo && next < hi ? next : (lo + hi) / 2;
+    if (Math.abs(kept - u) < 1e-9) return kept;
+    u = kept;
+  }
+  return u;
 }
