@@ -18,7 +18,7 @@ export const peakOf = (mains: Mains): number => Math.SQRT2 * mains.voltage;
 export function diacDrive(change: Partial<DiacDrive> = {}): DiacDrive {
   return {
     kind: 'diac',
-    fixedResistance: 6.8e3,
+    fixedResistance: 22e3,
     potentiometer: 330e3,
     capacitance: 100e-9,
     breakover: both(32),
@@ -35,7 +35,7 @@ export function diacDrive(change: Partial<DiacDrive> = {}): DiacDrive {
 
 /** the timing network for 100 to 127 V */
 export const diacDrive120 = (change: Partial<DiacDrive> = {}): DiacDrive =>
-  diacDrive({ fixedResistance: 3.3e3, potentiometer: 150e3, ...change });
+  diacDrive({ fixedResistance: 10e3, potentiometer: 150e3, ...change });
 
 export function timedDrive(change: Partial<TimedDrive> = {}): TimedDrive {
   return {

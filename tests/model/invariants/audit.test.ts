@@ -6,7 +6,7 @@ import { Audit, EXCESS_ALLOWED } from '../../support/model-audit.ts';
 import { Deviations } from '../../support/model-deviations.ts';
 import { startRun } from '../../support/model-run.ts';
 
-const HALF_CYCLES = 6;
+const HALF_CYCLES = 4;
 const deviations = new Deviations('audit of generated circuits (relative, or V and A)');
 
 describe('a generated circuit', () => {
@@ -25,7 +25,7 @@ describe('a generated circuit', () => {
         deviations.absolute('excess over a region (V or A)', totals.excessOf, totals.worstExcess, 0, EXCESS_ALLOWED);
         deviations.absolute('a reported output against its own definition', where, totals.worstReported, 0, 1e-7);
       }),
-      runsOf(100),
+      runsOf(60),
     );
   });
 });

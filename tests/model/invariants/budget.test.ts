@@ -8,7 +8,7 @@ import { DROP_OUT_ANGLE, STEP_BUDGET } from '../../../model/tolerances.ts';
 import type { DialRow } from '../../../model/verdict.ts';
 import { builtPairings, dialPositions, runsOf, validPairings } from '../../support/model-arbitrary.ts';
 
-const PLAN = { settle: 8, observe: 4, dropOutAngle: DROP_OUT_ANGLE };
+const PLAN = { settle: 4, observe: 2, dropOutAngle: DROP_OUT_ANGLE };
 
 function finite(value: unknown, path: string): void {
   if (typeof value === 'number') expect(Number.isFinite(value), `${path} is ${value}`).toBe(true);
@@ -18,9 +18,9 @@ function finite(value: unknown, path: string): void {
 /** rows of a short sweep, held to their ranges */
 function soundRows(pairing: Pairing, dial: number): readonly DialRow[] {
   expect(checkPairing(pairing)).toEqual([]);
-  const positions = [...new Set([0, dial, 100])].sort((a, b) => a - b);
+  const positions = [...new Set([dial, 100])].sort((a, b) => a - b);
   const { rows, counters } = sweepDial(pairing, positions, PLAN);
-  expect(rows).toHaveLength(2 * positions.length);
+  expect(rows).toHaveLength(positions.length === 1 ? 1 : 2 * positions.length);
   finite(rows, 'rows');
   finite(counters, 'counters');
   // an undecided half-cycle stops at its budget, and none goes beyond it
@@ -62,7 +62,7 @@ describe('a generated circuit', () => {
         seen += rows.length;
         undecided += rows.filter((r) => r.state === 'undecided').length;
       }),
-      runsOf(60),
+      runsOf(40),
     );
     console.info(`undecided dial rows of anything valid: ${undecided} of ${seen}`);
     expect(undecided / seen).toBeLessThan(0.2);

@@ -43,6 +43,6 @@ test('three lamps laid out one by one fire and let go where one group of three d
         }
       });
     }),
-    runsOf(60),
+    runsOf(40),
   );
 });

@@ -47,6 +47,6 @@ test('a dimmer turned round, begun with the negative half-cycle, does what it di
         }
       });
     }),
-    runsOf(60),
+    runsOf(40),
   );
 });

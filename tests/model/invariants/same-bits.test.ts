@@ -8,7 +8,7 @@ import { builtPairings, runsOf } from '../../support/model-arbitrary.ts';
 import { emulator, everydayDimmer, mains230, pairing, reservoirLamp } from '../../support/model-pairings.ts';
 
 const POSITIONS = [10, 55, 90];
-const PLAN = { settle: 8, observe: 4, dropOutAngle: DROP_OUT_ANGLE };
+const PLAN = { settle: 4, observe: 2, dropOutAngle: DROP_OUT_ANGLE };
 
 test('two generated circuits give the same rows and count the same work in either order and again', () => {
   fc.assert(
@@ -17,7 +17,7 @@ test('two generated circuits give the same rows and count the same work in eithe
       const again = [sweepDial(structuredClone(b), POSITIONS, PLAN), sweepDial(structuredClone(a), POSITIONS, PLAN)];
       expect(again.toReversed()).toEqual(first);
     }),
-    runsOf(15),
+    runsOf(8),
   );
 });
 

@@ -69,7 +69,7 @@ test('doubled, a circuit of resistive lamps does the same to the bit', () => {
     fc.property(resistive, dialPositions, (pairing, dial) => {
       expect(angles(scaled(pairing, 2), dial)).toEqual(angles(pairing, dial));
     }),
-    runsOf(60),
+    runsOf(40),
   );
 });
 
@@ -88,6 +88,6 @@ test('raised by any factor, a circuit fires and lets go at the same angles', () 
         });
       });
     }),
-    runsOf(60),
+    runsOf(40),
   );
 });
