@@ -192,4 +192,30 @@ export const dimmerCases: readonly Case[] = [
     dial: 60,
     pairing: pairing(europe, dimmer(8, 5, { holdingCurrent: both(5e-3), choke: choke(5e-5) }), [[1, emulator(4, europe, 10e-9)]]),
   },
+  {
+    name: 'a heater wired without any series resistance at full dial',
+    dial: 100,
+    pairing: pairing(europe, dimmer(50, 30), [[1, filament(100, europe, { seriesResistance: 0 })]]),
+  },
+  {
+    name: 'a weak supply, an 8 mA diac and a filament lamp at the bottom of the dial',
+    dial: 10,
+    pairing: pairing({ ...europe, sourceResistance: 5 }, dimmer(35, 20, diacWith({ diacHoldingCurrent: 8e-3 })), [
+      [2, filament(60, europe)],
+    ]),
+  },
+  {
+    name: 'a diac that the timing resistor keeps conducting beside a triac that cannot latch',
+    dial: 98,
+    pairing: pairing(europe, dimmer(70, 50, diacWith({ diacHoldingCurrent: 1e-3 })), [[1, filament(5, europe)]]),
+  },
+  {
+    name: 'three kinds of lamp on one dimmer at 120 V',
+    dial: 65,
+    pairing: pairing(america, american(35, 20), [
+      [1, emulator(8, america, 100e-9)],
+      [2, linearString(90, 50e-3, 68e-9)],
+      [1, converter(9, 60, 180, 100e-9)],
+    ]),
+  },
 ];

@@ -143,4 +143,47 @@ export const reservoirLampCases: readonly Case[] = [
     dial: 70,
     pairing: pairing(america, dimmer(50, 30, { drive: { ...timed, pulses: 'held' } }), [[1, smallAmerican(9)]]),
   },
+  {
+    name: 'three 12 W reservoir lamps at 120 V behind 1 mH each',
+    dial: 55,
+    pairing: pairing(america, american(50, 30), [[3, smallAmerican(12, { inductance: 1e-3, inductorLoss: 3000 })]]),
+  },
+  {
+    name: 'four 7 W reservoir lamps with dampers low on the dial',
+    dial: 30,
+    pairing: pairing(europe, dimmer(60, 40), [[4, small(7, { damper: { resistance: 470, capacitance: 100e-9 } })]]),
+  },
+  {
+    name: 'five 4 W reservoir lamps at 120 V without input capacitors, wandering',
+    dial: 65,
+    tolerances: { stray: 10e-12 },
+    pairing: pairing(america, american(50, 30, { choke: choke(0.3e-3), snubber: { resistance: 100, capacitance: 100e-9 } }), [
+      [5, reservoir(4, 6e-6, 40, { inductance: 1e-3, inductorLoss: 4000 })],
+    ]),
+  },
+  {
+    name: 'five 4 W reservoir lamps behind 3 mH each near full dial, wandering',
+    dial: 95,
+    pairing: pairing(
+      europe,
+      dimmer(25, 14, { choke: choke(3e-3), snubber: { resistance: 100, capacitance: 100e-9 }, interferenceCapacitance: 100e-9 }),
+      [[5, reservoir(4, 2e-6, 60, { capacitance: 47e-9, inductance: 3e-3, inductorLoss: 4000 })]],
+    ),
+  },
+  {
+    name: 'one 7 W reservoir lamp at 120 V that skips at random',
+    dial: 65,
+    pairing: pairing(
+      america,
+      american(25, 14, { choke: choke(1e-3), snubber: { resistance: 100, capacitance: 100e-9 }, interferenceCapacitance: 47e-9 }),
+      [[1, reservoir(7, 10.5e-6, 40, { capacitance: 10e-9, inductance: 1e-3, inductorLoss: 4000 })]],
+    ),
+  },
+  {
+    name: 'one 7 W reservoir lamp at 230 V that skips at random',
+    dial: 65,
+    pairing: pairing(europe, dimmer(35, 20, { choke: choke(1e-3), snubber: null, interferenceCapacitance: 100e-9 }), [
+      [1, reservoir(7, 3.5e-6, 60, { capacitance: 10e-9 })],
+    ]),
+  },
 ];

@@ -69,6 +69,8 @@ export const firstCases: readonly Case[] = [
   {
     name: 'five 8 W reservoir lamps with an input choke each',
     dial: 60,
+    // a longer step is 0.18 degrees late on the second firing of the second half-cycle
+    tolerances: { maximumStep: 4e-7 },
     pairing: pairing(europe, dimmer(50, 30), [[5, reservoir(8, 4.7e-6, 60, { capacitance: 22e-9, inductance: 1e-3, inductorLoss: 5000 })]]),
   },
   {

@@ -75,15 +75,23 @@ export const choke = (inductance: number, lossResistance = 1000 + 2e6 * inductan
   lossResistance,
 });
 
-const nothing: LampInput = { seriesResistance: 0, inductance: 0, inductorLoss: null, capacitance: 0, damper: null, bleeder: null };
+const nothing: LampInput = {
+  seriesResistance: 0,
+  seriesCapacitance: 0,
+  inductance: 0,
+  inductorLoss: null,
+  capacitance: 0,
+  damper: null,
+  bleeder: null,
+};
 
 export function lamp(load: Load, input: Partial<LampInput> = {}): Lamp {
   return { ratedPower: null, input: { ...nothing, ...(load.kind === 'resistive' ? {} : { seriesResistance: 22 }), ...input }, load };
 }
 
-/** Filament lamp of so many watts. */
+/** Filament lamp of so many watts, with its leads. */
 export const filament = (power: number, mains: Mains, input: Partial<LampInput> = {}): Lamp =>
-  lamp({ kind: 'resistive', resistance: mains.voltage ** 2 / power }, input);
+  lamp({ kind: 'resistive', resistance: mains.voltage ** 2 / power }, { seriesResistance: 0.1, ...input });
 
 export const table = (points: readonly (readonly [number, number])[], input: Partial<LampInput> = {}): Lamp =>
   lamp({ kind: 'iv-table', points: points.map(([voltage, current]): IvPoint => ({ voltage, current })) }, input);

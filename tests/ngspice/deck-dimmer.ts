@@ -4,7 +4,7 @@
  * that passes its limit into a bit, bits drive conductances over 10 ns.
  */
 import type { DiacDrive, Dimmer, Pairing } from '../../model/pairing.ts';
-import { beyond, detector, inductorOrShort, number, oddPiecewise, resistorOrShort, seriesRC, within } from './deck-element.ts';
+import { beyond, detector, inductorOrShort, number, oddPiecewise, piecewise, resistorOrShort, seriesRC, within } from './deck-element.ts';
 import { gatePulses } from './deck-gate-pulses.ts';
 
 export function dimmer(pairing: Pairing, dial: number, halfCycles: number): string[] {
@@ -25,14 +25,12 @@ export function dimmer(pairing: Pairing, dial: number, halfCycles: number): stri
   ];
 }
 
-/** on = gated or latched; latched is set above the latching current and cleared when `under` has held for the turn-off time: a gate's
- * delay swallows a pulse that is shorter than it. */
+/** on = gated or latched; latched is set above the latching current and cleared when `under` has held for the turn-off time. */
 function triac(dimmer: Dimmer): string[] {
   const { holdingCurrent, latchingCurrent, onVoltage, onResistance } = dimmer;
   const low = Math.min(holdingCurrent.positive, holdingCurrent.negative);
   const knee = onVoltage + onResistance * low;
   const resistance = Math.max(onResistance, 1e-3);
-  const turnOff = Math.max(dimmer.turnOffTime, 1e-9);
   return [
     'vtriac d dt 0',
     `btriac dt a i=v(on)*${oddPiecewise('v(dt,a)', [
@@ -41,14 +39,30 @@ function triac(dimmer: Dimmer): string[] {
     ])}`,
     ...detector('over', beyond('i(vtriac)', latchingCurrent.positive, latchingCurrent.negative, 1e-4 * latchingCurrent.positive)),
     ...detector('under', within('i(vtriac)', holdingCurrent.positive, holdingCurrent.negative, 1e-4 * holdingCurrent.positive)),
-    'alapsed under lapsed turnoff',
-    `.model turnoff d_buffer(rise_delay=${number(turnOff)} fall_delay=1n)`,
+    ...turnOffTimer(dimmer.turnOffTime),
     'akeep lapsed keep opposite',
     'astay [latched keep] stay both',
     'alatch [over stay] latched either',
     'aon [gated latched] ond either',
     'aonout [ond] [on] toanalog',
     'ron on 0 1k',
+  ];
+}
+
+/** A capacitor that fills to 1 V in the turn-off time while the current is under the holding current and empties at once when it is not.
+ * (A gate's own delay would do, but ngspice keeps events of a step that it then takes back.) */
+function turnOffTimer(turnOffTime: number): string[] {
+  if (turnOffTime === 0) return ['.model same d_buffer(rise_delay=1n fall_delay=1n)', 'alapsed under lapsed same'];
+  const filling = piecewise('v(timer)', [
+    [-1, 1],
+    [1.4, 1],
+    [1.5, 0],
+    [3, -15],
+  ]);
+  return [
+    'ctimer timer 0 10n',
+    `btimer 0 timer i=(v(underx) > 0.5) ? (${number(10e-9 / turnOffTime)}*${filling}) : (-v(timer))`,
+    ...detector('lapsed', beyond('v(timer)', 1, 1, 5e-4)),
   ];
 }
 

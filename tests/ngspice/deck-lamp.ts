@@ -16,7 +16,13 @@ export function lampGroup(group: LampGroup, index: number, lampLine: string): st
   const magnitude = `abs(v(${p}))`;
   const bleeder = input.bleeder?.kind === 'active' ? input.bleeder : null;
   return [
-    resistorOrShort(`series${index}`, lampLine, `q${index}`, input.seriesResistance / count),
+    resistorOrShort(`series${index}`, lampLine, input.seriesCapacitance > 0 ? `d${index}` : `q${index}`, input.seriesResistance / count),
+    ...(input.seriesCapacitance > 0
+      ? [
+          `cdropper${index} d${index} q${index} ${number(input.seriesCapacitance * count)}`,
+          `rdropper${index} d${index} q${index} ${number(1e6 / count)}`,
+        ]
+      : []),
     ...inductorOrShort(
       `input${index}`,
       `q${index}`,

@@ -17,9 +17,18 @@ export interface DeckTolerances {
   readonly voltage: number;
   readonly current: number;
   readonly method: 'trap' | 'gear';
+  /** F, from the lamp line and each lamp's input to neutral: where inductors meet without a capacitor the solver may need one to converge */
+  readonly stray: number;
 }
 
-export const ordinaryTolerances: DeckTolerances = { maximumStep: 1e-6, relative: 1e-4, voltage: 1e-6, current: 1e-9, method: 'trap' };
+export const ordinaryTolerances: DeckTolerances = {
+  maximumStep: 1e-6,
+  relative: 1e-4,
+  voltage: 1e-6,
+  current: 1e-9,
+  method: 'trap',
+  stray: 0,
+};
 
 /** Vectors that a run saves, in this order after the time. */
 export const savedVectors = ['v(on)', 'v(vct)', 'i(vline)', 'i(vlamp)', 'v(a)'] as const;
@@ -38,6 +47,7 @@ export function deck(pairing: Pairing, dial: number, halfCycles: number, toleran
     ...pairing.lamps.flatMap((group, index) => lampGroup(group, index, 'lamp')),
     ...addedLoad(pairing.addedLoad, 'lamp'),
     'rleak a 0 1g',
+    ...strayCapacitors(pairing.lamps.length, tolerances.stray),
     `.options method=${tolerances.method} maxord=2 trtol=1 reltol=${number(tolerances.relative)} vntol=${number(tolerances.voltage)}` +
       ` abstol=${number(tolerances.current)} chgtol=1e-11 itl4=60 gmin=1e-15`,
     `.save ${savedVectors.join(' ')}`,
@@ -45,4 +55,10 @@ export function deck(pairing: Pairing, dial: number, halfCycles: number, toleran
     '.end',
   ];
   return `${lines.join('\n')}\n`;
+}
+
+function strayCapacitors(lamps: number, stray: number): string[] {
+  if (stray === 0) return [];
+  const inputs = Array.from({ length: lamps }, (_, index) => `cstray${index} p${index} 0 ${number(stray)}`);
+  return [`cstray a 0 ${number(stray)}`, ...inputs];
 }

@@ -1,5 +1,5 @@
 /**
- * Runs ngspice on every case whose frozen result is missing or was made from another circuit, and writes reference.json in the cases'
+ * Runs ngspice on every case whose frozen result is missing or was made from another deck, and writes reference.json in the cases'
  * order. With words as arguments, also on every case whose name contains one of them; with --all, on every case.
  */
 import { existsSync, writeFileSync } from 'node:fs';
@@ -10,17 +10,16 @@ import { type Pattern, patternOf } from './pattern.ts';
 import { type FrozenCase, fingerprint, readReference, referenceFile } from './reference.ts';
 import { ngspiceVersion, runNgspice } from './run.ts';
 
-const ordinaryLength = 40;
-/** for a run that has not settled into a pattern, half-cycles; the first `settle` of them are not averaged */
-const wanderingLength = 180;
+/** half-cycles, the next length where a run has not settled into a pattern; of the longest the first `settle` are not averaged */
+const lengths = [24, 48, 180];
 const settle = 40;
 
 async function freeze(case_: Case): Promise<FrozenCase> {
   const tolerances: DeckTolerances = { ...ordinaryTolerances, ...case_.tolerances };
-  for (const halfCycles of [ordinaryLength, wanderingLength]) {
+  for (const halfCycles of lengths) {
     const run = await runNgspice(case_.pairing, case_.dial, { halfCycles, tolerances, timeLimit: 600 });
     const pattern = patternOf(run, settle);
-    if (pattern.kind === 'wanders' && halfCycles < wanderingLength) continue;
+    if (pattern.kind === 'wanders' && halfCycles !== lengths.at(-1)) continue;
     const dump = run.findLast((halfCycle) => halfCycle.dump !== null)?.dump ?? null;
     const diac = case_.pairing.dimmer.drive.kind === 'diac';
     return {

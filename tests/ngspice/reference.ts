@@ -1,13 +1,14 @@
-/** The frozen results: what ngspice made of each case, with the circuit's fingerprint so that a changed case cannot pass on an old result. */
+/** The frozen results: what ngspice made of each case, with the deck's fingerprint so that a changed circuit or
+ * deck cannot pass on an old result. */
 import { createHash } from 'node:crypto';
 import { readFileSync } from 'node:fs';
 import type { Case } from './circuits.ts';
-import type { DeckTolerances } from './deck.ts';
+import { type DeckTolerances, deck, ordinaryTolerances } from './deck.ts';
 import type { Pattern } from './pattern.ts';
 
 export interface FrozenCase {
   readonly name: string;
-  /** of pairing and dial */
+  /** of the deck */
   readonly fingerprint: string;
   readonly tolerances: DeckTolerances;
   /** half-cycles simulated from a fresh start */
@@ -29,9 +30,8 @@ export function readReference(): Reference {
   return JSON.parse(readFileSync(referenceFile, 'utf8')) as Reference;
 }
 
-export function fingerprint({ pairing, dial }: Case): string {
-  return createHash('sha256')
-    .update(JSON.stringify([pairing, dial]))
-    .digest('hex')
-    .slice(0, 16);
+/** Of the deck that ngspice reads for a single half-cycle of a case. */
+export function fingerprint({ pairing, dial, tolerances }: Case): string {
+  const netlist = deck(pairing, dial, 1, { ...ordinaryTolerances, ...tolerances });
+  return createHash('sha256').update(netlist).digest('hex').slice(0, 16);
 }
