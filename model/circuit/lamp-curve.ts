@@ -65,16 +65,16 @@ export function resistorCurve(resistance: number): Curve {
   return [{ from: 0, slope: 1 / resistance, offset: 0 }];
 }
 
-/** what an active bleeder tops the lamp's draw up to */
-export function bleederCurve(current: number, below: number): Curve {
+/** what an active bleeder tops the lamp's draw up to; `drop` is that of the bridge before it, 0 where the lamp has none */
+export function bleederCurve(current: number, below: number, drop = BRIDGE_DROP): Curve {
   const start = Math.min(BLEEDER_START, below);
   return throughCorners(
     [
       { v: 0, i: 0 },
-      { v: BRIDGE_DROP, i: 0 },
-      { v: BRIDGE_DROP + start, i: current },
-      { v: BRIDGE_DROP + below, i: current },
-      { v: BRIDGE_DROP + below + BLEEDER_RELEASE, i: 0 },
+      { v: drop, i: 0 },
+      { v: drop + start, i: current },
+      { v: drop + below, i: current },
+      { v: drop + below + BLEEDER_RELEASE, i: 0 },
     ],
     0,
   );

@@ -8,7 +8,7 @@
  * Each state is scaled to the square root of its energy (x = v sqrt(C), x = i sqrt(L)), so that one norm serves all of them.
  */
 import type { DiacDrive, LampGroup, Pairing } from '../pairing.ts';
-import { ABSENT_LOSS, DROPPER_DISCHARGE, LEAST_RESISTANCE, LINE_LEAKAGE, STRAY_CAPACITANCE } from '../tolerances.ts';
+import { ABSENT_LOSS, BRIDGE_DROP, DROPPER_DISCHARGE, LEAST_RESISTANCE, LINE_LEAKAGE, STRAY_CAPACITANCE } from '../tolerances.ts';
 import { bleederCurve, type Curve, curveFalls, drainCurve, largerCurve, resistorCurve, tableCurve } from './lamp-curve.ts';
 
 /** node numbers; NEUTRAL is the reference and is not solved for */
@@ -97,7 +97,8 @@ function mergeGroups(groups: readonly LampGroup[]): LampGroup[] {
 
 function staticCurve(group: LampGroup): Curve | null {
   const { load, input } = group.lamp;
-  const active = input.bleeder?.kind === 'active' ? bleederCurve(input.bleeder.current, input.bleeder.below) : null;
+  const drop = load.kind === 'resistive' ? 0 : BRIDGE_DROP;
+  const active = input.bleeder?.kind === 'active' ? bleederCurve(input.bleeder.current, input.bleeder.below, drop) : null;
   if (load.kind === 'reservoir') return active;
   if (load.kind === 'iv-table') {
     const table = tableCurve(load.points);

@@ -64,7 +64,8 @@ export interface Circuit {
 const least = (resistance: number): number => Math.max(resistance, LEAST_RESISTANCE);
 
 function curveOf({ load, input }: Lamp): Curve | null {
-  const active = input.bleeder?.kind === 'active' ? bleederCurve(input.bleeder.current, input.bleeder.below) : null;
+  const drop = load.kind === 'resistive' ? 0 : BRIDGE_DROP;
+  const active = input.bleeder?.kind === 'active' ? bleederCurve(input.bleeder.current, input.bleeder.below, drop) : null;
   const own =
     load.kind === 'iv-table'
       ? tableCurve(load.points)
