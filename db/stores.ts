@@ -5,6 +5,10 @@ import { type ImportStaging, importStaging } from './import-staging.ts';
 import { type JudgedPairs, judgedPairs } from './judged-pairs.ts';
 import { type PartnerSearch, partnerSearch } from './partner-search.ts';
 import type { RecordDatabase } from './record.ts';
+import { type ScreeningPages, screeningPages } from './screening-pages.ts';
+import { type ScreeningSelection, screeningSelection } from './screening-selection.ts';
+import { type ScreeningVerdicts, screeningVerdicts } from './screening-verdicts.ts';
+import { type ScreeningStore, screeningStore } from './screenings.ts';
 import { type VerdictSearch, verdictSearch } from './verdict-search.ts';
 import { type VerdictStore, verdictStore } from './verdicts.ts';
 
@@ -16,6 +20,10 @@ export interface Stores {
   readonly entries: EntryStore;
   readonly entrySearch: EntrySearch;
   readonly importStaging: ImportStaging;
+  readonly screenings: ScreeningStore;
+  readonly screeningSelection: ScreeningSelection;
+  readonly screeningPages: ScreeningPages;
+  readonly screeningVerdicts: ScreeningVerdicts;
 }
 
 export function storesOf(record: RecordDatabase): Stores {
@@ -27,5 +35,9 @@ export function storesOf(record: RecordDatabase): Stores {
     entries: entryStore(record),
     entrySearch: entrySearch(record),
     importStaging: importStaging(record),
+    screenings: screeningStore(record),
+    screeningSelection: screeningSelection(record),
+    screeningPages: screeningPages(record),
+    screeningVerdicts: screeningVerdicts(record),
   };
 }

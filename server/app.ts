@@ -22,16 +22,20 @@ import { healthRoutes } from './routes/health.ts';
 import { importRoutes } from './routes/imports.ts';
 import { metricsRoute } from './routes/metrics.ts';
 import { partnerRoutes } from './routes/partners.ts';
+import { screeningStreamRoutes } from './routes/screening-streams.ts';
+import { screeningRoutes } from './routes/screenings.ts';
 import { storedVerdictRoutes } from './routes/stored-verdicts.ts';
 import { verdictLookupRoute } from './routes/verdict-lookup.ts';
 import { verdictWaveformRoutes } from './routes/verdict-waveforms.ts';
 import { verdictRoutes } from './routes/verdicts.ts';
+import type { ScreeningService } from './screenings/screening-service.ts';
 import type { Simulation } from './simulation/simulation.ts';
 
 export interface AppDependencies extends Stores {
   readonly logger: FastifyBaseLogger;
   readonly simulation: Simulation;
   readonly importLimits: ImportLimits;
+  readonly screening: ScreeningService;
   /** whether the record answers a read */
   readonly isRecordReadable: () => boolean;
   readonly simulationLoad: () => { readonly threads: number; readonly waiting: number; readonly completed: number };
@@ -95,5 +99,7 @@ export async function buildApp(dependencies: AppDependencies): Promise<App> {
   await app.register(partnerRoutes(dependencies));
   await app.register(badgeRoutes(dependencies));
   await app.register(importRoutes(dependencies));
+  await app.register(screeningRoutes(dependencies));
+  await app.register(screeningStreamRoutes(dependencies));
   return app;
 }

@@ -24,6 +24,8 @@ const variables = z.strictObject({
   HOLDFAST_WORKERS: whole(Math.max(1, availableParallelism() - 1), 1, 256),
   HOLDFAST_QUEUE_LIMIT: whole(256, 1, 100_000),
   HOLDFAST_STOP_DEADLINE_S: whole(20, 1, 3600),
+  HOLDFAST_PAIRING_DEADLINE_S: whole(600, 1, 86_400),
+  HOLDFAST_CHUNK_LOCK_S: whole(30, 1, 3600),
   HOLDFAST_REDIS_URL: z.url({ protocol: /^rediss?$/, error: 'must be a URL like redis://127.0.0.1:6379' }).optional(),
   HOLDFAST_LOG_LEVEL: z.enum(LEVELS, { error: `must be one of ${LEVELS.join(', ')}` }).default('info'),
 });
@@ -39,6 +41,10 @@ export interface Environment {
   readonly queueLimit: number;
   /** seconds that running requests are given when the service stops */
   readonly stopDeadline_s: number;
+  /** seconds that a screened pairing is given before its thread is ended */
+  readonly pairingDeadline_s: number;
+  /** seconds without a sign of life after which a worker's chunk is given to another */
+  readonly chunkLock_s: number;
   /** may hold a password: never print it */
   readonly redisUrl: string | undefined;
   readonly logLevel: (typeof LEVELS)[number];
@@ -61,6 +67,8 @@ export function parseEnvironment(from: { readonly [name: string]: string | undef
     workers: set.HOLDFAST_WORKERS,
     queueLimit: set.HOLDFAST_QUEUE_LIMIT,
     stopDeadline_s: set.HOLDFAST_STOP_DEADLINE_S,
+    pairingDeadline_s: set.HOLDFAST_PAIRING_DEADLINE_S,
+    chunkLock_s: set.HOLDFAST_CHUNK_LOCK_S,
     redisUrl: set.HOLDFAST_REDIS_URL,
     logLevel: set.HOLDFAST_LOG_LEVEL,
   };

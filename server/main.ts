@@ -8,6 +8,8 @@ import { buildApp } from './app.ts';
 import { type Environment, parseEnvironment, printable } from './environment.ts';
 import { IMPORT_LIMITS } from './imports/import-limits.ts';
 import { resumeImports } from './imports/importing.ts';
+import { judgingQueue } from './queue/engine-choice.ts';
+import { screeningService } from './screenings/screening-service.ts';
 import { runStopStages, type StopStage } from './shutdown.ts';
 import { startSimulationPool } from './simulation/simulation-pool.ts';
 
@@ -31,23 +33,36 @@ async function start(environment: Environment): Promise<void> {
     const stores = storesOf(record);
     const resumed = await resumeImports({ entries: stores.entries, staging: stores.importStaging, now });
     if (resumed > 0) logger.info({ imports: resumed }, 'finished imports that an earlier process had taken in');
-    const simulation = startSimulationPool({ threads: environment.workers, queueLimit: environment.queueLimit });
+    const simulation = startSimulationPool({
+      threads: environment.workers,
+      queueLimit: environment.queueLimit,
+      backgroundDeadline_s: environment.pairingDeadline_s,
+    });
+    const queue = await judgingQueue(environment, simulation);
+    const screening = screeningService({ stores, queue, now, logger });
     const app = await buildApp({
       logger,
       simulation,
       ...stores,
       importLimits: IMPORT_LIMITS,
+      screening,
       isRecordReadable: () => isRecordReadable(record),
       simulationLoad: simulation.load,
       now,
     });
     stopOnSignal(environment.stopDeadline_s, logger, [
-      // Stops listening, refuses what still arrives, waits for what runs; each answer closes its connection.
-      { name: 'answer running requests', deadline_ms: environment.stopDeadline_s * 1000, act: () => app.close() },
+      // Stops listening, refuses what still arrives, waits for what runs, requests and screened pairings alike; each answer closes its
+      // connection. A pairing that takes longer is judged again at the next start.
+      {
+        name: 'finish what runs',
+        deadline_ms: environment.stopDeadline_s * 1000,
+        act: async () => void (await Promise.all([app.close(), screening.screenings.stop()])),
+      },
       { name: 'end simulation threads', deadline_ms: SHORT_STAGE, act: simulation.close, orElse: simulation.destroy },
       { name: 'check the record in and close it', deadline_ms: SHORT_STAGE, act: () => closeRecord(record) },
     ]);
     const address = await app.listen({ host: environment.host, port: environment.port });
+    screening.screenings.start();
     logger.info({ ...printable(environment), address, reference: `${address}/docs` }, 'serving');
   } catch (error) {
     logger.fatal({ err: error }, 'the service did not start');

@@ -26,6 +26,7 @@ export const PROBLEMS = {
   'no-such-call': { status: 404, title: 'There is no such call', when: 'no call has this method and path' },
   'verdict-not-found': { status: 404, title: 'There is no such verdict', when: 'no verdict is stored under this id' },
   'entry-not-found': { status: 404, title: 'There is no such entry', when: 'the catalogue has no entry, or no revision, under this id' },
+  'screening-not-found': { status: 404, title: 'There is no such screening', when: 'no screening is stored under this id' },
   'not-acceptable': {
     status: 406,
     title: 'The answer has no form that the request accepts',

@@ -43,6 +43,7 @@ export async function documentCalls(app: App): Promise<void> {
       tags: [
         { name: 'verdicts', description: 'Judge pairings and read what was judged.' },
         { name: 'catalogue', description: 'Keep dimmers and lamps under ids of your own, and find them.' },
+        { name: 'screenings', description: 'Judge a lamp list against a shelf of dimmers, in the background.' },
         { name: 'operations', description: 'For whoever runs the service.' },
       ],
     },

@@ -44,6 +44,12 @@ describe('migrations', () => {
       'judged_pairs',
       'migrations',
       'revisions',
+      'screening_entries',
+      'screening_events',
+      'screening_failures',
+      'screening_pages',
+      'screening_pairs',
+      'screenings',
       'verdicts',
     ]);
     expect(ours.filter(({ strict }) => strict !== 1)).toEqual([]);

@@ -36,9 +36,12 @@ function planOf(record: RecordDatabase, sql: string): readonly string[] {
   return (unnamed.length > 0 ? statement.all(...unnamed) : statement.all(named)).map(({ detail }) => detail);
 }
 
-/** Steps that read a table or an index from end to end. What a step makes for itself, `(subquery-1)`, is bounded by what made it. */
+/**
+ * Steps that read a table or an index from end to end. What a step makes for itself, `(subquery-1)`, is bounded by what made it, and a
+ * virtual table is a list that was given as a parameter.
+ */
 function scansIn(plan: readonly string[]): readonly string[] {
-  return plan.filter((detail) => /^SCAN (?!\(|CONSTANT ROW)/.test(detail));
+  return plan.filter((detail) => /^SCAN (?!\(|CONSTANT ROW|\w+ VIRTUAL TABLE)/.test(detail));
 }
 
 function subsets<T extends object>(whole: T): readonly T[] {
