@@ -67,6 +67,7 @@ export function importRoutes({ entries, importStaging, importLimits, logger, now
           if (sent === undefined) return sendProblem(reply, 'unsupported-media-type', SEND_AS);
           const rows = listRows(sent, kind, importLimits, decimal);
           const imported = await imports.importList(kind, rows, { onError, dryRun: dryRun === 'true' });
+          throwAwayRest(request.raw);
           if (imported.ok) return reply.type('application/x-ndjson; charset=utf-8').send(imported.report as never);
           return replyToRefusal(reply, imported.failure);
         },
@@ -81,9 +82,18 @@ function sentList({ headers, body }: FastifyRequest) {
   const encoding = headers['content-encoding'] ?? 'identity';
   if (known === undefined || encoding !== 'identity' || body === undefined || body === null) return undefined;
   const charset = parameters.find((parameter) => /^charset=/i.test(parameter))?.slice('charset='.length);
-  // Left open where reading ends early, so that the answer can still be sent on its connection.
+  // Left open where reading ends early: closing it would close the connection that the answer goes out on.
   const bytes = (body as IncomingMessage).iterator({ destroyOnReturn: false }) as AsyncIterable<Uint8Array>;
   return { type: known satisfies ListType, charset: charset?.replace(/^"(.*)"$/, '$1'), bytes };
+}
+
+/**
+ * Where reading ended early, what still arrives is read and dropped: many a client looks at the answer only when all is sent. A reader
+ * that is still waiting for more keeps the stream from flowing, so its listener goes first.
+ */
+function throwAwayRest(request: IncomingMessage): void {
+  request.removeAllListeners('readable');
+  request.resume();
 }
 
 type Refusal = Extract<Awaited<ReturnType<ReturnType<typeof importing>['importList']>>, { ok: false }>['failure'];

@@ -35,14 +35,22 @@ describe('a list on its way', () => {
     },
   );
 
-  it('with a wrong header is answered while the client is still sending', async () => {
+  it.each([
+    ['a wrong header', 'text/csv', `id,wattage\n${lines(0, 10)}`, 400, /"path":"wattage"/],
+    ['a header without an end', 'text/csv', 'id,'.repeat(50_000), 413, /list-too-large/],
+    ['a quote inside a cell', 'text/csv', `${HEADER}ha"ll,40,resistive\n`, 400, /unreadable-list/],
+    ['a line without an end', 'application/x-ndjson', '['.repeat(140_000), 413, /list-too-large/],
+    ['no bracket at its beginning', 'application/json', '{}', 400, /unreadable-list/],
+  ])('with %s is answered while the client is still sending', async (_, type, piece, status, says) => {
     const { port, count } = await listening();
-    const upload = openUpload(port, '/v1/imports/lamps');
-    await upload.send(`id,wattage\n${lines(0, 10)}`);
-    expect((await upload.answer).statusCode).toBe(400);
-    await upload.send(lines(10, 50_000));
+    const upload = openUpload(port, '/v1/imports/lamps', type);
+    await upload.send(piece);
+    expect((await upload.answer).statusCode).toBe(status);
+    // Far more than the buffers on the way hold: it is sent only if somebody takes it.
+    await upload.send(lines(10, 400_000));
     upload.end();
-    expect((await upload.answered()).body).toMatch(/"path":"wattage"/);
+    await upload.taken;
+    expect((await upload.answered()).body).toMatch(says);
     expect(count('entries')).toBe(0);
   });
 
