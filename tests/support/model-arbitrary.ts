@@ -24,11 +24,15 @@ import { both } from './model-pairings.ts';
 const STEPS = 1000;
 const ORDINARY_RUNS = 200;
 
+const wantedRuns = (): number => Number(process.env.HOLDFAST_RUNS ?? ORDINARY_RUNS);
+
+/** ms after which a property is given up */
+export const PATIENCE = 120_000 * Math.max(1, wantedRuns() / ORDINARY_RUNS);
+
 /** parameters of a property that tries `ordinary` circuits in the ordinary run */
 export function runsOf(ordinary: number): { numRuns: number; seed: number; endOnFailure: boolean } {
-  const wanted = Number(process.env.HOLDFAST_RUNS ?? ORDINARY_RUNS);
   return {
-    numRuns: Math.max(1, Math.round((ordinary * wanted) / ORDINARY_RUNS)),
+    numRuns: Math.max(1, Math.round((ordinary * wantedRuns()) / ORDINARY_RUNS)),
     seed: Number(process.env.HOLDFAST_SEED ?? 1),
     endOnFailure: process.env.HOLDFAST_SHRINK === undefined,
   };

@@ -1,7 +1,7 @@
 /** Every generated circuit, audited segment by segment against a second description of it: energy, charge, continuity, regions, outputs. */
 import fc from 'fast-check';
 import { describe, test } from 'vitest';
-import { builtPairings, dialPositions, runsOf } from '../../support/model-arbitrary.ts';
+import { builtPairings, dialPositions, PATIENCE, runsOf } from '../../support/model-arbitrary.ts';
 import { Audit, EXCESS_ALLOWED } from '../../support/model-audit.ts';
 import { Deviations } from '../../support/model-deviations.ts';
 import { startRun } from '../../support/model-run.ts';
@@ -10,7 +10,9 @@ const HALF_CYCLES = 4;
 const deviations = new Deviations('audit of generated circuits (relative, or V and A)');
 
 describe('a generated circuit', () => {
-  test('draws from the mains what it heats and stores, moves charge as its currents say, and keeps every part within its region', () => {
+  test('draws from the mains what it heats and stores, moves charge as its currents say, and keeps every part within its region', {
+    timeout: PATIENCE,
+  }, () => {
     fc.assert(
       fc.property(builtPairings, dialPositions, (pairing, dial) => {
         const run = startRun(pairing, dial);

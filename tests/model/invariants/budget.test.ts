@@ -6,7 +6,7 @@ import type { Pairing } from '../../../model/pairing.ts';
 import { checkPairing } from '../../../model/pairing-check.ts';
 import { DROP_OUT_ANGLE, STEP_BUDGET } from '../../../model/tolerances.ts';
 import type { DialRow } from '../../../model/verdict.ts';
-import { builtPairings, dialPositions, runsOf, validPairings } from '../../support/model-arbitrary.ts';
+import { builtPairings, dialPositions, PATIENCE, runsOf, validPairings } from '../../support/model-arbitrary.ts';
 
 const PLAN = { settle: 4, observe: 2, dropOutAngle: DROP_OUT_ANGLE };
 
@@ -40,7 +40,7 @@ function soundRows(pairing: Pairing, dial: number): readonly DialRow[] {
 }
 
 describe('a generated circuit', () => {
-  test('of lamps as they are built is decided at every dial position, in finite numbers', () => {
+  test('of lamps as they are built is decided at every dial position, in finite numbers', { timeout: PATIENCE }, () => {
     let [undecided, seen] = [0, 0];
     fc.assert(
       fc.property(builtPairings, dialPositions, (pairing, dial) => {
@@ -54,7 +54,7 @@ describe('a generated circuit', () => {
     expect(undecided / seen).toBeLessThan(0.02);
   });
 
-  test('of anything the checks let pass ends, decided or not, in finite numbers', () => {
+  test('of anything the checks let pass ends, decided or not, in finite numbers', { timeout: PATIENCE }, () => {
     let [undecided, seen] = [0, 0];
     fc.assert(
       fc.property(validPairings, dialPositions, (pairing, dial) => {

@@ -3,7 +3,7 @@ import fc from 'fast-check';
 import { expect, test } from 'vitest';
 import { layNetwork } from '../../../model/circuit/network.ts';
 import type { Lamp, Pairing } from '../../../model/pairing.ts';
-import { builtPairings, dialPositions, runsOf } from '../../support/model-arbitrary.ts';
+import { builtPairings, dialPositions, PATIENCE, runsOf } from '../../support/model-arbitrary.ts';
 import { startRun } from '../../support/model-run.ts';
 
 /** the same lamp a hair different, so that it is laid out as a group of its own */
@@ -22,7 +22,7 @@ function records(pairing: Pairing, dial: number) {
   });
 }
 
-test('three lamps laid out one by one fire and let go where one group of three does', () => {
+test('three lamps laid out one by one fire and let go where one group of three does', { timeout: PATIENCE }, () => {
   fc.assert(
     fc.property(builtPairings, dialPositions, (pairing, dial) => {
       const lamp = pairing.lamps[0]?.lamp as Lamp;

@@ -2,7 +2,7 @@
 import fc from 'fast-check';
 import { expect, test } from 'vitest';
 import type { Dimmer, Pairing, PerPolarity } from '../../../model/pairing.ts';
-import { builtPairings, dialPositions, runsOf } from '../../support/model-arbitrary.ts';
+import { builtPairings, dialPositions, PATIENCE, runsOf } from '../../support/model-arbitrary.ts';
 import { startRun } from '../../support/model-run.ts';
 
 const turned = ({ positive, negative }: PerPolarity): PerPolarity => ({ positive: negative, negative: positive });
@@ -27,7 +27,7 @@ function records(pairing: Pairing, dial: number, first: 0 | 1) {
   });
 }
 
-test('a dimmer turned round, begun with the negative half-cycle, does what it did before', () => {
+test('a dimmer turned round, begun with the negative half-cycle, does what it did before', { timeout: PATIENCE }, () => {
   fc.assert(
     fc.property(builtPairings, dialPositions, (pairing, dial) => {
       const mirrored = records({ ...pairing, dimmer: turnedRound(pairing.dimmer) }, dial, 1);

@@ -4,13 +4,13 @@ import { expect, test } from 'vitest';
 import { judgePairing } from '../../../model/judgement/judge-pairing.ts';
 import { sweepDial } from '../../../model/observation/dial-sweep.ts';
 import { DROP_OUT_ANGLE } from '../../../model/tolerances.ts';
-import { builtPairings, runsOf } from '../../support/model-arbitrary.ts';
+import { builtPairings, PATIENCE, runsOf } from '../../support/model-arbitrary.ts';
 import { emulator, everydayDimmer, mains230, pairing, reservoirLamp } from '../../support/model-pairings.ts';
 
 const POSITIONS = [10, 55, 90];
 const PLAN = { settle: 4, observe: 2, dropOutAngle: DROP_OUT_ANGLE };
 
-test('two generated circuits give the same rows and count the same work in either order and again', () => {
+test('two generated circuits give the same rows and count the same work in either order and again', { timeout: PATIENCE }, () => {
   fc.assert(
     fc.property(builtPairings, builtPairings, (a, b) => {
       const first = [sweepDial(a, POSITIONS, PLAN), sweepDial(b, POSITIONS, PLAN)];

@@ -7,7 +7,7 @@ import fc from 'fast-check';
 import { expect, test } from 'vitest';
 import type { Dimmer, Lamp, Pairing, PerPolarity } from '../../../model/pairing.ts';
 import { BRIDGE_DROP } from '../../../model/tolerances.ts';
-import { builtPairings, dialPositions, runsOf } from '../../support/model-arbitrary.ts';
+import { builtPairings, dialPositions, PATIENCE, runsOf } from '../../support/model-arbitrary.ts';
 import { startRun } from '../../support/model-run.ts';
 
 function scalable(lamp: Lamp): Lamp {
@@ -61,7 +61,7 @@ function angles(pairing: Pairing, dial: number) {
 
 const circuits = builtPairings.map((p) => ({ ...p, lamps: p.lamps.map(({ count, lamp }) => ({ count, lamp: scalable(lamp) })) }));
 
-test('doubled, a circuit of resistive lamps does the same to the bit', () => {
+test('doubled, a circuit of resistive lamps does the same to the bit', { timeout: PATIENCE }, () => {
   const resistive = circuits
     .map((p) => ({ ...p, lamps: p.lamps.filter(({ lamp }) => lamp.load.kind === 'resistive') }))
     .filter((p) => p.lamps.length > 0);
@@ -73,7 +73,7 @@ test('doubled, a circuit of resistive lamps does the same to the bit', () => {
   );
 });
 
-test('raised by any factor, a circuit fires and lets go at the same angles', () => {
+test('raised by any factor, a circuit fires and lets go at the same angles', { timeout: PATIENCE }, () => {
   fc.assert(
     fc.property(circuits, dialPositions, fc.integer({ min: 11, max: 40 }), (pairing, dial, tenths) => {
       const [plain, other] = [angles(pairing, dial), angles(scaled(pairing, tenths / 10), dial)];
