@@ -7,6 +7,7 @@ import { bleederCurve, type Curve, drainCurve, largerCurve, resistorCurve, table
 import type { Lamp, LampGroup, Pairing } from '../../model/pairing.ts';
 import {
   ABSENT_LOSS,
+  BRIDGE_DROP,
   DROPPER_DISCHARGE,
   LEAST_RESISTANCE,
   LINE_LEAKAGE,
