@@ -36,7 +36,6 @@ export interface ScreeningSelection {
   missing(kind: EntryKind, ids: readonly string[]): readonly number[];
   entries(screening: number, kind: EntryKind, from: number, to: number): readonly SelectedEntry[];
   pairs(screening: number, from: number, to: number): readonly ListedPair[];
-  addPair(screening: number, pair: ListedPair): void;
 }
 
 export function screeningSelection(record: RecordDatabase): ScreeningSelection {
@@ -69,9 +68,6 @@ export function screeningSelection(record: RecordDatabase): ScreeningSelection {
   const pairs = record.prepare<[number, number, number], ListedPair>(
     'SELECT position, lamp, dimmer, count FROM screening_pairs WHERE screening = ? AND position >= ? AND position < ? ORDER BY position',
   );
-  const insertPair = record.prepare(
-    'INSERT INTO screening_pairs (screening, position, lamp, dimmer, count) VALUES (@screening, @position, @lamp, @dimmer, @count)',
-  );
   const clearEntries = record.prepare('DELETE FROM screening_entries WHERE screening = ?');
   const clearPairs = record.prepare('DELETE FROM screening_pairs WHERE screening = ?');
 
@@ -86,6 +82,5 @@ export function screeningSelection(record: RecordDatabase): ScreeningSelection {
     missing: (kind, ids) => missing.all({ kind, ids: JSON.stringify(ids) }),
     entries: (screening, kind, from, to) => entries.all(screening, kind, from, to),
     pairs: (screening, from, to) => pairs.all(screening, from, to),
-    addPair: (screening, pair) => void insertPair.run({ screening, ...pair }),
   };
 }

@@ -7,6 +7,7 @@ import { type PartnerSearch, partnerSearch } from './partner-search.ts';
 import type { RecordDatabase } from './record.ts';
 import { type ScreeningPages, screeningPages } from './screening-pages.ts';
 import { type ScreeningSelection, screeningSelection } from './screening-selection.ts';
+import { type StalePairs, stalePairs } from './screening-stale.ts';
 import { type ScreeningVerdicts, screeningVerdicts } from './screening-verdicts.ts';
 import { type ScreeningStore, screeningStore } from './screenings.ts';
 import { type VerdictSearch, verdictSearch } from './verdict-search.ts';
@@ -24,6 +25,7 @@ export interface Stores {
   readonly screeningSelection: ScreeningSelection;
   readonly screeningPages: ScreeningPages;
   readonly screeningVerdicts: ScreeningVerdicts;
+  readonly stalePairs: StalePairs;
 }
 
 export function storesOf(record: RecordDatabase): Stores {
@@ -39,5 +41,6 @@ export function storesOf(record: RecordDatabase): Stores {
     screeningSelection: screeningSelection(record),
     screeningPages: screeningPages(record),
     screeningVerdicts: screeningVerdicts(record),
+    stalePairs: stalePairs(record),
   };
 }

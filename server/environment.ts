@@ -26,6 +26,10 @@ const variables = z.strictObject({
   HOLDFAST_STOP_DEADLINE_S: whole(20, 1, 3600),
   HOLDFAST_PAIRING_DEADLINE_S: whole(600, 1, 86_400),
   HOLDFAST_CHUNK_LOCK_S: whole(30, 1, 3600),
+  HOLDFAST_DAILY_RESCREENING: z
+    .string()
+    .regex(/^([01]\d|2[0-3]):[0-5]\d$/, { error: 'must be a time of the day in UTC, like 02:30' })
+    .optional(),
   HOLDFAST_REDIS_URL: z.url({ protocol: /^rediss?$/, error: 'must be a URL like redis://127.0.0.1:6379' }).optional(),
   HOLDFAST_LOG_LEVEL: z.enum(LEVELS, { error: `must be one of ${LEVELS.join(', ')}` }).default('info'),
 });
@@ -45,6 +49,8 @@ export interface Environment {
   readonly pairingDeadline_s: number;
   /** seconds without a sign of life after which a worker's chunk is given to another */
   readonly chunkLock_s: number;
+  /** HH:MM, UTC; undefined: stale verdicts are not screened again by themselves */
+  readonly dailyRescreening: string | undefined;
   /** may hold a password: never print it */
   readonly redisUrl: string | undefined;
   readonly logLevel: (typeof LEVELS)[number];
@@ -69,6 +75,7 @@ export function parseEnvironment(from: { readonly [name: string]: string | undef
     stopDeadline_s: set.HOLDFAST_STOP_DEADLINE_S,
     pairingDeadline_s: set.HOLDFAST_PAIRING_DEADLINE_S,
     chunkLock_s: set.HOLDFAST_CHUNK_LOCK_S,
+    dailyRescreening: set.HOLDFAST_DAILY_RESCREENING,
     redisUrl: set.HOLDFAST_REDIS_URL,
     logLevel: set.HOLDFAST_LOG_LEVEL,
   };

@@ -9,6 +9,7 @@ import { type Environment, parseEnvironment, printable } from './environment.ts'
 import { IMPORT_LIMITS } from './imports/import-limits.ts';
 import { resumeImports } from './imports/importing.ts';
 import { judgingQueue } from './queue/engine-choice.ts';
+import { startDailyRescreening } from './screenings/daily-rescreening.ts';
 import { screeningService } from './screenings/screening-service.ts';
 import { runStopStages, type StopStage } from './shutdown.ts';
 import { startSimulationPool } from './simulation/simulation-pool.ts';
@@ -63,6 +64,8 @@ async function start(environment: Environment): Promise<void> {
     ]);
     const address = await app.listen({ host: environment.host, port: environment.port });
     screening.screenings.start();
+    const at = environment.dailyRescreening;
+    if (at !== undefined) startDailyRescreening({ at, now, ask: screening.screenings.askStale, logger });
     logger.info({ ...printable(environment), address, reference: `${address}/docs` }, 'serving');
   } catch (error) {
     logger.fatal({ err: error }, 'the service did not start');

@@ -5,7 +5,7 @@ import type { ScreeningSignals } from './screening-signals.ts';
 
 export type ScreeningStores = Pick<
   Stores,
-  'screenings' | 'screeningSelection' | 'screeningPages' | 'screeningVerdicts' | 'verdicts' | 'judgedPairs' | 'entrySearch'
+  'screenings' | 'screeningSelection' | 'screeningPages' | 'screeningVerdicts' | 'stalePairs' | 'verdicts' | 'judgedPairs' | 'entrySearch'
 >;
 
 export interface ScreeningDependencies extends ScreeningStores {
