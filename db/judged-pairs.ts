@@ -51,6 +51,12 @@ export interface PairVerdictRow {
   readonly stale: 0 | 1;
 }
 
+/** V and Hz, exactly */
+export interface PairMains {
+  readonly voltage: number;
+  readonly frequency: number;
+}
+
 export interface JudgedPairs {
   /** Ties a stored verdict to what it judged, once: the same tie again changes nothing. */
   tie(verdictId: string, circuit: JudgedCircuit): void;
@@ -58,6 +64,8 @@ export interface JudgedPairs {
   markStale(entry: number): void;
   /** A verdict's ties, first made first, at most `limit`. */
   ofVerdict(verdict: number, limit: number): readonly JudgedPairRow[];
+  /** Of the verdicts of two entries for each other at a count the newest that holds, else the newest of earlier revisions. */
+  newestOfPair(dimmerId: string, lampId: string, count: number, mains?: PairMains): PairVerdictRow | undefined;
   /** A text that changes with whatever `ofPair` depends on; undefined where either entry is not there. */
   stampOf(dimmerId: string, lampId: string): string | undefined;
   /** The verdicts of two entries for each other, newest first, at most `limit`. */
@@ -78,6 +86,12 @@ const differs = (entry: 'dimmer' | 'lamp') =>
     (SELECT circuit FROM revisions WHERE entry = part.${entry} AND revision = part.${entry}_revision))`;
 const OUTDATED = `EXISTS (SELECT 1 FROM judged_pairs part
   WHERE part.circuit_row = judged_pairs.circuit_row AND (${differs('dimmer')} OR ${differs('lamp')}))`;
+
+const OF_PAIR = `SELECT v.id, v.model_version, v.created_at, v.grade, v.summary, v.mains_voltage, v.mains_frequency, p.lamp_count,
+    p.dimmer_revision, p.lamp_revision, p.stale
+  FROM judged_pairs p CROSS JOIN verdicts v ON v.seq = p.verdict
+  WHERE p.dimmer = (SELECT seq FROM entries WHERE kind = 'dimmer' AND id = @dimmerId)
+    AND p.lamp = (SELECT seq FROM entries WHERE kind = 'lamp' AND id = @lampId) AND p.plain = 1`;
 
 export function judgedPairs(record: RecordDatabase): JudgedPairs {
   const verdictOf = record.prepare<[string], { seq: number; created_at: number }>('SELECT seq, created_at FROM verdicts WHERE id = ?');
@@ -105,15 +119,13 @@ export function judgedPairs(record: RecordDatabase): JudgedPairs {
     `SELECT d.id AS dimmer_id, dimmer_revision, l.id AS lamp_id, lamp_revision, lamp_count, plain, stale FROM judged_pairs p
      LEFT JOIN entries d ON d.seq = p.dimmer LEFT JOIN entries l ON l.seq = p.lamp WHERE p.verdict = ? ORDER BY p.seq LIMIT ?`,
   );
-  const ofPair = record.prepare<[string, string, number], PairVerdictRow>(
-    `SELECT v.id, v.model_version, v.created_at, v.grade, v.summary, v.mains_voltage, v.mains_frequency, p.lamp_count,
-       p.dimmer_revision, p.lamp_revision, p.stale
-     FROM judged_pairs p CROSS JOIN verdicts v ON v.seq = p.verdict
-     WHERE p.dimmer = (SELECT seq FROM entries WHERE kind = 'dimmer' AND id = ?)
-       AND p.lamp = (SELECT seq FROM entries WHERE kind = 'lamp' AND id = ?) AND p.plain = 1
-     ORDER BY p.created_at DESC, p.verdict DESC LIMIT ?`,
-  );
-
+  const ofPair = record.prepare<[object], PairVerdictRow>(`${OF_PAIR} ORDER BY p.created_at DESC, p.verdict DESC LIMIT @limit`);
+  const newest = (more: string) =>
+    record.prepare<[object], PairVerdictRow>(
+      `${OF_PAIR} AND p.lamp_count = @count ${more} ORDER BY p.stale, p.created_at DESC, p.verdict DESC LIMIT 1`,
+    );
+  const newestAtAny = newest('');
+  const newestAt = newest('AND v.mains_voltage = @voltage AND v.mains_frequency = @frequency');
   const stampOf = record
     .prepare<[string, string], string>(
       `SELECT d.circuit || ' ' || l.circuit || ' ' ||
@@ -162,6 +174,8 @@ export function judgedPairs(record: RecordDatabase): JudgedPairs {
     markStale: (entry) => void markEntry.run({ entry }),
     ofVerdict: (verdict, limit) => ofVerdict.all(verdict, limit),
     stampOf: (dimmerId, lampId) => stampOf.get(dimmerId, lampId),
-    ofPair: (dimmerId, lampId, limit) => ofPair.all(dimmerId, lampId, limit),
+    ofPair: (dimmerId, lampId, limit) => ofPair.all({ dimmerId, lampId, limit }),
+    newestOfPair: (dimmerId, lampId, count, mains) =>
+      mains === undefined ? newestAtAny.get({ dimmerId, lampId, count }) : newestAt.get({ dimmerId, lampId, count, ...mains }),
   };
 }

@@ -5,6 +5,7 @@ import { type ImportStaging, importStaging } from './import-staging.ts';
 import { type JudgedPairs, judgedPairs } from './judged-pairs.ts';
 import { type PartnerSearch, partnerSearch } from './partner-search.ts';
 import type { RecordDatabase } from './record.ts';
+import { type RecordChanges, recordChanges } from './record-changes.ts';
 import { type ScreeningPages, screeningPages } from './screening-pages.ts';
 import { type ScreeningSelection, screeningSelection } from './screening-selection.ts';
 import { type StalePairs, stalePairs } from './screening-stale.ts';
@@ -21,6 +22,7 @@ export interface Stores {
   readonly entries: EntryStore;
   readonly entrySearch: EntrySearch;
   readonly importStaging: ImportStaging;
+  readonly recordChanges: RecordChanges;
   readonly screenings: ScreeningStore;
   readonly screeningSelection: ScreeningSelection;
   readonly screeningPages: ScreeningPages;
@@ -37,6 +39,7 @@ export function storesOf(record: RecordDatabase): Stores {
     entries: entryStore(record),
     entrySearch: entrySearch(record),
     importStaging: importStaging(record),
+    recordChanges: recordChanges(record),
     screenings: screeningStore(record),
     screeningSelection: screeningSelection(record),
     screeningPages: screeningPages(record),

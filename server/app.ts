@@ -15,6 +15,7 @@ import { validateBySchema } from './plugins/schema-validation.ts';
 import { addSecurityHeaders } from './plugins/security-headers.ts';
 import { refuseWhileStopping } from './plugins/stopping.ts';
 import { clientErrorText, replyToError, sendProblem } from './problem-replies.ts';
+import { answerInFront, readyAnswers } from './ready-answers.ts';
 import { badgeRoutes } from './routes/badges.ts';
 import { entryRoutes } from './routes/entries.ts';
 import { entryListRoutes } from './routes/entry-lists.ts';
@@ -83,7 +84,9 @@ export async function buildApp(dependencies: AppDependencies): Promise<App> {
 
   identifyRequests(app);
   refuseWhileStopping(app);
-  countRequests(app, metrics);
+  const count = countRequests(app, metrics);
+  const ready = readyAnswers();
+  answerInFront(app, ready, ({ route, status }, seconds) => count('GET', route, status, seconds));
   await addSecurityHeaders(app);
   validateBySchema(app);
   await documentCalls(app);
@@ -91,13 +94,13 @@ export async function buildApp(dependencies: AppDependencies): Promise<App> {
   await app.register(healthRoutes(dependencies));
   await app.register(metricsRoute(dependencies, metrics));
   await app.register(verdictRoutes(dependencies, metrics));
-  await app.register(storedVerdictRoutes(dependencies));
+  await app.register(storedVerdictRoutes(dependencies, ready));
   await app.register(verdictLookupRoute(dependencies));
   await app.register(verdictWaveformRoutes(dependencies));
   await app.register(entryRoutes(dependencies));
   await app.register(entryListRoutes(dependencies));
   await app.register(partnerRoutes(dependencies));
-  await app.register(badgeRoutes(dependencies));
+  await app.register(badgeRoutes(dependencies, ready));
   await app.register(importRoutes(dependencies));
   await app.register(screeningRoutes(dependencies));
   await app.register(screeningStreamRoutes(dependencies));

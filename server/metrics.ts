@@ -5,6 +5,8 @@
 
 export interface Counter {
   add(labels?: Labels, by?: number): void;
+  /** Counts under these labels, which are written out once: for what is counted with every request. */
+  under(labels: Labels): (by?: number) => void;
 }
 
 type Labels = { readonly [name: string]: string | number };
@@ -24,12 +26,11 @@ export function createMetrics(): Metrics {
     counter: (name, help) => {
       const totals = new Map<string, number>();
       families.push(() => family(name, 'counter', help, [...totals]));
-      return {
-        add: (labels = {}, by = 1) => {
-          const key = labelText(labels);
-          totals.set(key, (totals.get(key) ?? 0) + by);
-        },
+      const under = (labels: Labels) => {
+        const key = labelText(labels);
+        return (by = 1) => void totals.set(key, (totals.get(key) ?? 0) + by);
       };
+      return { under, add: (labels = {}, by = 1) => under(labels)(by) };
     },
     gauge: (name, help, read) => {
       families.push(() => family(name, 'gauge', help, [['', read()]]));

@@ -1,13 +1,13 @@
 /**
- * The badges of pairs, ready to be sent. A badge is made once and kept with the stamp of what it was made from: the circuits of both
- * entries and their last tie. Every request looks the stamp up anew, so that no write has to know of badges, and none is missed.
+ * The badges of pairs. A badge comes with the stamp of what it was made from, the circuits of both entries and their last tie: while the
+ * stamp is the same, so is the badge. No write has to know of badges, and none is missed.
  */
 import type { EntryStore } from '../../db/entries.ts';
 import type { JudgedPairs, PairVerdictRow } from '../../db/judged-pairs.ts';
+import type { RecordChanges } from '../../db/record-changes.ts';
 import type { VerdictStore } from '../../db/verdicts.ts';
 import type { Judgement } from '../../model/index.ts';
 import { MOST_OF_PAIR } from '../catalogue/pair-verdicts.ts';
-import { type Answer, answerOf, keepingAnswers } from '../kept-answers.ts';
 import type { BadgeAnswer } from '../schemas/badge-calls.ts';
 import { badgePicture } from './badge-picture.ts';
 import { type BadgeWords, badgeWords } from './badge-words.ts';
@@ -19,25 +19,18 @@ export interface BadgeDependencies {
   readonly entries: EntryStore;
   readonly verdicts: VerdictStore;
   readonly judgedPairs: JudgedPairs;
+  readonly recordChanges: RecordChanges;
 }
 
-export type PairBadge = { readonly ok: true; readonly answer: Answer } | { readonly ok: false; readonly missing: 'dimmer' | 'lamp' };
+export type PairBadge =
+  | { readonly ok: true; readonly text: string; readonly holds: () => boolean }
+  | { readonly ok: false; readonly missing: 'dimmer' | 'lamp' };
 
-/** `question` is what the query of the address says, by which badges of a pair are told apart. */
 export type PairBadges = (form: BadgeForm, dimmerId: string, lampId: string, question: StandingQuestion) => PairBadge;
-
-/** bytes: some tens of thousands of badges */
-const MOST_BYTES = 48 * 1024 * 1024;
-
-interface StampedAnswer extends Answer {
-  readonly stamp: string;
-}
 
 const CAUTION = 'A screening by simulation, not a type test. Follow both makers’ instructions; work on the mains is for a licensed person.';
 
-export function pairBadges({ entries, verdicts, judgedPairs }: BadgeDependencies): PairBadges {
-  const kept = keepingAnswers<StampedAnswer>(MOST_BYTES);
-
+export function pairBadges({ entries, verdicts, judgedPairs, recordChanges }: BadgeDependencies): PairBadges {
   const lowestDialOf = ({ id }: PairVerdictRow): number | null => {
     const judgement = verdicts.findById(id)?.judgement;
     if (judgement === undefined) return null;
@@ -48,17 +41,25 @@ export function pairBadges({ entries, verdicts, judgedPairs }: BadgeDependencies
   return (form, dimmerId, lampId, question) => {
     const stamp = judgedPairs.stampOf(dimmerId, lampId);
     if (stamp === undefined) return { ok: false, missing: entries.has('dimmer', dimmerId) ? 'lamp' : 'dimmer' };
-    const { count, mains } = question;
-    const key = `${form} ${dimmerId} ${lampId} ${count} ${mains?.voltage_V} ${mains?.frequency_Hz}`;
-    const ready = kept.get(key);
-    if (ready?.stamp === stamp) return { ok: true, answer: ready };
-
     const standing = pairStanding(judgedPairs.ofPair(dimmerId, lampId, MOST_OF_PAIR), question, lowestDialOf);
     const words = badgeWords(standing);
     const text = form === 'svg' ? pictureOf(standing, words) : JSON.stringify(badgeJson(dimmerId, lampId, question, standing, words));
-    const answer = { ...answerOf(text), stamp };
-    kept.keep(key, answer);
-    return { ok: true, answer };
+    return { ok: true, text, holds: holdsWhile(() => judgedPairs.stampOf(dimmerId, lampId) === stamp, recordChanges) };
+  };
+}
+
+/** ms for which nothing is looked up while nothing is written here: so late, at most, is what another process on the same record writes */
+const TRUSTED_FOR = 1000;
+
+/** `check`, asked again only after this process wrote anything, or a second later. */
+function holdsWhile(check: () => boolean, changes: RecordChanges): () => boolean {
+  let changesThen = changes();
+  let checkedAt = performance.now();
+  return () => {
+    const [changesNow, now] = [changes(), performance.now()];
+    if (changesNow === changesThen && now - checkedAt < TRUSTED_FOR) return true;
+    [changesThen, checkedAt] = [changesNow, now];
+    return check();
   };
 }
 

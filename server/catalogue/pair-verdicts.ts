@@ -22,15 +22,17 @@ export function isAt(mains: Mains | undefined): (row: PairVerdictRow) => boolean
 
 /** One answer for each pair, in their order. A verdict that still holds goes before a newer one of an earlier revision. */
 export function lookUpVerdicts({ entries, judgedPairs }: PairDependencies, { pairs, mains }: LookupRequest): LookupItem[] {
+  const at = mains === undefined ? undefined : { voltage: mains.voltage_V, frequency: mains.frequency_Hz };
   return pairs.map(({ dimmerId, lampId, count }) => {
     const asked = { dimmerId, lampId, count };
+    const row = judgedPairs.newestOfPair(dimmerId, lampId, count, at);
+    // What holds is of entries that are there.
+    if (row?.stale === 0) return { ...asked, outcome: 'judged', verdict: verdictToWire(row) };
     if (!entries.has('dimmer', dimmerId)) return { ...asked, outcome: 'unknown-dimmer', verdict: null };
     if (!entries.has('lamp', lampId)) return { ...asked, outcome: 'unknown-lamp', verdict: null };
-    const rows = judgedPairs.ofPair(dimmerId, lampId, MOST_OF_PAIR).filter(({ lamp_count }) => lamp_count === count);
-    const atMains = rows.filter(isAt(mains));
-    const row = atMains.find(({ stale }) => stale === 0) ?? atMains[0];
-    if (row === undefined) return { ...asked, outcome: 'not-screened', verdict: null };
-    return { ...asked, outcome: row.stale === 1 ? 'stale' : 'judged', verdict: verdictToWire(row) };
+    return row === undefined
+      ? { ...asked, outcome: 'not-screened', verdict: null }
+      : { ...asked, outcome: 'stale', verdict: verdictToWire(row) };
   });
 }
 

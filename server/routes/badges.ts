@@ -3,8 +3,8 @@ import type { FastifyReply, FastifyRequest } from 'fastify';
 import type { FastifyPluginAsyncZod } from 'fastify-type-provider-zod';
 import { z } from 'zod';
 import { type BadgeDependencies, type BadgeForm, pairBadges } from '../badges/pair-badges.ts';
-import { matchesTag } from '../entity-tags.ts';
 import { sendProblem } from '../problem-replies.ts';
+import type { ReadyAnswers } from '../ready-answers.ts';
 import { badgeAnswer, badgeParams, badgeQuery } from '../schemas/badge-calls.ts';
 import { noBody } from '../schemas/no-body.ts';
 import { problemResponses } from '../schemas/problem.ts';
@@ -23,15 +23,16 @@ const HEADERS = {
   'content-security-policy': "default-src 'none'; style-src 'unsafe-inline'",
 };
 
-type BadgeRequest = Pick<FastifyRequest, 'headers'> & {
+type BadgeRequest = FastifyRequest & {
   readonly params: z.output<typeof badgeParams>;
   readonly query: z.output<typeof badgeQuery>;
 };
 
-export function badgeRoutes(dependencies: BadgeDependencies): FastifyPluginAsyncZod {
+export function badgeRoutes(dependencies: BadgeDependencies, ready: ReadyAnswers): FastifyPluginAsyncZod {
   const badges = pairBadges(dependencies);
 
-  const answer = (form: BadgeForm, { headers, params, query }: BadgeRequest, reply: FastifyReply): void => {
+  const answer = (form: BadgeForm, request: BadgeRequest, reply: FastifyReply): void => {
+    const { params, query } = request;
     const { count, mainsVoltage_V, mainsFrequency_Hz } = query;
     const mains =
       mainsVoltage_V === undefined || mainsFrequency_Hz === undefined
@@ -45,10 +46,7 @@ export function badgeRoutes(dependencies: BadgeDependencies): FastifyPluginAsync
       sendProblem(reply, 'entry-not-found', `The catalogue has no such ${badge.missing}.`);
       return;
     }
-    const { bytes, tag } = badge.answer;
-    reply.header('etag', tag);
-    if (matchesTag(headers['if-none-match'], tag)) reply.code(304).send();
-    else reply.type(TYPES[form]).send(bytes);
+    ready.send(request, reply, { type: TYPES[form], text: badge.text, holds: badge.holds });
   };
 
   return async (app) => {
@@ -78,7 +76,7 @@ export function badgeRoutes(dependencies: BadgeDependencies): FastifyPluginAsync
           },
         },
       },
-      (request, reply) => answer('svg', request, reply as FastifyReply),
+      (request, reply) => answer('svg', request as BadgeRequest, reply as FastifyReply),
     );
 
     app.get(
@@ -90,7 +88,7 @@ export function badgeRoutes(dependencies: BadgeDependencies): FastifyPluginAsync
           response: { 200: { description: 'What it says.', content: { 'application/json': { schema: badgeAnswer } } }, ...otherwise },
         },
       },
-      (request, reply) => answer('json', request, reply as FastifyReply),
+      (request, reply) => answer('json', request as BadgeRequest, reply as FastifyReply),
     );
   };
 }

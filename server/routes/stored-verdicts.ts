@@ -1,27 +1,25 @@
 /** Reading stored verdicts: one, whole or in part, and pages of them as JSON or CSV. */
-import type { FastifyReply } from 'fastify';
+import type { FastifyReply, FastifyRequest } from 'fastify';
 import type { FastifyPluginAsyncZod } from 'fastify-type-provider-zod';
 import { z } from 'zod';
 import { acceptedType } from '../accepted-type.ts';
 import type { AppDependencies } from '../app.ts';
-import { matchesTag } from '../entity-tags.ts';
 import { sendProblem } from '../problem-replies.ts';
+import type { ReadyAnswers } from '../ready-answers.ts';
 import { noBody } from '../schemas/no-body.ts';
 import { problemResponses } from '../schemas/problem.ts';
 import { BAD_CURSOR } from '../schemas/url-values.ts';
 import { verdict } from '../schemas/verdict.ts';
 import { verdictParams, verdictQuery } from '../schemas/verdict-calls.ts';
 import { verdictList, verdictListQuery } from '../schemas/verdict-list.ts';
-import { verdictAnswers } from '../verdicts/verdict-answers.ts';
+import { verdictText } from '../verdicts/verdict-answers.ts';
 import { verdictsCsv } from '../verdicts/verdict-csv.ts';
 import { headingPage, verdictPage } from '../verdicts/verdict-lists.ts';
 import { replyToFailure } from './verdict-failures.ts';
 
 const JSON_TYPE = 'application/json; charset=utf-8';
 
-export function storedVerdictRoutes(dependencies: AppDependencies): FastifyPluginAsyncZod {
-  const answers = verdictAnswers(dependencies.verdicts);
-
+export function storedVerdictRoutes(dependencies: AppDependencies, ready: ReadyAnswers): FastifyPluginAsyncZod {
   return async (app) => {
     app.get(
       '/v1/verdicts/:id',
@@ -45,14 +43,13 @@ export function storedVerdictRoutes(dependencies: AppDependencies): FastifyPlugi
         },
       },
       (request, reply) => {
-        const answer = answers(request.params.id, request.query.fields);
-        if (answer === undefined) {
-          replyToFailure(reply, { kind: 'verdict-not-found' });
+        const text = verdictText(dependencies.verdicts, request.params.id, request.query.fields);
+        if (text === undefined) {
+          replyToFailure(reply as FastifyReply, { kind: 'verdict-not-found' });
           return;
         }
-        reply.header('etag', answer.tag).header('cache-control', 'no-cache');
-        if (matchesTag(request.headers['if-none-match'], answer.tag)) reply.code(304).send();
-        else reply.type(JSON_TYPE).send(answer.bytes as never);
+        reply.header('cache-control', 'no-cache');
+        ready.send(request as FastifyRequest, reply as FastifyReply, { type: JSON_TYPE, text, holds: () => true });
       },
     );
 

@@ -78,6 +78,7 @@ function useEverything(stores: Stores): void {
   verdicts.count();
   judgedPairs.ofVerdict(1, 10);
   judgedPairs.ofPair('d', 'l', 10);
+  judgedPairs.newestOfPair('d', 'l', 1);
   judgedPairs.stampOf('d', 'l');
   for (const filter of subsets<VerdictFilter>(VERDICT_FILTER)) {
     verdictSearch.page(filter, NEWEST, 1);
