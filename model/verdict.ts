@@ -165,6 +165,8 @@ export interface VariantGrade {
   readonly decidedBy: CornerName;
   /** % where conditional, else null */
   readonly lowestDial: number | null;
+  /** the worst one, whose evidence the judgement shows */
+  readonly shown: boolean;
 }
 
 /** Work done, part of every result. */

@@ -5,6 +5,7 @@
 import type { Pairing } from '../model/index.ts';
 import { askedPairing } from '../server/schemas/pairing.ts';
 import { parseWire } from '../server/schemas/wire-parsing.ts';
+import { shownPairing } from '../server/simulation/asked-circuit.ts';
 import { completePairing } from '../server/verdicts/pairing-completion.ts';
 import { toModel } from '../server/verdicts/pairing-to-model.ts';
 
@@ -60,9 +61,7 @@ export function benchPairing(dimmer: object, lamps: Lamps): Pairing {
     lamps: lamps.map(([count, lamp]) => ({ count, lamp })),
   });
   if (!asked.ok) throw new Error(`a bench circuit is not a pairing: ${JSON.stringify(asked.issues)}`);
-  const completed = completePairing(asked.value);
-  if (!completed.ok) throw new Error(`a bench circuit is not complete: ${JSON.stringify(completed.failure)}`);
-  return toModel(completed.pairing).pairing;
+  return shownPairing(toModel(completePairing(asked.value)).pairing, []);
 }
 
 export function benchCircuits(): BenchCircuit[] {

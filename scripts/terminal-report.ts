@@ -3,8 +3,11 @@
  * what to mind. Nothing is computed here that the verdict does not say.
  */
 import { POLARITIES, readPolarity } from '../server/schemas/polarity.ts';
+import type { RequirementAnswer } from '../server/schemas/requirement.ts';
 import type { Verdict } from '../server/schemas/verdict.ts';
 import { dialStrip } from './dial-strip.ts';
+import { countLines, remedyLines, requirementLines, settlingLines } from './terminal-advice.ts';
+import { foundLines, lampLines, round } from './terminal-lamps.ts';
 import { type Colour, fill, type Paint, wrap } from './terminal-text.ts';
 
 const GRADE_COLOURS: { readonly [grade in Verdict['grade']]: Colour } = {
@@ -14,20 +17,19 @@ const GRADE_COLOURS: { readonly [grade in Verdict['grade']]: Colour } = {
   undetermined: 'magenta',
 };
 
-const LOAD_WORDS = {
-  resistive: 'filament or plain resistance',
-  'iv-table': 'LED by its current curve',
-  reservoir: 'LED with a reservoir capacitor',
-} as const;
-
-export function terminalReport(verdict: Verdict, paint: Paint): string {
+export function terminalReport(verdict: Verdict, paint: Paint, requirement: RequirementAnswer | null = null): string {
   const sections = [
     [paint(verdict.grade.toUpperCase(), 'bold', GRADE_COLOURS[verdict.grade]), ...wrap(verdict.summary)],
     pairingLines(verdict.pairing),
-    [...dialStrip(verdict.dial, paint), ...figureLines(verdict.dial)],
+    [...dialStrip(verdict.dial, paint), ...figureLines(verdict.dial), ...edgeLines(verdict.dial)],
     titled('What must be seen to', itemLines(verdict.conditions.map(({ detail }) => detail)), paint),
+    titled('What would settle it', settlingLines(verdict.wouldSettle), paint),
+    titled('Remedies', remedyLines(verdict.remedies), paint),
+    titled(countTitle(verdict), countLines(verdict.lampCounts), paint),
+    titled('What dimmer would do', requirementLines(requirement), paint),
     titled('Why', reasonLines(verdict.reasons), paint),
-    titled('Corners', cornerLines(verdict.corners), paint),
+    titled('Corners', cornerLines(verdict), paint),
+    titled('Lamps that are not known by their circuit', foundLines(verdict), paint),
     titled('Assumed, since the file does not say (--json gives the basis of each)', assumptionLines(verdict.assumptions), paint),
     titled('Mind', itemLines(verdict.cautions), paint),
     [paint(`Verdict ${verdict.id}, model version ${verdict.modelVersion}`, 'dim')],
@@ -45,13 +47,9 @@ function itemLines(texts: readonly string[]): string[] {
 }
 
 function pairingLines({ mains, dimmer, lamps, addedLoad }: Verdict['pairing']): string[] {
-  const lampWords = lamps.map(({ count, lamp }) => {
-    const power = lamp.ratedPower_W === null ? '' : `${lamp.ratedPower_W} W, `;
-    return `${count} x ${power}${LOAD_WORDS[lamp.load.kind]}`;
-  });
   const currents = `latching ${currentWords(dimmer.latchingCurrent_mA)}, holding ${currentWords(dimmer.holdingCurrent_mA)}`;
   return [
-    ...lampWords.flatMap((words, index) => wrap(words, index === 0 ? '  Lamps   ' : '          ')),
+    ...lampLines(lamps),
     ...(addedLoad === null ? [] : wrap(addedLoadWords(addedLoad), '  Added   ')),
     ...wrap(`${currents}, ${dimmer.wiring}, ${dimmer.drive.kind} drive`, '  Dimmer  '),
     ...wrap(`${mains.voltage_V} V, ${mains.frequency_Hz} Hz`, '  Mains   '),
@@ -83,11 +81,28 @@ function figureLines(dial: Verdict['dial']): string[] {
   return ['', ...wrap(text, '  ')];
 }
 
-const round = (value: number): number => Number(value.toPrecision(3));
+/** Where a part a hair different would do something else, and how little that is. */
+function edgeLines(dial: Verdict['dial']): string[] {
+  const near = dial.filter((row) => row.nearEdge);
+  if (near.length === 0) return [];
+  const positions = [...new Set(near.map((row) => row.position_pct))].sort((a, b) => a - b);
+  const margins = near.flatMap(({ margins: { latching_pct, holding_pct, breakover_pct } }) => [latching_pct, holding_pct, breakover_pct]);
+  const least = Math.min(...margins.filter((margin) => margin !== null));
+  const text = `Near the edge at ${positions.join(', ')} %: a part ${round(least)} % different would do something else there.`;
+  return wrap(text, '  ');
+}
+
+function countTitle({ lampCounts, pairing }: Verdict): string {
+  const others = pairing.lamps.length > 1 ? ` (of lamps[${lampCounts?.group}]; the others stay)` : '';
+  return `How many lamps${others}`;
+}
 
 /** The range stands in a column of its own, so that the eye finds the place on the dial. */
 function reasonLines(reasons: Verdict['reasons']): string[] {
-  return reasons.flatMap(({ dial_pct, detail }) => wrap(detail, `  ${rangeWords(dial_pct).padEnd(RANGE_WIDTH)}  `));
+  return reasons.flatMap(({ dial_pct, detail, corner }) => {
+    const where = corner === 'nominal' ? '' : ` (${corner})`;
+    return wrap(`${detail}${where}`, `  ${rangeWords(dial_pct).padEnd(RANGE_WIDTH)}  `);
+  });
 }
 
 const RANGE_WIDTH = '100-100 %'.length;
@@ -99,10 +114,21 @@ function rangeWords(range: readonly number[] | null): string {
 }
 
 /** Where one corner alone was judged, its grade is the verdict's. */
-function cornerLines(corners: Verdict['corners']): string[] {
-  if (corners.length < 2) return [];
-  const words = corners.map(({ name, grade }, index) => `${name} ${grade}${index < corners.length - 1 ? ',' : ''}`);
-  return [...fill(words, '  ', ' '), '  The worst one decides; the dial above is the nominal one.'];
+function cornerLines({ corners, sparedCorners, decidedBy }: Verdict): string[] {
+  if (corners.length + sparedCorners.length < 2) return [];
+  const rows = corners.map(({ name, mainsVoltage_V, latchingCurrent_mA, holdingCurrent_mA, grade, lowestDial_pct }) => {
+    const inputs = `${round(mainsVoltage_V)} V, latching ${bothWords(latchingCurrent_mA)}, holding ${bothWords(holdingCurrent_mA)}`;
+    const range = lowestDial_pct === null ? '' : ` from ${lowestDial_pct} %`;
+    return wrap(`${inputs}: ${grade}${range}`, `  ${name.padEnd(CORNER_WIDTH)}  `);
+  });
+  const spared = sparedCorners.map((name) => `  ${name.padEnd(CORNER_WIDTH)}  not needed: the grade was decided`);
+  return [...rows.flat(), ...spared, `  Decided by ${decidedBy}; the dial above is the nominal one.`];
+}
+
+const CORNER_WIDTH = 'typical-currents'.length;
+
+function bothWords({ positive, negative }: Verdict['corners'][number]['latchingCurrent_mA']): string {
+  return `${[...new Set([round(positive), round(negative)])].join('/')} mA`;
 }
 
 /** By the part they belong to, under the names by which the file can give them. */

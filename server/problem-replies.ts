@@ -15,11 +15,13 @@ export class RequestInvalid extends Error {
 interface Extras {
   readonly issues?: readonly Issue[];
   readonly retryAfter_s?: number;
+  /** further members of the document, by the names that the table of problems uses */
+  readonly members?: object;
 }
 
 export function sendProblem(reply: FastifyReply, code: ProblemCode, detail: string, extras: Extras = {}): FastifyReply {
   if (extras.retryAfter_s !== undefined) reply.header('retry-after', extras.retryAfter_s);
-  const document = problemDocument(code, detail, reply.request.id, extras.issues);
+  const document = problemDocument(code, detail, reply.request.id, extras.issues, extras.members);
   // As text: a problem must reach the client even where the call's response schemas have no place for it.
   return reply.code(PROBLEMS[code].status).type('application/problem+json').send(JSON.stringify(document));
 }

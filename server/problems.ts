@@ -53,10 +53,20 @@ export const PROBLEMS = {
     title: 'The pairing names an entry that the catalogue does not have',
     when: 'a `dimmerId` or a `lampId` of a pairing is not in the catalogue; `issues` says where',
   },
-  'phase-table-needs-fitting': {
+  'profile-not-fitted': {
     status: 422,
-    title: 'A phase table must be fitted first',
-    when: 'a lamp is given as a phase table: it is valid, but this version does not fit it to a load that can be simulated',
+    title: 'The record cannot be fitted to a lamp',
+    when: 'a phase table or scope record is valid, but no lamp of the model draws such a current; `residual_pct` says how far the best one is off',
+  },
+  'scope-record-unusable': {
+    status: 422,
+    title: 'The scope record cannot be used',
+    when: 'a scope record is not what it should be; `fault` names what is wrong, `row` and `column` where',
+  },
+  'class-does-not-fit': {
+    status: 422,
+    title: 'No circuit of the class is like this lamp',
+    when: 'no circuit of the class has the stated power and power factor; `powerFactors` is what its circuits have',
   },
   'pairing-cannot-be-simulated': {
     status: 422,
@@ -92,6 +102,8 @@ export interface Problem {
   readonly detail: string;
   readonly issues?: readonly Issue[];
   readonly requestId?: string;
+  /** what else the code's `when` speaks of */
+  readonly [member: string]: unknown;
 }
 
 /** Enough to mend a file by; a body of nothing but errors must not become an answer many times its size. */
@@ -101,7 +113,13 @@ export function problemType(code: ProblemCode): string {
   return `urn:holdfast:problem:${code}`;
 }
 
-export function problemDocument(code: ProblemCode, detail: string, requestId: string, issues?: readonly Issue[]): Problem {
+export function problemDocument(
+  code: ProblemCode,
+  detail: string,
+  requestId: string,
+  issues?: readonly Issue[],
+  members: object = {},
+): Problem {
   const { status, title } = PROBLEMS[code];
   const left = (issues?.length ?? 0) - MOST_ISSUES;
   return {
@@ -110,6 +128,7 @@ export function problemDocument(code: ProblemCode, detail: string, requestId: st
     status,
     detail: left > 0 ? `${detail} The first ${MOST_ISSUES} are listed, ${left} more are not.` : detail,
     ...(issues === undefined ? {} : { issues: issues.slice(0, MOST_ISSUES) }),
+    ...members,
     requestId,
   };
 }

@@ -32,13 +32,13 @@ export function judgeVariants(variants: readonly Variant[], ask: string, options
   const effort = new EffortTally();
   const graded = variants.map(({ name, pairing }) => {
     const { grade, lowestDial, decisive } = overCorners(pairing, options, effort);
-    return { pairing, verdict: { name, grade, lowestDial, decidedBy: decisive.corner.name } satisfies VariantGrade };
+    return { pairing, verdict: { name, grade, lowestDial, decidedBy: decisive.corner.name } };
   });
   const worst = graded.reduce((a, b) => {
     const higher = (b.verdict.lowestDial ?? 0) > (a.verdict.lowestDial ?? 0);
     return isWorse(b.verdict.grade, a.verdict.grade) || (b.verdict.grade === a.verdict.grade && higher) ? b : a;
   });
-  const grades = graded.map((g) => g.verdict);
+  const grades: readonly VariantGrade[] = graded.map((g) => ({ ...g.verdict, shown: g === worst }));
   const works = grades.filter((g) => isWorkable(g.grade));
   const fails = grades.filter((g) => g.grade === 'unsuitable');
   if (works.length > 0 && fails.length > 0) {

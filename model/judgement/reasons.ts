@@ -40,13 +40,11 @@ const FINDINGS: readonly Finding[] = [
     state: 're-firing',
     code: 're-fires',
     tell: (rows) => {
-      // rounded outward over the busiest half-cycle of each row: "2 to 5 times"
-      const count = times(
-        least(rows, (r) => r.firings.max),
-        most(rows, (r) => r.firings.max),
-      );
+      // of the busiest half-cycle of each row
+      const [low, high] = [least(rows, (r) => r.firings.max), most(rows, (r) => r.firings.max)];
+      const count = low === high ? `up to ${times(low, high)}` : times(low, high);
       const wanders = rows.some((r) => r.repeatsAfter === null || r.repeatsAfter > 2);
-      return `The triac drops out and fires again, up to ${count} in a half-cycle: hum and heat${wanders ? ', and flicker because the pattern changes' : ''}.`;
+      return `The triac drops out and fires again, ${count} in a half-cycle: hum and heat${wanders ? ', and flicker because the pattern changes' : ''}.`;
     },
   },
   {

@@ -2,19 +2,16 @@
 import type { FastifyReply } from 'fastify';
 import type { ReferenceFailure } from '../catalogue/pairing-references.ts';
 import { sendProblem } from '../problem-replies.ts';
-import type { JudgingFailure } from '../verdicts/verdict-judging.ts';
+import type { SimulationFailure } from '../simulation/simulation.ts';
 import type { WaveformsFailure } from '../verdicts/verdict-waveforms.ts';
+import { sendProfileProblem } from './profile-failures.ts';
 
-export function replyToFailure(reply: FastifyReply, failure: JudgingFailure | ReferenceFailure | WaveformsFailure): FastifyReply {
+export function replyToFailure(reply: FastifyReply, failure: SimulationFailure | ReferenceFailure | WaveformsFailure): FastifyReply {
   switch (failure.kind) {
     case 'queue-full':
       return sendProblem(reply, 'queue-full', `Ask again in ${failure.retryAfter_s} s.`, { retryAfter_s: failure.retryAfter_s });
-    case 'phase-table-needs-fitting': {
-      const message = 'is a valid phase table, but must be fitted to an iv-table or a reservoir load before it can be simulated';
-      const issues = failure.paths.map((path) => ({ path, message }));
-      const detail = 'This version does not fit phase tables. Give the lamp as resistive, iv-table or reservoir.';
-      return sendProblem(reply, 'phase-table-needs-fitting', detail, { issues });
-    }
+    case 'profile-refused':
+      return sendProfileProblem(reply, failure);
     case 'invalid-pairing':
       return sendProblem(reply, 'pairing-cannot-be-simulated', 'The model refuses this circuit.', { issues: failure.issues });
     case 'entries-not-known':

@@ -1,9 +1,9 @@
 /** Badges on the wire: whose, for which count and mains, and what the JSON form says. */
 import { z } from 'zod';
 import { entryId } from './entry.ts';
+import { gradeField } from './grade.ts';
 import { valueAt, withRule } from './quantities.ts';
 import { numberText } from './url-values.ts';
-import { gradeField } from './verdict.ts';
 import { mainsFrequencyText, mainsVoltageText } from './verdict-list.ts';
 
 export const badgeParams = z.strictObject({ dimmerId: entryId('dimmer'), lampId: entryId('lamp') });

@@ -1,10 +1,11 @@
 /**
- * What draws the lamp's current behind its input, by kind, as asked and as judged. A phase table is checked in full although it is
- * not simulated as it stands.
+ * What draws the lamp's current behind its input, by kind, as asked and as judged. Two kinds are not circuits: a class stands for a range
+ * of them, and a phase table is fitted to one.
  */
 import { z } from 'zod';
-import { defaultText, RESERVOIR_DEFAULTS } from '../verdicts/pairing-defaults.ts';
-import { list, numberAt, quantity, type Report, reportNotRising, valueAt, withRule } from './quantities.ts';
+import { LAMP_CLASSES } from '../../model/index.ts';
+import { defaultText, PHASE_TABLE_DEFAULTS, RESERVOIR_DEFAULTS } from '../verdicts/pairing-defaults.ts';
+import { choice, list, numberAt, quantity, type Report, reportNotRising, valueAt, withRule } from './quantities.ts';
 
 const resistiveKind = z.literal('resistive').describe('A plain resistance, no bridge: filament and halogen lamps, heaters.');
 const ivTableKind = z
@@ -13,7 +14,16 @@ const ivTableKind = z
 const reservoirKind = z
   .literal('reservoir')
   .describe('Bridge, surge resistor and reservoir capacitor, drained at constant power or current: plain non-dimmable drivers.');
-const phaseTableKind = z.literal('phase-table').describe('Current against phase, recorded on an undimmed sine.');
+const phaseTableKind = z
+  .literal('phase-table')
+  .describe(
+    'Current against phase, recorded on an undimmed sine: it is fitted to an iv-table or a reservoir, and refused where neither fits.',
+  );
+const classKind = z
+  .literal('class')
+  .describe('Known only by the kind of its input stage: judged with each of a few circuits that span the kind, at the rated power.');
+
+const lampClass = choice(LAMP_CLASSES, { is: 'Kind of the input stage' });
 
 const resistance_Ohm = quantity('Ohm', 1, 1_000_000, { is: 'Resistance of the hot lamp' });
 
@@ -45,12 +55,18 @@ const reservoirFields = {
   }),
 };
 
-const phaseTableFields = {
+export const phaseTableFields = {
   voltage_V: quantity('V', 85, 265, { is: 'R.m.s. voltage of the sine it was recorded on' }),
   frequency_Hz: quantity('Hz', 45, 65, { is: 'Frequency of that sine' }),
 };
 
-const phasePoints = withRule(
+/** Only a record that is fitted to a reservoir makes use of it. */
+export const minimumVoltageAskedOfTable = quantity('V', 1, 400, {
+  is: 'Where a reservoir is fitted: its voltage below which the drain stops, which an undimmed record does not show',
+  otherwise: PHASE_TABLE_DEFAULTS.minimumVoltage_V,
+});
+
+export const phasePoints = withRule(
   list(
     z.strictObject({
       phase_deg: quantity('deg', 0, 360, { is: 'Phase from the rising zero crossing' }),
@@ -87,10 +103,25 @@ export const askedLoad = z
       }),
       reportDrainNotOne,
     ),
-    z.strictObject({ kind: phaseTableKind, ...phaseTableFields, points: phasePoints }),
+    z.strictObject({
+      kind: phaseTableKind,
+      ...phaseTableFields,
+      points: phasePoints,
+      minimumVoltage_V: minimumVoltageAskedOfTable.optional(),
+    }),
+    z.strictObject({ kind: classKind, class: lampClass }),
   ])
-  .describe('What draws the current, by kind. A phase table is checked but not fitted to one of the others yet: it is answered with 422.');
+  .describe('What draws the current, by kind.');
 
+export const judgedTable = z.object({
+  kind: phaseTableKind,
+  ...phaseTableFields,
+  points: phasePoints,
+  minimumVoltage_V: minimumVoltageAskedOfTable,
+});
+export const judgedClass = z.object({ kind: classKind, class: lampClass });
+
+/** of a lamp that is given by its circuit */
 export const judgedLoad = z.discriminatedUnion('kind', [
   z.object({ kind: resistiveKind, resistance_Ohm }),
   z.object({ kind: ivTableKind, points: ivPoints }),
@@ -103,13 +134,15 @@ function reportDrainNotOne(sent: unknown, report: Report): void {
   if (given.length === 2) report(['current_mA'], 'must not be given together with power_W: the drain is one or the other');
 }
 
-/** Half a cycle must be there to within one sample: a record of 0, 1, ... 179 degrees covers it, since 180 repeats 0. */
+/** Half a cycle must be there to within one sample, the longest: a record of 0, 1, ... 179 degrees covers it, since 180 repeats 0. */
 function reportHalfCycleNotCovered(sent: unknown, report: Report): void {
   if (!Array.isArray(sent) || sent.length < 2) return;
   const first = numberAt(sent, 0, 'phase_deg');
   const last = numberAt(sent, sent.length - 1, 'phase_deg');
   if (first === undefined || last === undefined || last <= first) return;
-  const step = (last - first) / (sent.length - 1);
+  const phases = sent.map((_, index) => numberAt(sent, index, 'phase_deg') ?? Number.NaN);
+  const step = phases.reduce((most, phase, index) => Math.max(most, phase - (phases[index - 1] ?? phase)), 0);
+  if (Number.isNaN(step)) return;
   // a millionth of a degree for the rounding of the division
   if (last - first + step < 180 - 1e-6) {
     report(

@@ -1,13 +1,15 @@
 /**
- * A pairing on the wire: as asked (`referringPairing`, the body of POST /v1/verdicts; `askedPairing` once its references are resolved) and as judged (`judgedPairing`, every default filled
- * in). What was judged is itself a valid question, with itself as the answer.
+ * A pairing on the wire: as asked (`referringPairing`, the body of POST /v1/verdicts; `askedPairing` once its references are resolved) and
+ * as judged (`judgedPairing`, every default filled in). What was judged is itself a valid question: the same circuit with nothing left to
+ * assume.
  */
 import { z } from 'zod';
+import { MOST_COUNTS } from '../../model/index.ts';
 import { MAINS_DEFAULTS, OPTIONS_DEFAULTS } from '../verdicts/pairing-defaults.ts';
 import { askedDimmer, judgedDimmer } from './dimmer.ts';
 import { entryId } from './entry.ts';
 import { askedLamp, judgedLamp } from './lamp.ts';
-import { choice, list, quantity, reportNotRising, wholeNumber, withRule } from './quantities.ts';
+import { choice, list, numberAt, quantity, type Report, reportNotRising, wholeNumber, withRule } from './quantities.ts';
 
 export const mainsFields = {
   voltage_V: quantity('V', 85, 265, { is: 'R.m.s. voltage of the mains' }),
@@ -30,6 +32,20 @@ const addedLoad = z
   .nullable()
   .describe('A load added across the lamps, or null. Default null.');
 
+const SUPPLY_BAND = 'Between which voltages the mains may lie, where every corner is judged.';
+const supplyBandFields = {
+  low_pct: quantity('%', 50, 100, { is: 'Lowest mains voltage, of the nominal one', otherwise: "Default: by the supply's standard." }),
+  high_pct: quantity('%', 100, 150, { is: 'Highest mains voltage, of the nominal one', otherwise: "Default: by the supply's standard." }),
+};
+
+const lampCountFields = {
+  from: wholeNumber(1, 500, { is: 'Smallest count' }),
+  to: wholeNumber(1, 500, { is: `Largest count, at most ${MOST_COUNTS - 1} above the smallest` }),
+  group: wholeNumber(0, 11, { is: 'Which of `lamps` is varied, counted from 0', otherwise: 'Default 0.' }),
+};
+const LAMP_COUNT =
+  'Grade every number of lamps from one to another as well, and say where it stops being workable and why. Default null: the stated count alone.';
+
 const optionFields = {
   dialPositions_pct: withRule(
     list(
@@ -46,10 +62,39 @@ const optionFields = {
     otherwise: OPTIONS_DEFAULTS.dropOutAngle_deg,
   }),
   corners: choice(['all', 'nominal'], {
-    is: 'Judge every corner or the nominal one alone; this model version judges the nominal one for either',
+    is: 'all: mains from low to high, currents cold and typical, and whether the grade hinges on a value that was assumed. nominal: the nominal corner alone',
     otherwise: OPTIONS_DEFAULTS.corners,
   }),
+  remedies: z
+    .boolean({ error: 'must be true or false' })
+    .describe(
+      'Where the pairing is not suitable, look for what cures it: a low-end trim, an added resistor, an R-C bypass, more lamps. Each is simulated at every corner. Takes many times as long. Default false.',
+    ),
 };
+
+const askedOptions = z
+  .strictObject({
+    ...optionFields,
+    supplyBand: z.strictObject(supplyBandFields).partial().describe(SUPPLY_BAND),
+    lampCount: withRule(z.strictObject({ ...lampCountFields, group: lampCountFields.group.optional() }), reportCountsOutOfOrder)
+      .nullable()
+      .describe(LAMP_COUNT),
+  })
+  .partial()
+  .describe('How the pairing is judged.');
+
+const judgedOptions = z.object({
+  ...optionFields,
+  supplyBand: z.object(supplyBandFields).describe(SUPPLY_BAND),
+  lampCount: z.object(lampCountFields).nullable().describe(LAMP_COUNT),
+});
+
+function reportCountsOutOfOrder(sent: unknown, report: Report): void {
+  const from = numberAt(sent, 'from');
+  const to = numberAt(sent, 'to');
+  if (from === undefined || to === undefined || (to >= from && to - from < MOST_COUNTS)) return;
+  report(['to'], `must be from ${from} (\`from\`) to ${from + MOST_COUNTS - 1}: at most ${MOST_COUNTS} counts are judged at once`);
+}
 
 const countField = wholeNumber(1, 500, { is: 'How many of this lamp are on the circuit' });
 
@@ -82,7 +127,7 @@ const dimmerInFull = askedDimmer.describe('The dimmer. Only the two triac curren
 const groupInFull = z.strictObject({ count: countField, lamp: askedLamp });
 const otherFields = {
   addedLoad: addedLoad.optional(),
-  options: z.strictObject(optionFields).partial().optional().describe('How the pairing is judged.'),
+  options: askedOptions.optional(),
 };
 const lampGroups = <G extends z.ZodType>(group: G) =>
   list(group, 1, 12, 'lamp groups', 'The lamps on the circuit, each kind of lamp once with its count');
@@ -113,9 +158,12 @@ export const judgedPairing = z
     dimmer: judgedDimmer,
     lamps: z.array(z.object({ count: countField, lamp: judgedLamp })),
     addedLoad,
-    options: z.object(optionFields),
+    options: judgedOptions,
   })
-  .meta({ id: 'JudgedPairing', description: 'The pairing with every default filled in. Sent as a question it gets the same verdict.' });
+  .meta({
+    id: 'JudgedPairing',
+    description: 'The pairing with every default filled in. Sent as a question it is judged as it stands, with nothing assumed.',
+  });
 
 export type ReferringPairing = z.output<typeof referringPairing>;
 export type AskedPairing = z.output<typeof askedPairing>;

@@ -1,7 +1,8 @@
 /** What goes with an entry, on the wire: the dimmers that suit a lamp, the lamps that suit a dimmer. */
 import { z } from 'zod';
+import { GRADES, gradeField } from './grade.ts';
 import { cursorField, limitField, namesText, nextCursorField } from './url-values.ts';
-import { createdAtField, GRADES, gradeField, summaryField } from './verdict.ts';
+import { createdAtField, summaryField } from './verdict.ts';
 import { countText, mainsFrequencyText, mainsVoltageText } from './verdict-list.ts';
 
 export const DEFAULT_PARTNER_GRADES = ['suitable', 'conditional'] as const;

@@ -12,6 +12,12 @@ export const problem = z
       .array(z.object({ path: z.string(), message: z.string() }))
       .optional()
       .describe('Where the input is wrong, as `lamps[0].lamp.load.points[2].voltage_V`, and what would be right.'),
+    residual_pct: z.number().optional().describe('Of the best fit, where a record cannot be fitted.'),
+    limit_pct: z.number().optional().describe('Residual above which a fit is refused.'),
+    powerFactors: z.array(z.number()).optional().describe('Least and largest power factor of the circuits of a class.'),
+    fault: z.string().optional().describe('What is wrong with a scope record.'),
+    row: z.int().optional().describe('Row of the record, from 1, headers included.'),
+    column: z.string().optional().describe('Column of the record: time, voltage or current.'),
     requestId: z.string().optional().describe('The request in the log; also sent as the X-Request-Id header.'),
   })
   .meta({ id: 'Problem', description: 'What went wrong, as RFC 9457 has it.' });

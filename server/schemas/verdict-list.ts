@@ -1,8 +1,9 @@
 /** The list of stored verdicts on the wire: its filters, what an item shows, and what an item can show on demand. */
 import { z } from 'zod';
 import { entryId } from './entry.ts';
+import { GRADES, gradeField } from './grade.ts';
 import { choiceOf, cursorField, flagText, limitField, momentText, namesText, nextCursorField, numberText } from './url-values.ts';
-import { createdAtField, GRADES, gradeField, summaryField, VERDICT_FIELDS, verdict } from './verdict.ts';
+import { createdAtField, summaryField, VERDICT_FIELDS, verdict } from './verdict.ts';
 
 export const countText = numberText(1, 6000, 'How many lamps are on the circuit.', true);
 export const mainsVoltageText = numberText(85, 265, 'At exactly this mains voltage.');

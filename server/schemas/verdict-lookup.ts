@@ -1,9 +1,10 @@
 /** Looking up the verdicts of many pairs at once, on the wire. */
 import { z } from 'zod';
 import { entryId } from './entry.ts';
+import { gradeField } from './grade.ts';
 import { mainsFields } from './pairing.ts';
 import { list, wholeNumber } from './quantities.ts';
-import { gradeField, summaryField } from './verdict.ts';
+import { summaryField } from './verdict.ts';
 
 export const MOST_LOOKUPS = 1000;
 

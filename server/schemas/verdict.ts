@@ -1,52 +1,17 @@
 /** A verdict on the wire: grade, reasons and evidence for one pairing. */
 import { z } from 'zod';
+import { dialRow } from './dial-row.ts';
+import { foundClass, foundFit } from './found-lamp.ts';
+import { cornerName, cornerResult, gradeField, variantGrade } from './grade.ts';
+import { lampCounts } from './lamp-counts.ts';
 import { judgedPairing } from './pairing.ts';
-
-export const GRADES = ['suitable', 'conditional', 'unsuitable', 'undetermined'] as const;
-
-export const gradeField = z
-  .enum(GRADES)
-  .describe(
-    'suitable: every lit dial position is steady, up and down, and the currents are within the ratings. conditional: so under the stated conditions. unsuitable: no such range, or a rating is exceeded. undetermined: it hinges on a value that was assumed.',
-  );
-export const createdAtField = z.string().meta({ format: 'date-time', description: 'When it was computed, UTC.' });
-export const summaryField = z.string().describe('The verdict in one sentence.');
-
-const dialState = z
-  .enum(['dark', 'skipping', 're-firing', 'dropping-out', 'lopsided', 'wandering', 'undecided', 'steady'])
-  .describe('The headline of what this dial position does.');
+import { remedies } from './remedy.ts';
+import { wouldSettle } from './would-settle.ts';
 
 const count = z.int().min(0);
 
-const dialRow = z
-  .object({
-    sweep: z.enum(['up', 'down']).describe('Up: the dial rises from dark. Down: it falls again, everything carried over.'),
-    position_pct: z.number().describe('Dial position, 100 is brightest.'),
-    state: dialState,
-    alsoStates: z.array(dialState).describe('Other states that hold as well.'),
-    firings: z.object({ min: z.number(), mean: z.number(), max: z.number() }).describe('Gate firings a half-cycle; one is right.'),
-    silentShare: z.number().describe('Share of half-cycles without a firing, 0 to 1.'),
-    repeatsAfter_halfCycles: count.nullable().describe('Length of the pattern that repeats; null where it wanders.'),
-    settled_halfCycles: count.describe('Half-cycles simulated before observing.'),
-    observed_halfCycles: count.describe('Half-cycles observed.'),
-    failedLatches: z.number().describe('Gate pulses a half-cycle, on average, that ended before the triac reached its latching current.'),
-    earlyDropOuts: z
-      .number()
-      .describe("Conductions a half-cycle, on average, that ended well before the lamp's own current would have ended them."),
-    firingAngle_deg: z.number().nullable().describe('Mean of the first firing, from the zero crossing; null where dark.'),
-    firingAngleSpread_deg: z.number().nullable().describe('Latest less earliest first firing; null where dark.'),
-    conductionAngle_deg: z.number().nullable().describe('How long the triac conducts; null where dark.'),
-    polarityDifference_pct: z.number().describe('Modulation of energy between the two polarities: difference over sum.'),
-    variation_pct: z
-      .number()
-      .describe('Modulation of half-cycle energy within one polarity, (max - min) / (max + min), the larger of the two.'),
-    lampPower_W: z.number().describe('Mean power into all lamps.'),
-    rmsCurrent_mA: z.number().describe('R.m.s. line current of the dimmer.'),
-    peakCurrent_A: z.number().describe('Peak line current of the dimmer.'),
-    dcCurrent_mA: z.number().describe('Direct component of the line current.'),
-    diacStuck: z.boolean().describe('The diac stayed on, fed by the timing resistor beyond its holding current.'),
-  })
-  .meta({ id: 'DialRow', description: 'What one dial position does on one sweep.' });
+export const createdAtField = z.string().meta({ format: 'date-time', description: 'When it was computed, UTC.' });
+export const summaryField = z.string().describe('The verdict in one sentence.');
 
 export const evidence = z.object({
   grade: gradeField,
@@ -79,6 +44,7 @@ export const evidence = z.object({
         'over-load-rating',
         'under-load-rating',
       ]),
+      corner: cornerName.describe('The corner at which it holds.'),
       dial_pct: z.array(z.number()).min(2).max(2).nullable().describe('From and to on the dial; null where no position is meant.'),
       detail: z.string(),
     }),
@@ -90,8 +56,24 @@ export const evidence = z.object({
       outBelow_pct: z.number().nullable().describe('Lowest position still lit on the way down; null where it never lights.'),
     })
     .describe('A lamp that lights higher on the way up than it goes out on the way down pops on.'),
-  corners: z.array(z.object({ name: z.string(), grade: gradeField })).describe('The grade at each corner that was judged.'),
-  counters: z.object({ halfCycles: count, steps: count, events: count, modesBuilt: count }).describe('Work the simulation did.'),
+  corners: z.array(cornerResult).describe('The corners that were judged, nominal first. `dial` is the nominal one.'),
+  sparedCorners: z.array(cornerName).describe('Corners that could not have changed the grade any more.'),
+  decidedBy: cornerName.describe('The corner with the worst grade; nominal where none does worse.'),
+  wouldSettle: wouldSettle
+    .nullable()
+    .describe('What would settle an undetermined grade; null where it hinges on nothing that was assumed.'),
+  variants: z
+    .array(variantGrade)
+    .describe(
+      'The circuits that the lamps may have, where they are not known by their circuit, each judged; empty where there is only one.',
+    ),
+  lampClasses: z.array(foundClass).describe('Lamps known by their class: what was judged for them.'),
+  fits: z.array(foundFit).describe('Lamps given as a phase table: what was fitted to it.'),
+  lampCounts: lampCounts.nullable().describe('The grade for each count that `options.lampCount` asked for, else null.'),
+  remedies: remedies.nullable().describe('What `options.remedies` asked for, else null.'),
+  counters: z
+    .object({ halfCycles: count, steps: count, events: count, modesBuilt: count, stops: count, sparedStops: count })
+    .describe('Work the simulation did; a stop is one dial position of one sweep, spared where the grade was decided without it.'),
 });
 
 export const verdict = z

@@ -2,8 +2,8 @@
  * Judges a pairing that nobody waits for, on a thread that may die or hang over it: a deadline ends the thread, one more attempt is
  * made in a fresh one, and a second loss is an outcome. It never throws for what a pairing does to its thread.
  */
-import type { Judgement, JudgeOptions, Outcome, Pairing } from '../../model/index.ts';
-import type { BackgroundJudged, SimulationTask } from './simulation.ts';
+import type { AskedCircuit, AskedJudgement, AskedOptions } from './asked-circuit.ts';
+import type { BackgroundJudged, CircuitFailure, SimulationTask } from './simulation.ts';
 
 /** Runs one task on a free thread; aborting the signal ends that thread. Rejects where the thread was lost or the task threw. */
 export type RunOnThread = (task: SimulationTask, signal: AbortSignal) => Promise<unknown>;
@@ -14,8 +14,8 @@ const TICKS = 4;
 
 export async function judgeDespiteLosses(
   run: RunOnThread,
-  pairing: Pairing,
-  options: JudgeOptions,
+  pairing: AskedCircuit,
+  options: AskedOptions,
   deadline_ms: number,
 ): Promise<BackgroundJudged> {
   let detail = '';
@@ -30,12 +30,14 @@ export async function judgeDespiteLosses(
   return { ok: false, failure: { kind: 'thread-lost', detail, attempts: ATTEMPTS } };
 }
 
+type Outcome = { readonly ok: true; readonly value: AskedJudgement } | { readonly ok: false; readonly failure: CircuitFailure };
+
 type Attempt =
-  | { readonly lost: null; readonly outcome: Outcome<Judgement> }
+  | { readonly lost: null; readonly outcome: Outcome }
   /** why the thread gave no outcome */
   | { readonly lost: string };
 
-async function attemptOnce(run: RunOnThread, pairing: Pairing, options: JudgeOptions, deadline_ms: number): Promise<Attempt> {
+async function attemptOnce(run: RunOnThread, pairing: AskedCircuit, options: AskedOptions, deadline_ms: number): Promise<Attempt> {
   const begun = new Int32Array(new SharedArrayBuffer(Int32Array.BYTES_PER_ELEMENT));
   const ending = new AbortController();
   let ticks = 0;
@@ -46,7 +48,7 @@ async function attemptOnce(run: RunOnThread, pairing: Pairing, options: JudgeOpt
     if (ticks > TICKS) ending.abort();
   }, deadline_ms / TICKS);
   try {
-    return { lost: null, outcome: (await run({ kind: 'judge', pairing, options, begun }, ending.signal)) as Outcome<Judgement> };
+    return { lost: null, outcome: (await run({ kind: 'judge', pairing, options, begun }, ending.signal)) as Outcome };
   } catch (error) {
     if (ending.signal.aborted) return { lost: `the thread gave no answer within ${deadline_ms / 1000} s and was ended` };
     return { lost: error instanceof Error ? error.message : String(error) };

@@ -74,6 +74,8 @@ export function startSimulationPool({ threads, queueLimit, backgroundDeadline_s,
   return {
     judge: (pairing, options) => run({ kind: 'judge', pairing, options }),
     recordWaveforms: (pairing, dialPositions, place) => run({ kind: 'waveforms', pairing, dialPositions, place }),
+    boundRequirement: (pairing, options) => run({ kind: 'requirement', pairing, options }),
+    fitProfile: (question) => run({ kind: 'profile', question }),
     judgeInBackground: async (pairing, options) => {
       if (!(await lanes.enter('background'))) return { ok: false, failure: { kind: 'stopping' } };
       try {

@@ -1,14 +1,22 @@
 /** Entry of a worker thread: one task in, the model's outcome out. It holds no state and no database. */
 import { move, transferableSymbol, valueSymbol } from 'piscina';
-import { judgePairing, recordWaveforms } from '../../model/index.ts';
+import { recordWaveforms, requirementBoundary } from '../../model/index.ts';
+import { judgeAsked } from './asked-judging.ts';
+import { fitProfile } from './profile-fitting.ts';
 import type { SimulationTask } from './simulation.ts';
 
 export default function runTask(task: SimulationTask): unknown {
-  if (task.kind === 'judge') {
-    if (task.begun !== undefined) Atomics.store(task.begun, 0, 1);
-    return judgePairing(task.pairing, task.options);
+  switch (task.kind) {
+    case 'judge':
+      if (task.begun !== undefined) Atomics.store(task.begun, 0, 1);
+      return judgeAsked(task.pairing, task.options);
+    case 'waveforms':
+      return withColumnsMoved(recordWaveforms(task.pairing, task.dialPositions, task.place));
+    case 'requirement':
+      return requirementBoundary(task.pairing, task.options);
+    case 'profile':
+      return fitProfile(task.question);
   }
-  return withColumnsMoved(recordWaveforms(task.pairing, task.dialPositions, task.place));
 }
 
 /** Hands the columns' buffers over instead of copying them. */

@@ -1,9 +1,10 @@
 /**
- * What makes two questions the same: the judged pairing, defaults and options included, and the model version, as canonical JSON and
- * its SHA-256. The verdict's id is the head of that hash, so the same question has the same id on every installation.
+ * What makes two questions the same: the judged pairing, defaults and options included, which of its values were assumed, and the model
+ * version, as canonical JSON and its SHA-256. What was assumed counts because a grade that hinges on an assumed value is undetermined. The
+ * verdict's id is the head of that hash, so the same question has the same id on every installation.
  */
 import { createHash } from 'node:crypto';
-import type { JudgedPairing } from '../schemas/pairing.ts';
+import type { Completion } from './pairing-completion.ts';
 
 /** 104 bits: with a million verdicts, two share an id with a probability below 1e-19. */
 const ID_LENGTH = 26;
@@ -17,8 +18,9 @@ export function canonicalJson(value: unknown): string {
   );
 }
 
-export function fingerprintOf(pairing: JudgedPairing, modelVersion: string): string {
-  return createHash('sha256').update(canonicalJson({ modelVersion, pairing })).digest('hex');
+export function fingerprintOf({ pairing, assumptions }: Completion, modelVersion: string): string {
+  const assumed = assumptions.map(({ path }) => path).sort();
+  return createHash('sha256').update(canonicalJson({ assumed, modelVersion, pairing })).digest('hex');
 }
 
 export function verdictIdOf(fingerprint: string): string {

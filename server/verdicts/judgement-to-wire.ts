@@ -1,33 +1,102 @@
 /** Converts what the model says from SI to the wire's units and field names, and puts a whole verdict together. */
-import type { DialRow, Judgement, Waveforms } from '../../model/index.ts';
+import type { CornerResult, DialRow, PerPolarity, VariantGrade, Waveforms, WouldSettle } from '../../model/index.ts';
 import type { JudgedPairing } from '../schemas/pairing.ts';
 import type { Evidence, Verdict } from '../schemas/verdict.ts';
 import type { WaveformsAnswer } from '../schemas/verdict-calls.ts';
+import type { WouldSettleAnswer } from '../schemas/would-settle.ts';
+import type { AskedJudgement, FoundLamp } from '../simulation/asked-circuit.ts';
+import { candidateName } from '../simulation/possible-circuits.ts';
+import { assumedOnWire } from './assumed-values.ts';
 import { CAUTIONS } from './cautions.ts';
+import { withFitAssumptions } from './fit-assumptions.ts';
+import { fitToWire } from './lamp-to-wire.ts';
 import { MODEL_ASSUMPTIONS } from './model-assumptions.ts';
 import type { Assumption } from './pairing-completion.ts';
+import { lampCountsToWire, remediesToWire } from './remedies-to-wire.ts';
+import { percentOrNull, shown, shownOrNull } from './shown-figures.ts';
 
-/**
- * Seven significant digits and no less than a millionth of the wire's unit: finer than the model's accuracy, short enough to read, and
- * the rounding noise of a symmetrical circuit reads as the 0 it is.
- */
-function shown(value: number): number {
-  return Number(Number(value.toPrecision(7)).toFixed(6));
-}
-
-const shownOrNull = (value: number | null): number | null => (value === null ? null : shown(value));
-
-export function toWire(judgement: Judgement): Evidence {
-  const { popOn, counters } = judgement;
+/** `assumed`: wire paths of the values that were filled in */
+export function toWire(judgement: AskedJudgement, assumed: readonly string[]): Evidence {
+  const { popOn, counters, foundLamps, lampCounts, remedies, wouldSettle } = judgement;
+  const { halfCycles, steps, events, modesBuilt, stops, sparedStops } = counters;
   return {
     grade: judgement.grade,
     summary: judgement.summary,
     conditions: judgement.conditions.map(({ kind, position, detail }) => ({ kind, position_pct: position, detail })),
-    reasons: judgement.reasons.map(({ code, dial, detail }) => ({ code, dial_pct: dial === null ? null : [...dial], detail })),
+    reasons: judgement.reasons.map(({ code, dial, detail, corner }) => ({
+      code,
+      corner: corner ?? 'nominal',
+      dial_pct: dial === null ? null : [...dial],
+      detail,
+    })),
     dial: judgement.dial.map(rowToWire),
     popOn: { litFrom_pct: popOn.litFrom, outBelow_pct: popOn.outBelow },
-    corners: judgement.corners.map(({ name, grade }) => ({ name, grade })),
-    counters: { halfCycles: counters.halfCycles, steps: counters.steps, events: counters.events, modesBuilt: counters.modesBuilt },
+    corners: judgement.corners.map(cornerToWire),
+    sparedCorners: [...judgement.sparedCorners],
+    decidedBy: judgement.decidedBy,
+    wouldSettle: wouldSettle === null ? null : wouldSettleToWire(wouldSettle, assumed),
+    variants: judgement.variants.map(variantToWire),
+    lampClasses: foundLamps.flatMap(classToWire),
+    fits: foundLamps.flatMap((lamp) => (lamp.known === 'record' ? [{ path: lampPath(lamp), ...fitToWire(lamp) }] : [])),
+    lampCounts: lampCounts === null ? null : lampCountsToWire(lampCounts),
+    remedies: remedies === null ? null : remediesToWire(remedies),
+    counters: { halfCycles, steps, events, modesBuilt, stops, sparedStops },
+  };
+}
+
+const lampPath = ({ group }: FoundLamp): string => `lamps[${group}].lamp`;
+
+function cornerToWire({
+  name,
+  mainsVoltage,
+  latchingCurrent,
+  holdingCurrent,
+  grade,
+  lowestDial,
+}: CornerResult): Evidence['corners'][number] {
+  const milli = ({ positive, negative }: PerPolarity) => ({ positive: shown(positive * 1e3), negative: shown(negative * 1e3) });
+  return {
+    name,
+    mainsVoltage_V: shown(mainsVoltage),
+    latchingCurrent_mA: milli(latchingCurrent),
+    holdingCurrent_mA: milli(holdingCurrent),
+    grade,
+    lowestDial_pct: lowestDial,
+  };
+}
+
+function variantToWire({ name, grade, decidedBy, lowestDial, shown: isShown }: VariantGrade): Evidence['variants'][number] {
+  return { name, grade, decidedBy, lowestDial_pct: lowestDial, shown: isShown };
+}
+
+function classToWire(lamp: FoundLamp): Evidence['lampClasses'] {
+  if (lamp.known !== 'class') return [];
+  const { lampClass, spans, ask, candidates } = lamp;
+  const told = candidates.map(({ name, basis, power, powerFactor }) => ({
+    name: candidateName({ name, powerFactor }),
+    basis,
+    power_W: shown(power),
+    powerFactor: shown(powerFactor),
+  }));
+  return [{ path: lampPath(lamp), class: lampClass, spans, ask, candidates: told }];
+}
+
+function wouldSettleToWire(found: WouldSettle, assumed: readonly string[]): WouldSettleAnswer {
+  if (found.kind === 'circuit') return { kind: found.kind, ask: found.ask, detail: found.detail };
+  const { what, threshold, gradeBelow, gradeAbove, corner, measure, detail, alsoOpen } = found;
+  const { path, unit } = assumedOnWire(found.path, assumed) ?? { path: found.path, unit: 1 };
+  return {
+    kind: found.kind,
+    path,
+    what,
+    assumed: shown(found.assumed / unit),
+    threshold: { low: shown(threshold.low / unit), high: shown(threshold.high / unit) },
+    gradeBelow,
+    gradeAbove,
+    corner,
+    measure,
+    detail,
+    alsoOpen: alsoOpen.map((open) => assumedOnWire(open, assumed)?.path ?? open),
   };
 }
 
@@ -54,6 +123,12 @@ function rowToWire(row: DialRow): Evidence['dial'][number] {
     peakCurrent_A: shown(row.peakCurrent),
     dcCurrent_mA: shown(row.dcCurrent * 1e3),
     diacStuck: row.diacStuck,
+    margins: {
+      latching_pct: percentOrNull(row.margins.latching),
+      holding_pct: percentOrNull(row.margins.holding),
+      breakover_pct: percentOrNull(row.margins.breakover),
+    },
+    nearEdge: row.nearEdge,
   };
 }
 
@@ -64,11 +139,12 @@ export interface VerdictParts {
   readonly pairing: JudgedPairing;
   /** the defaults that were filled in; what the model takes for granted is added here */
   readonly assumptions: readonly Assumption[];
-  readonly judgement: Judgement;
+  readonly judgement: AskedJudgement;
 }
 
 export function verdictToWire(parts: VerdictParts): Verdict {
-  const { grade, summary, ...evidence } = toWire(parts.judgement);
+  const assumed = parts.assumptions.map(({ path }) => path);
+  const { grade, summary, ...evidence } = toWire(parts.judgement, assumed);
   return {
     id: parts.id,
     modelVersion: parts.modelVersion,
@@ -77,11 +153,13 @@ export function verdictToWire(parts: VerdictParts): Verdict {
     summary,
     ...evidence,
     pairing: parts.pairing,
-    assumptions: [...parts.assumptions, ...MODEL_ASSUMPTIONS].map(({ path, value, basis }) => ({
-      path,
-      value: typeof value === 'object' && value !== null ? [...value] : value,
-      basis,
-    })),
+    assumptions: [...withFitAssumptions(parts.assumptions, parts.judgement.foundLamps), ...MODEL_ASSUMPTIONS].map(
+      ({ path, value, basis }) => ({
+        path,
+        value: typeof value === 'object' && value !== null ? [...value] : value,
+        basis,
+      }),
+    ),
     cautions: [...CAUTIONS],
   };
 }

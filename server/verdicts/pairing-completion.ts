@@ -14,11 +14,15 @@ import {
   LAMP_INPUT_DEFAULTS,
   MAINS_DEFAULTS,
   OPTIONS_DEFAULTS,
+  PHASE_TABLE_DEFAULTS,
+  PHASE_TABLE_INPUT_DEFAULTS,
+  POWER_FACTOR_DEFAULT,
   RATED_DEFAULTS,
   RATINGS_DEFAULTS,
   RESERVOIR_DEFAULTS,
   SECOND_SECTION_DEFAULT,
   SNUBBER_DEFAULTS,
+  supplyBandDefaults,
   TIMED_DEFAULTS,
 } from './pairing-defaults.ts';
 
@@ -29,15 +33,12 @@ export interface Assumption {
   readonly basis: string;
 }
 
-export type Completion =
-  | { readonly ok: true; readonly pairing: JudgedPairing; readonly assumptions: readonly Assumption[] }
-  /** `paths` names the loads that are phase tables: those are valid, but cannot be simulated before they are fitted */
-  | { readonly ok: false; readonly failure: { readonly kind: 'phase-table-needs-fitting'; readonly paths: readonly string[] } };
+export interface Completion {
+  readonly pairing: JudgedPairing;
+  readonly assumptions: readonly Assumption[];
+}
 
 export function completePairing(asked: AskedPairing): Completion {
-  const paths = asked.lamps.flatMap(({ lamp }, index) => (lamp.load.kind === 'phase-table' ? [`lamps[${index}].lamp.load`] : []));
-  if (paths.length > 0) return { ok: false, failure: { kind: 'phase-table-needs-fitting', paths } };
-
   const assuming = fillingFor(asked.mains.voltage_V);
   const pairing: JudgedPairing = {
     mains: {
@@ -51,9 +52,9 @@ export function completePairing(asked: AskedPairing): Completion {
       lamp: completeLamp(lamp, `lamps[${index}].lamp`, asked.mains.voltage_V, assuming),
     })),
     addedLoad: asked.addedLoad ?? null,
-    options: completeOptions(asked.options, assuming),
+    options: completeOptions(asked, assuming),
   };
-  return { ok: true, pairing, assumptions: assuming.assumptions };
+  return { pairing, assumptions: assuming.assumptions };
 }
 
 type Settings = { readonly [field: string]: Default<unknown> };
@@ -110,11 +111,18 @@ function completeDrive(asked: AskedDimmer['drive'], { one, fill }: Pick<Filling,
 
 function completeLamp(asked: AskedLamp, path: string, mainsVoltage_V: number, { one, fill }: Filling): JudgedLamp {
   const { load } = asked;
-  if (load.kind === 'phase-table') throw new Error('A phase table has no completion: the caller refuses it.');
-  const isRated = load.kind === 'resistive' && load.resistance_Ohm === undefined;
+  const isRated = load.kind === 'class' || (load.kind === 'resistive' && load.resistance_Ohm === undefined);
   const rated = fill(path, { ...RATED_DEFAULTS, ...(isRated ? ratedAt(mainsVoltage_V) : {}) }, asked);
-
+  if (load.kind === 'class') {
+    const { ratedPower_W } = rated;
+    if (ratedPower_W === null) throw new Error('A lamp known by its class has a rated power: the schema asks for it.');
+    return { ...rated, ratedPower_W, powerFactor: one(`${path}.powerFactor`, POWER_FACTOR_DEFAULT, asked.powerFactor), load };
+  }
   const inputPath = `${path}.input`;
+  if (load.kind === 'phase-table') {
+    const { minimumVoltage_V } = fill(`${path}.load`, PHASE_TABLE_DEFAULTS, load);
+    return { ...rated, load: { ...load, minimumVoltage_V }, input: fill(inputPath, PHASE_TABLE_INPUT_DEFAULTS, asked.input) };
+  }
   const input = fill(inputPath, LAMP_INPUT_DEFAULTS[load.kind], asked.input);
   return {
     ...rated,
@@ -130,14 +138,15 @@ function ratedAt(mainsVoltage_V: number): { readonly ratedVoltage_V: Default<num
   return { ratedVoltage_V: { at230: mainsVoltage_V, at120: mainsVoltage_V, basis: 'taken as rated for the mains voltage' } };
 }
 
-type SimulatedLoad = Exclude<AskedLamp['load'], { kind: 'phase-table' }>;
+type CircuitLoad = Exclude<AskedLamp['load'], { kind: 'phase-table' | 'class' }>;
+type JudgedCircuit = Extract<JudgedLamp, { input: { capacitance_nF: number } }>;
 
 function completeLoad(
-  load: SimulatedLoad,
+  load: CircuitLoad,
   rated: { readonly ratedPower_W: number | null; readonly ratedVoltage_V: number | null },
   path: string,
   { one, fill }: Pick<Filling, 'one' | 'fill'>,
-): JudgedLamp['load'] {
+): JudgedCircuit['load'] {
   switch (load.kind) {
     case 'iv-table':
       return load;
@@ -152,9 +161,17 @@ function completeLoad(
   }
 }
 
-function completeOptions(asked: AskedPairing['options'], { fill }: Filling): JudgedPairing['options'] {
-  const { dialPositions_pct, ...others } = fill('options', OPTIONS_DEFAULTS, asked);
-  return { dialPositions_pct: [...dialPositions_pct], ...others };
+function completeOptions({ options, mains }: AskedPairing, { fill }: Filling): JudgedPairing['options'] {
+  const { dialPositions_pct, ...others } = fill('options', OPTIONS_DEFAULTS, options);
+  const band = supplyBandDefaults({ voltage: mains.voltage_V, frequency: mains.frequency_Hz });
+  return {
+    dialPositions_pct: [...dialPositions_pct],
+    ...others,
+    supplyBand: fill('options.supplyBand', band, options?.supplyBand),
+    // what is asked for beside the grade changes nothing that is taken for granted, so neither is listed
+    lampCount: options?.lampCount ? { ...options.lampCount, group: options.lampCount.group ?? 0 } : null,
+    remedies: options?.remedies ?? false,
+  };
 }
 
 type Current = AskedDimmer['latchingCurrent_mA'];

@@ -2,7 +2,7 @@
  * Every default a pairing is completed with, in wire units, each with the ground it stands on. The OpenAPI document's field texts and
  * a verdict's `assumptions` both come from here, so that neither can say anything else than what is filled in.
  */
-import { DROP_OUT_ANGLE } from '../../model/index.ts';
+import { DROP_OUT_ANGLE, type Mains, supplyBand } from '../../model/index.ts';
 
 export interface Default<T> {
   /** for supplies of 180 V and more, and for those below */
@@ -98,6 +98,7 @@ export const TIMED_DEFAULTS = {
 } satisfies Settings;
 
 const NO_INPUT_PART = {
+  seriesCapacitance_nF: always(0, 'taken as having none'),
   inductance_mH: always(0, 'taken as having none'),
   damper: always(null, 'taken as having none'),
   bleeder: always(null, 'taken as having none'),
@@ -136,6 +137,20 @@ export const RESERVOIR_DEFAULTS = {
   minimumVoltage_V: { at230: 50, at120: 25, basis: 'converters stop at a fraction of the mains peak, from memory' },
 } satisfies Settings;
 
+/** What an undimmed record cannot tell of the lamp it is of. */
+export const PHASE_TABLE_DEFAULTS = {
+  minimumVoltage_V: RESERVOIR_DEFAULTS.minimumVoltage_V,
+} satisfies Settings;
+
+export const PHASE_TABLE_INPUT_DEFAULTS = {
+  seriesResistance_Ohm: LAMP_INPUT_DEFAULTS['iv-table'].seriesResistance_Ohm,
+} satisfies Settings;
+
+/** Ohm; ends of the usual range of a lamp's series resistor, which a recorded reservoir lamp is also fitted with where it was not given */
+export const SERIES_RESISTANCE_RANGE: Default<readonly [number, number]> = { at230: [10, 47], at120: [4.7, 22], basis: GENERIC };
+
+export const POWER_FACTOR_DEFAULT = always<number | null>(null, 'not stated: every circuit of the class is judged');
+
 export const RATED_DEFAULTS = {
   ratedPower_W: always<number | null>(null, 'not stated'),
   ratedVoltage_V: always<number | null>(null, 'not stated'),
@@ -149,3 +164,10 @@ export const OPTIONS_DEFAULTS = {
   dropOutAngle_deg: always(DROP_OUT_ANGLE, 'our choice, the model says why'),
   corners: always<'all' | 'nominal'>('all', 'a verdict at nominal mains alone says less'),
 } satisfies Settings;
+
+/** %, of the nominal voltage */
+export function supplyBandDefaults(mains: Pick<Mains, 'voltage' | 'frequency'>) {
+  const { low, high, source } = supplyBand({ ...mains, sourceResistance: 0 });
+  const percent = (share: number): number => Number((100 * share).toPrecision(6));
+  return { low_pct: always(percent(low), source), high_pct: always(percent(high), source) } satisfies Settings;
+}

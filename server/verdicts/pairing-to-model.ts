@@ -5,6 +5,10 @@
 import type * as model from '../../model/index.ts';
 import type { JudgedDimmer, JudgedLamp, JudgedPairing } from '../schemas/pairing.ts';
 import { POLARITIES, readPolarity } from '../schemas/polarity.ts';
+import type { AskedCircuit, AskedGroup, AskedOptions } from '../simulation/asked-circuit.ts';
+import { assumedInModel } from './assumed-values.ts';
+import type { Completion } from './pairing-completion.ts';
+import { defaultFor, SERIES_RESISTANCE_RANGE } from './pairing-defaults.ts';
 
 // Dividing by a power of ten rounds once, where multiplying by 1e-3 and its like would round twice: 35 mA is 0.035 A to the last bit.
 const milli = (value: number): number => value / 1e3;
@@ -13,16 +17,69 @@ const nano = (value: number): number => value / 1e9;
 const kilo = (value: number): number => value * 1e3;
 const orNull = (value: number | null, convert: (value: number) => number): number | null => (value === null ? null : convert(value));
 
-export function toModel(pairing: JudgedPairing): { readonly pairing: model.Pairing; readonly options: model.JudgeOptions } {
-  const { mains, dimmer, lamps, addedLoad, options } = pairing;
+export interface ModelQuestion {
+  readonly pairing: AskedCircuit;
+  readonly options: AskedOptions;
+}
+
+export function toModel({ pairing: judged, assumptions }: Completion): ModelQuestion {
+  const { mains, dimmer, lamps, addedLoad, options } = judged;
+  const assumed = assumptions.map(({ path }) => path);
   return {
     pairing: {
       mains: { voltage: mains.voltage_V, frequency: mains.frequency_Hz, sourceResistance: mains.sourceResistance_Ohm },
       dimmer: dimmerToModel(dimmer),
-      lamps: lamps.map(({ count, lamp }) => ({ count, lamp: lampToModel(lamp) })),
+      lamps: lamps.map(({ count, lamp }, group) => ({
+        count,
+        ...knownLamp(lamp, mains, assumed.includes(`lamps[${group}].lamp.input.seriesResistance_Ohm`)),
+      })),
       addedLoad: addedLoad === null ? null : shuntToModel(addedLoad),
     },
-    options: { dialPositions: options.dialPositions_pct, corners: options.corners, dropOutAngle: options.dropOutAngle_deg },
+    options: {
+      dialPositions: options.dialPositions_pct,
+      corners: options.corners,
+      dropOutAngle: options.dropOutAngle_deg,
+      supplyBand: { low: options.supplyBand.low_pct / 100, high: options.supplyBand.high_pct / 100, source: 'as asked' },
+      assumed: assumedInModel(assumed),
+      lampCount: options.lampCount,
+      remedies: options.remedies,
+    },
+  };
+}
+
+type OneOf<T> = T extends unknown ? Omit<T, 'count'> : never;
+
+function knownLamp(lamp: JudgedLamp, mains: JudgedPairing['mains'], isSeriesAssumed: boolean): OneOf<AskedGroup> {
+  const sine = { voltage: lamp.ratedVoltage_V ?? mains.voltage_V, frequency: mains.frequency_Hz };
+  if ('powerFactor' in lamp) {
+    const { ratedPower_W: power, powerFactor, load } = lamp;
+    return { known: 'class', of: { lampClass: load.class, power, powerFactor, ...sine } };
+  }
+  if (!isRecorded(lamp)) return { known: 'circuit', lamp: lampToModel(lamp) };
+  const { load, input, ratedPower_W } = lamp;
+  return {
+    known: 'record',
+    table: tableToModel(load),
+    ground: { seriesResistance: input.seriesResistance_Ohm, minimumVoltage: load.minimumVoltage_V, ratedPower: ratedPower_W },
+    seriesRange: isSeriesAssumed ? defaultFor(SERIES_RESISTANCE_RANGE, mains.voltage_V) : null,
+  };
+}
+
+type RecordedLamp = Extract<JudgedLamp, { load: { kind: 'phase-table' } }>;
+type CircuitLamp = Extract<JudgedLamp, { input: { capacitance_nF: number } }>;
+
+// the union has no discriminant at its own level
+const isRecorded = (lamp: RecordedLamp | CircuitLamp): lamp is RecordedLamp => lamp.load.kind === 'phase-table';
+
+export function tableToModel({
+  voltage_V,
+  frequency_Hz,
+  points,
+}: Omit<RecordedLamp['load'], 'kind' | 'minimumVoltage_V'>): model.PhaseTable {
+  return {
+    voltage: voltage_V,
+    frequency: frequency_Hz,
+    points: points.map(({ phase_deg, current_mA }) => ({ phase: phase_deg, current: milli(current_mA) })),
   };
 }
 
@@ -84,12 +141,12 @@ function driveToModel(drive: JudgedDimmer['drive']): model.Dimmer['drive'] {
   };
 }
 
-function lampToModel({ ratedPower_W, input, load }: JudgedLamp): model.Lamp {
+function lampToModel({ ratedPower_W, input, load }: CircuitLamp): model.Lamp {
   return {
     ratedPower: ratedPower_W,
     input: {
       seriesResistance: input.seriesResistance_Ohm,
-      seriesCapacitance: 0,
+      seriesCapacitance: nano(input.seriesCapacitance_nF),
       inductance: milli(input.inductance_mH),
       inductorLoss: orNull(input.inductorLoss_kOhm, kilo),
       capacitance: nano(input.capacitance_nF),
@@ -100,7 +157,7 @@ function lampToModel({ ratedPower_W, input, load }: JudgedLamp): model.Lamp {
   };
 }
 
-function loadToModel(load: JudgedLamp['load']): model.Load {
+function loadToModel(load: CircuitLamp['load']): model.Load {
   switch (load.kind) {
     case 'resistive':
       return { kind: 'resistive', resistance: load.resistance_Ohm };
@@ -121,7 +178,7 @@ function loadToModel(load: JudgedLamp['load']): model.Load {
   }
 }
 
-function bleederToModel(bleeder: JudgedLamp['input']['bleeder']): model.Bleeder | null {
+function bleederToModel(bleeder: CircuitLamp['input']['bleeder']): model.Bleeder | null {
   if (bleeder === null) return null;
   if (bleeder.kind !== 'active') return shuntToModel(bleeder);
   return bleeder.current_mA === 0 ? null : { kind: 'active', current: milli(bleeder.current_mA), below: bleeder.below_V };

@@ -1,13 +1,17 @@
 /** Reads a stored verdict back: whole, or the fields that were asked for. */
 import type { VerdictRow } from '../../db/verdicts.ts';
-import type { Judgement } from '../../model/index.ts';
 import type { JudgedPairing } from '../schemas/pairing.ts';
 import type { Verdict } from '../schemas/verdict.ts';
+import type { AskedJudgement } from '../simulation/asked-circuit.ts';
 import { verdictToWire } from './judgement-to-wire.ts';
-import type { Assumption } from './pairing-completion.ts';
+import type { Assumption, Completion } from './pairing-completion.ts';
 
-export function storedPairing(row: VerdictRow): JudgedPairing {
-  return JSON.parse(row.pairing) as JudgedPairing;
+export function storedQuestion(row: VerdictRow): Completion {
+  return { pairing: JSON.parse(row.pairing) as JudgedPairing, assumptions: JSON.parse(row.assumptions) as Assumption[] };
+}
+
+export function storedJudgement(row: VerdictRow): AskedJudgement {
+  return JSON.parse(row.judgement) as AskedJudgement;
 }
 
 export function storedVerdict(row: VerdictRow): Verdict {
@@ -15,9 +19,8 @@ export function storedVerdict(row: VerdictRow): Verdict {
     id: row.id,
     modelVersion: row.model_version,
     createdAt: row.created_at,
-    pairing: storedPairing(row),
-    assumptions: JSON.parse(row.assumptions) as Assumption[],
-    judgement: JSON.parse(row.judgement) as Judgement,
+    ...storedQuestion(row),
+    judgement: storedJudgement(row),
   });
 }
 

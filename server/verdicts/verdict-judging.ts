@@ -3,12 +3,13 @@
  * same question asked again while it is being judged waits for the one simulation.
  */
 import type { VerdictRow, VerdictStore } from '../../db/verdicts.ts';
-import { type Judgement, MODEL_VERSION } from '../../model/index.ts';
-import type { AskedPairing, JudgedPairing } from '../schemas/pairing.ts';
+import { MODEL_VERSION } from '../../model/index.ts';
+import type { AskedPairing } from '../schemas/pairing.ts';
 import type { Verdict } from '../schemas/verdict.ts';
+import type { AskedJudgement } from '../simulation/asked-circuit.ts';
 import type { Simulation, SimulationFailure } from '../simulation/simulation.ts';
 import { canonicalJson, fingerprintOf, verdictIdOf } from './canonical-inputs.ts';
-import { type Assumption, type Completion, completePairing } from './pairing-completion.ts';
+import { type Completion, completePairing } from './pairing-completion.ts';
 import { toModel } from './pairing-to-model.ts';
 import { recordedJudgement } from './recorded-judgement.ts';
 import { storedVerdict } from './stored-verdicts.ts';
@@ -19,14 +20,12 @@ export interface JudgingDependencies {
   readonly now: () => Date;
 }
 
-export type JudgingFailure = SimulationFailure | Extract<Completion, { ok: false }>['failure'];
-
 /** where the verdict came from: simulated for this call, simulated for another that asked the same meanwhile, or stored before */
 export type VerdictSource = 'computed' | 'shared' | 'stored';
 
 export type JudgingResult =
   | { readonly ok: true; readonly verdict: Verdict; readonly source: VerdictSource; readonly halfCycles: number }
-  | { readonly ok: false; readonly failure: JudgingFailure };
+  | { readonly ok: false; readonly failure: SimulationFailure };
 
 type Judged =
   | { readonly ok: true; readonly row: VerdictRow; readonly stored: boolean }
@@ -37,19 +36,16 @@ export type JudgeVerdict = (asked: AskedPairing) => Promise<JudgingResult>;
 export function verdictJudging({ simulation, verdicts, now }: JudgingDependencies): JudgeVerdict {
   const underWay = new Map<string, Promise<Judged>>();
 
-  const simulateAndStore = async (fingerprint: string, pairing: JudgedPairing, assumptions: readonly Assumption[]): Promise<Judged> => {
-    const { pairing: modelPairing, options } = toModel(pairing);
-    const simulated = await simulation.judge(modelPairing, options);
+  const simulateAndStore = async (fingerprint: string, completion: Completion): Promise<Judged> => {
+    const { pairing, options } = toModel(completion);
+    const simulated = await simulation.judge(pairing, options);
     if (!simulated.ok) return simulated;
-    const row = verdictRowOf(fingerprint, pairing, assumptions, simulated.value, now());
-    return { ok: true, ...verdicts.insertOnce(row) };
+    return { ok: true, ...verdicts.insertOnce(verdictRowOf(fingerprint, completion, simulated.value, now())) };
   };
 
   return async (asked) => {
     const completion = completePairing(asked);
-    if (!completion.ok) return completion;
-    const { pairing, assumptions } = completion;
-    const fingerprint = fingerprintOf(pairing, MODEL_VERSION);
+    const fingerprint = fingerprintOf(completion, MODEL_VERSION);
 
     const known = verdicts.findByFingerprint(fingerprint);
     if (known !== undefined) return answer(known, 'stored');
@@ -61,7 +57,7 @@ export function verdictJudging({ simulation, verdicts, now }: JudgingDependencie
     }
 
     // Not tied to the request that asked: others may wait for it, and what is computed is worth storing.
-    const judging = simulateAndStore(fingerprint, pairing, assumptions).finally(() => underWay.delete(fingerprint));
+    const judging = simulateAndStore(fingerprint, completion).finally(() => underWay.delete(fingerprint));
     underWay.set(fingerprint, judging);
     const judged = await judging;
     // Another process on the same record may have stored it first.
@@ -76,9 +72,8 @@ function answer(row: VerdictRow, source: VerdictSource): JudgingResult {
 
 export function verdictRowOf(
   fingerprint: string,
-  pairing: JudgedPairing,
-  assumptions: readonly Assumption[],
-  judgement: Judgement,
+  { pairing, assumptions }: Completion,
+  judgement: AskedJudgement,
   createdAt: Date,
 ): VerdictRow {
   return {

@@ -2,10 +2,11 @@
 import type { VerdictStore } from '../../db/verdicts.ts';
 import { MODEL_VERSION, type Sweep } from '../../model/index.ts';
 import type { WaveformsAnswer } from '../schemas/verdict-calls.ts';
+import { shownPairing } from '../simulation/asked-circuit.ts';
 import type { Simulation, SimulationFailure } from '../simulation/simulation.ts';
 import { waveformsToWire } from './judgement-to-wire.ts';
 import { toModel } from './pairing-to-model.ts';
-import { storedPairing } from './stored-verdicts.ts';
+import { storedJudgement, storedQuestion } from './stored-verdicts.ts';
 
 export interface WaveformQuestion {
   readonly id: string;
@@ -28,7 +29,7 @@ export async function verdictWaveforms(
 ): Promise<WaveformsResult> {
   const row = verdicts.findById(id);
   if (row === undefined) return { ok: false, failure: { kind: 'verdict-not-found' } };
-  const { pairing, options } = toModel(storedPairing(row));
+  const { pairing, options } = toModel(storedQuestion(row));
 
   const positions = options.dialPositions;
   if (!positions.includes(dial_pct)) {
@@ -40,7 +41,10 @@ export async function verdictWaveforms(
     return { ok: false, failure: { kind: 'not-judged-there', path: 'sweep', message } };
   }
 
-  const recorded = await simulation.recordWaveforms(pairing, positions, { sweep, position: dial_pct });
+  const recorded = await simulation.recordWaveforms(shownPairing(pairing, storedJudgement(row).foundLamps), positions, {
+    sweep,
+    position: dial_pct,
+  });
   if (!recorded.ok) return recorded;
   return { ok: true, waveforms: { verdictId: id, modelVersion: MODEL_VERSION, ...waveformsToWire(recorded.value) } };
 }

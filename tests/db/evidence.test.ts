@@ -1,8 +1,8 @@
 import fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
 import { inColumns, inRows, readEvidence, writeEvidence } from '../../db/evidence.ts';
-import { judgePairing } from '../../model/index.ts';
 import { askedPairing } from '../../server/schemas/pairing.ts';
+import { judgeAsked } from '../../server/simulation/asked-judging.ts';
 import { canonicalJson } from '../../server/verdicts/canonical-inputs.ts';
 import { toWire } from '../../server/verdicts/judgement-to-wire.ts';
 import { completePairing } from '../../server/verdicts/pairing-completion.ts';
@@ -12,9 +12,8 @@ import { examplePairing } from '../support/server-pairings.ts';
 
 function realVerdict() {
   const completion = completePairing(askedPairing.parse(examplePairing()));
-  if (!completion.ok) throw new Error('It was to be completed.');
-  const { pairing, options } = toModel(completion.pairing);
-  const outcome = judgePairing(pairing, options);
+  const { pairing, options } = toModel(completion);
+  const outcome = judgeAsked(pairing, options);
   if (!outcome.ok) throw new Error('It was to be judged.');
   return { completion, judgement: outcome.value };
 }
@@ -78,9 +77,10 @@ describe('evidence', () => {
   });
 
   it('rounds nothing that an answer shows: from the record and straight from the model it is the same', () => {
-    const { judgement } = realVerdict();
+    const { judgement, completion } = realVerdict();
+    const assumed = completion.assumptions.map(({ path }) => path);
     // As text, as it is sent: JSON has no -0.
-    expect(JSON.stringify(toWire(recordedJudgement(judgement)))).toBe(JSON.stringify(toWire(judgement)));
+    expect(JSON.stringify(toWire(recordedJudgement(judgement), assumed))).toBe(JSON.stringify(toWire(judgement, assumed)));
   });
 
   it('in the encoding of the migration is read too, and in an unknown one is refused', () => {

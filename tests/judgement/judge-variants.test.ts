@@ -16,9 +16,9 @@ describe('judging lamps of which only the class is known', () => {
   it('is undetermined where the class spreads over both outcomes, and says which circuits do and what to ask for', () => {
     const { grade, wouldSettle, variants, conditions, summary } = judged(runs, fails);
     expect(grade).toBe('undetermined');
-    expect(variants.map((v) => [v.name, v.grade])).toEqual([
-      ['early', 'suitable'],
-      ['late', 'unsuitable'],
+    expect(variants.map((v) => [v.name, v.grade, v.shown])).toEqual([
+      ['early', 'suitable', false],
+      ['late', 'unsuitable', true],
     ]);
     expect(wouldSettle).toMatchObject({ kind: 'circuit', ask: 'its input circuit' });
     expect(conditions).toEqual([]);

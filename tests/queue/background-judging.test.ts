@@ -1,7 +1,7 @@
 import { join } from 'node:path';
 import { describe, expect, it, onTestFinished } from 'vitest';
-import { judgePairing } from '../../model/index.ts';
 import { askedPairing } from '../../server/schemas/pairing.ts';
+import { judgeAsked } from '../../server/simulation/asked-judging.ts';
 import { startSimulationPool } from '../../server/simulation/simulation-pool.ts';
 import { completePairing } from '../../server/verdicts/pairing-completion.ts';
 import { toModel } from '../../server/verdicts/pairing-to-model.ts';
@@ -20,15 +20,14 @@ function losingPool(backgroundDeadline_s = 60) {
 
 function at(frequency_Hz: number) {
   const completion = completePairing(askedPairing.parse({ ...briefPairing(), mains: { voltage_V: 230, frequency_Hz } }));
-  if (!completion.ok) throw new Error('It was to be completed.');
-  return toModel(completion.pairing);
+  return toModel(completion);
 }
 
 describe('a background judgement', () => {
   it('gives what the model gives, and how long it took', async () => {
     const { pairing, options } = at(50);
     const judged = await losingPool().judgeInBackground(pairing, options);
-    expect(judged).toEqual({ ...judgePairing(pairing, options), took_ms: expect.any(Number) });
+    expect(judged).toEqual({ ...judgeAsked(pairing, options), took_ms: expect.any(Number) });
   });
 
   it('is repeated once in a fresh thread where its thread died', async () => {

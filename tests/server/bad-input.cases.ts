@@ -151,9 +151,9 @@ export const BAD_INPUT_CASES: readonly BadInputCase[] = [
   },
   {
     title: 'a load of no known kind',
-    breakIt: (p) => load(p, { kind: 'class', class: 'linear' }),
+    breakIt: (p) => load(p, { kind: 'drawing', class: 'linear-string' }),
     path: `${LOAD}.kind`,
-    says: /"resistive", "iv-table", "reservoir", "phase-table"/,
+    says: /"resistive", "iv-table", "reservoir", "phase-table", "class"/,
   },
   { title: 'a drive without a kind', breakIt: (p) => drive(p, { residual_V: 10 }), path: 'dimmer.drive.kind', says: /"diac", "timed"/ },
   {
@@ -398,6 +398,74 @@ export const BAD_INPUT_CASES: readonly BadInputCase[] = [
     breakIt: (p) => load(p, phaseTable(steps(91, 1))),
     path: `${LOAD}.points`,
     says: /cover a half-cycle: these points span 90 deg/,
+  },
+  {
+    title: 'a phase table with a gap in it that its mean step would hide',
+    breakIt: (p) => load(p, phaseTable([...steps(89, 2), 177])),
+    path: `${LOAD}.points`,
+    says: /these points span 177 deg, 180 are needed/,
+  },
+  {
+    title: 'a class without a rated power',
+    breakIt: (p) => {
+      p.lamps[0].lamp = { load: { kind: 'class', class: 'linear-string' } };
+    },
+    path: 'lamps[0].lamp.ratedPower_W',
+    says: /is missing: a class says/,
+  },
+  {
+    title: 'an unknown class',
+    breakIt: (p) => {
+      p.lamps[0].lamp = { ratedPower_W: 8, load: { kind: 'class', class: 'driver' } };
+    },
+    path: `${LOAD}.class`,
+    says: /"reservoir-driver"/,
+  },
+  {
+    title: 'an input beside a class',
+    breakIt: (p) => {
+      p.lamps[0].lamp.load = { kind: 'class', class: 'linear-string' };
+    },
+    path: 'lamps[0].lamp.input',
+    says: /must be absent/,
+  },
+  {
+    title: 'a power factor of a lamp given by its circuit',
+    breakIt: (p) => {
+      p.lamps[0].lamp.powerFactor = 0.9;
+    },
+    path: 'lamps[0].lamp.powerFactor',
+    says: /only where the load is a class/,
+  },
+  {
+    title: 'a power factor of 0',
+    breakIt: (p) => {
+      p.lamps[0].lamp = { ratedPower_W: 8, powerFactor: 0, load: { kind: 'class', class: 'linear-string' } };
+    },
+    path: 'lamps[0].lamp.powerFactor',
+    says: /above 0, up to 1/,
+  },
+  {
+    title: 'an input capacitor beside a phase table, which shows it',
+    breakIt: (p) => load(p, phaseTable(steps(180, 1))),
+    path: 'lamps[0].lamp.input.capacitance_nF',
+    says: /must be absent/,
+  },
+  {
+    title: 'more counts than are judged at once',
+    breakIt: (p) => {
+      p.options = { lampCount: { from: 1, to: 61 } };
+    },
+    path: 'options.lampCount.to',
+    says: /from 1 \(`from`\) to 60/,
+  },
+  {
+    title: 'a supply band the wrong way round',
+    breakIt: (p) => {
+      p.options = { supplyBand: { low_pct: 110 } };
+    },
+    path: 'options.supplyBand.low_pct',
+    says: /50 to 100/,
   },
   {
     title: 'a phase table one sample too short',

@@ -106,19 +106,37 @@ describe('a bad question', () => {
     expect([answer.statusCode, answer.json().type]).toEqual([400, 'urn:holdfast:problem:invalid-request']);
   });
 
-  it('that holds a valid phase table is answered with 422, which says that fitting is not in yet', async () => {
+  it('with a record that no lamp fits is answered with 422, with the residual and the reason', async () => {
     const { post, verdicts } = await testApp();
     const pairing = examplePairing();
-    const points = Array.from({ length: 180 }, (_, phase_deg) => ({ phase_deg, current_mA: phase_deg }));
-    pairing.lamps[0].lamp.load = { kind: 'phase-table', voltage_V: 230, frequency_Hz: 50, points };
+    // current only while the voltage falls towards its zero crossing: neither a curve of the voltage nor a reservoir
+    const points = Array.from({ length: 180 }, (_, phase_deg) => ({ phase_deg, current_mA: phase_deg > 120 ? 40 : 0 }));
+    pairing.lamps[0].lamp = { load: { kind: 'phase-table', voltage_V: 230, frequency_Hz: 50, points } };
     const answer = await post(pairing);
     expect(answer.statusCode).toBe(422);
-    expect(answer.json()).toMatchObject({
-      type: 'urn:holdfast:problem:phase-table-needs-fitting',
-      detail: expect.stringMatching(/does not fit phase tables/),
-      issues: [{ path: 'lamps[0].lamp.load', message: expect.stringMatching(/iv-table/) }],
+    const problem = answer.json();
+    expect(problem).toMatchObject({
+      type: 'urn:holdfast:problem:profile-not-fitted',
+      limit_pct: 15,
+      issues: [{ path: 'lamps[0].lamp.load', message: problem.detail }],
     });
+    expect(problem.residual_pct).toBeGreaterThan(15);
     expect(verdicts.count()).toBe(0);
+  });
+
+  it('with a class of which no circuit has the stated power factor is answered with 422, with those that it has', async () => {
+    const { post } = await testApp();
+    const pairing = examplePairing();
+    pairing.lamps[0].lamp = { ratedPower_W: 8, powerFactor: 0.99, load: { kind: 'class', class: 'reservoir-driver' } };
+    const problem = (await post(pairing)).json();
+    expect(problem).toMatchObject({
+      type: 'urn:holdfast:problem:class-does-not-fit',
+      status: 422,
+      issues: [{ path: 'lamps[0].lamp', message: problem.detail }],
+    });
+    const [least, most] = problem.powerFactors;
+    expect(least).toBeGreaterThan(0.2);
+    expect(most).toBeLessThan(0.9);
   });
 });
 

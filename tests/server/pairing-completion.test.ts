@@ -1,5 +1,6 @@
 import { describe, expect, it } from 'vitest';
-import { BRIDGE_DROP, LINE_LEAKAGE } from '../../model/tolerances.ts';
+import { COLD_FACTOR } from '../../model/index.ts';
+import { BRIDGE_DROP, DROPPER_DISCHARGE, LINE_LEAKAGE } from '../../model/tolerances.ts';
 import { askedPairing, judgedPairing } from '../../server/schemas/pairing.ts';
 import { canonicalJson, fingerprintOf, verdictIdOf } from '../../server/verdicts/canonical-inputs.ts';
 import { MODEL_ASSUMPTIONS } from '../../server/verdicts/model-assumptions.ts';
@@ -7,9 +8,7 @@ import { completePairing } from '../../server/verdicts/pairing-completion.ts';
 import { briefPairing, examplePairing, fullPairing, type Loose } from '../support/server-pairings.ts';
 
 function complete(pairing: Loose) {
-  const completion = completePairing(askedPairing.parse(pairing));
-  if (!completion.ok) throw new Error('It was to be completed.');
-  return completion;
+  return completePairing(askedPairing.parse(pairing));
 }
 
 function with120V(pairing: Loose): Loose {
@@ -78,12 +77,15 @@ describe('completing a pairing', () => {
       const { drive } = complete(pairing).pairing.dimmer;
       return drive.kind === 'diac' ? [drive.fixedResistance_kOhm, drive.potentiometer_kOhm] : [];
     };
-    expect(values(examplePairing())).toEqual([6.8, 330]);
-    expect(values(with120V(examplePairing()))).toEqual([3.3, 150]);
+    expect(values(examplePairing())).toEqual([22, 330]);
+    expect(values(with120V(examplePairing()))).toEqual([10, 150]);
   });
 
   it('takes an input that suits the kind of load', () => {
-    const input = (pairing: Loose) => complete(pairing).pairing.lamps[0]?.lamp.input;
+    const input = (pairing: Loose) => {
+      const lamp = complete(pairing).pairing.lamps[0]?.lamp;
+      return lamp !== undefined && 'input' in lamp ? lamp.input : undefined;
+    };
     const withoutInput = examplePairing();
     delete withoutInput.lamps[0].lamp.input;
     expect(input(withoutInput)).toMatchObject({ seriesResistance_Ohm: 22, capacitance_nF: 47, inductance_mH: 0, inductorLoss_kOhm: null });
@@ -128,14 +130,43 @@ describe('completing a pairing', () => {
     expect(complete(examplePairing()).pairing.dimmer.snubber).toEqual({ resistance_Ohm: 100, capacitance_nF: 33 });
   });
 
-  it('refuses to complete a phase table, and says where it is', () => {
-    const pairing = examplePairing();
+  it('fills in of a recorded lamp what no record shows, and of a lamp known by its class its rated voltage', () => {
     const points = Array.from({ length: 360 }, (_, phase_deg) => ({ phase_deg, current_mA: 1 }));
-    pairing.lamps.push({ count: 1, lamp: { load: { kind: 'phase-table', voltage_V: 230, frequency_Hz: 50, points } } });
-    expect(completePairing(askedPairing.parse(pairing))).toEqual({
-      ok: false,
-      failure: { kind: 'phase-table-needs-fitting', paths: ['lamps[1].lamp.load'] },
+    const pairing = Object.assign(examplePairing(), {
+      lamps: [
+        { count: 1, lamp: { load: { kind: 'phase-table', voltage_V: 230, frequency_Hz: 50, points } } },
+        { count: 1, lamp: { ratedPower_W: 8, load: { kind: 'class', class: 'linear-string' } } },
+      ],
     });
+    const { pairing: judged, assumptions } = complete(pairing);
+    expect(judged.lamps[0]?.lamp).toMatchObject({ load: { minimumVoltage_V: 50, points }, input: { seriesResistance_Ohm: 22 } });
+    expect(judged.lamps[1]?.lamp).toEqual({
+      ratedPower_W: 8,
+      ratedVoltage_V: 230,
+      powerFactor: null,
+      load: { kind: 'class', class: 'linear-string' },
+    });
+    expect(assumptions.map(({ path }) => path).filter((path) => path.startsWith('lamps'))).toEqual([
+      'lamps[0].lamp.ratedPower_W',
+      'lamps[0].lamp.ratedVoltage_V',
+      'lamps[0].lamp.load.minimumVoltage_V',
+      'lamps[0].lamp.input.seriesResistance_Ohm',
+      'lamps[1].lamp.ratedVoltage_V',
+      'lamps[1].lamp.powerFactor',
+    ]);
+    expect(judgedPairing.parse(judged)).toEqual(judged);
+    expect(complete(judged)).toEqual({ pairing: judged, assumptions: [] });
+  });
+
+  it("takes the supply's band from its standard, and counts from the first group", () => {
+    const { pairing, assumptions } = complete(Object.assign(examplePairing(), { options: { lampCount: { from: 1, to: 4 } } }));
+    expect(pairing.options).toMatchObject({
+      supplyBand: { low_pct: 90, high_pct: 110 },
+      lampCount: { from: 1, to: 4, group: 0 },
+      remedies: false,
+    });
+    expect(assumptions).toContainEqual({ path: 'options.supplyBand.low_pct', value: 90, basis: expect.stringContaining('EN 50160') });
+    expect(assumptions.filter(({ path }) => /lampCount|remedies/.test(path))).toEqual([]);
   });
 });
 
@@ -144,18 +175,30 @@ describe('what the model takes for granted', () => {
     const value = (path: string) => MODEL_ASSUMPTIONS.find((assumption) => assumption.path === path)?.value;
     expect(value('model.bridgeDrop_V')).toBe(BRIDGE_DROP);
     expect(value('model.lineLeakage_MOhm')).toBe(LINE_LEAKAGE / 1e6);
+    expect(value('model.dropperDischarge_MOhm')).toBe(DROPPER_DISCHARGE / 1e6);
+    expect(value('model.coldFactor')).toBe(COLD_FACTOR);
   });
 });
 
 describe('the fingerprint of a question', () => {
   it('does not depend on the order of fields, but on every value and on the model version', () => {
-    const { pairing } = complete(examplePairing());
-    const shuffled = Object.fromEntries(Object.entries(pairing).reverse()) as typeof pairing;
-    const other = complete(Object.assign(examplePairing(), { options: { corners: 'nominal' } })).pairing;
-    expect(fingerprintOf(shuffled, '1')).toBe(fingerprintOf(pairing, '1'));
-    expect(fingerprintOf(pairing, '2')).not.toBe(fingerprintOf(pairing, '1'));
-    expect(fingerprintOf(other, '1')).not.toBe(fingerprintOf(pairing, '1'));
-    expect(verdictIdOf(fingerprintOf(pairing, '1'))).toMatch(/^[0-9a-f]{26}$/);
+    const asked = complete(examplePairing());
+    const shuffled = { ...asked, pairing: Object.fromEntries(Object.entries(asked.pairing).reverse()) as typeof asked.pairing };
+    const other = complete(Object.assign(examplePairing(), { options: { corners: 'nominal' } }));
+    expect(fingerprintOf(shuffled, '1')).toBe(fingerprintOf(asked, '1'));
+    expect(fingerprintOf(asked, '2')).not.toBe(fingerprintOf(asked, '1'));
+    expect(fingerprintOf(other, '1')).not.toBe(fingerprintOf(asked, '1'));
+    expect(verdictIdOf(fingerprintOf(asked, '1'))).toMatch(/^[0-9a-f]{26}$/);
+  });
+
+  it('depends on what was assumed: a value that was given is another question than the same value filled in', () => {
+    const assumed = complete(examplePairing());
+    const given = complete(Object.assign(examplePairing(), { addedLoad: null, options: { dropOutAngle_deg: 30 } }));
+    expect(given.pairing).toEqual(assumed.pairing);
+    expect(fingerprintOf(given, '1')).not.toBe(fingerprintOf(assumed, '1'));
+    // neither the order in which things were assumed nor the words that say why counts
+    const reworded = assumed.assumptions.map((assumption) => ({ ...assumption, basis: 'otherwise' })).reverse();
+    expect(fingerprintOf({ ...assumed, assumptions: reworded }, '1')).toBe(fingerprintOf(assumed, '1'));
   });
 
   it('rests on JSON with sorted keys, lists in their order, and no negative zero', () => {

@@ -1,15 +1,22 @@
 import { describe, expect, it } from 'vitest';
+import { ASSUMABLE_PATHS } from '../../model/index.ts';
 import { checkOptions, checkPairing } from '../../model/pairing-check.ts';
 import { askedPairing } from '../../server/schemas/pairing.ts';
+import { shownPairing } from '../../server/simulation/asked-circuit.ts';
+import { assumedInModel, assumedOnWire } from '../../server/verdicts/assumed-values.ts';
 import { completePairing } from '../../server/verdicts/pairing-completion.ts';
 import { toModel } from '../../server/verdicts/pairing-to-model.ts';
 import { examplePairing, fullPairing, type Loose } from '../support/server-pairings.ts';
 import { numberLeaves } from './schema-leaves.ts';
 
+function question(pairing: Loose) {
+  return toModel(completePairing(askedPairing.parse(pairing)));
+}
+
+/** of lamps that are all given by their circuit */
 function convert(pairing: Loose) {
-  const completion = completePairing(askedPairing.parse(pairing));
-  if (!completion.ok) throw new Error('It was to be completed.');
-  return toModel(completion.pairing);
+  const { pairing: asked, options } = question(pairing);
+  return { pairing: shownPairing(asked, []), options };
 }
 
 describe('converting a pairing to the model', () => {
@@ -52,6 +59,7 @@ describe('converting a pairing to the model', () => {
             ratedPower: 8,
             input: {
               seriesResistance: 22,
+              seriesCapacitance: 4.7e-6,
               inductance: 2e-3,
               inductorLoss: 4000,
               capacitance: 47e-9,
@@ -86,7 +94,15 @@ describe('converting a pairing to the model', () => {
       ],
       addedLoad: { kind: 'resistor', resistance: 8200 },
     });
-    expect(options).toEqual({ dialPositions: [20, 60, 100], corners: 'nominal', dropOutAngle: 25 });
+    expect(options).toEqual({
+      dialPositions: [20, 60, 100],
+      corners: 'nominal',
+      dropOutAngle: 25,
+      supplyBand: { low: 0.94, high: 1.06, source: expect.any(String) },
+      assumed: [],
+      lampCount: { from: 1, to: 2, group: 1 },
+      remedies: false,
+    });
   });
 
   it('gives each polarity its own currents, and the maximum where only the other polarity has a typical value', () => {
@@ -145,6 +161,68 @@ describe('converting a pairing to the model', () => {
         }
       }
     }
+  });
+
+  it('tells the model which values were assumed, under its names', () => {
+    const { options } = question(examplePairing());
+    expect(options.assumed?.map(({ path }) => path).sort()).toEqual([
+      'dimmer.choke.inductance',
+      'dimmer.drive.breakover',
+      'dimmer.drive.capacitance',
+      'dimmer.drive.fixedResistance',
+      'dimmer.drive.gateResistance',
+      'dimmer.drive.gateThreshold',
+      'dimmer.interferenceCapacitance',
+      'dimmer.snubber.capacitance',
+      'dimmer.snubber.resistance',
+      'dimmer.turnOffTime',
+      'lamps[0].lamp.input.inductance',
+    ]);
+    expect(question(fullPairing('diac')).options.assumed).toEqual([]);
+  });
+
+  it('has a wire field for every value that the model can doubt, with its unit at the end', () => {
+    const timed = Object.assign(examplePairing(), { addedLoad: null });
+    timed.dimmer.drive = { kind: 'timed' };
+    timed.lamps = [{ count: 1, lamp: { load: { kind: 'reservoir', capacitance_uF: 4.7, power_W: 5 } } }];
+    const wire = [examplePairing(), timed].flatMap((pairing) =>
+      completePairing(askedPairing.parse(pairing)).assumptions.map(({ path }) => path),
+    );
+    for (const path of ASSUMABLE_PATHS) {
+      const found = assumedOnWire(path.replace('[]', '[0]'), wire);
+      expect([path, found?.path], path).toEqual([path, expect.stringMatching(/_(V|Ohm|kOhm|nF|mH|us|mA|deg)$/)]);
+      const [assumed] = assumedInModel([found?.path ?? '']);
+      expect(assumed).toEqual({ path: path.replace('[]', '[0]'), range: null });
+    }
+  });
+
+  it('leaves a lamp known by its class to the thread, and a record with what no record shows', () => {
+    const points = Array.from({ length: 9 }, (_, index) => ({ phase_deg: index * 22.5, current_mA: 10 * index }));
+    const pairing = Object.assign(examplePairing(), {
+      lamps: [
+        { count: 2, lamp: { ratedPower_W: 8, powerFactor: 0.5, load: { kind: 'class', class: 'reservoir-driver' } } },
+        { count: 1, lamp: { ratedPower_W: 6, load: { kind: 'phase-table', voltage_V: 231, frequency_Hz: 50, points } } },
+        {
+          count: 1,
+          lamp: {
+            load: { kind: 'phase-table', voltage_V: 231, frequency_Hz: 50, points, minimumVoltage_V: 60 },
+            input: { seriesResistance_Ohm: 33 },
+          },
+        },
+      ],
+    });
+    const table = { voltage: 231, frequency: 50, points: points.map((p) => ({ phase: p.phase_deg, current: p.current_mA / 1e3 })) };
+    expect(question(pairing).pairing.lamps).toEqual([
+      { count: 2, known: 'class', of: { lampClass: 'reservoir-driver', power: 8, powerFactor: 0.5, voltage: 230, frequency: 50 } },
+      {
+        count: 1,
+        known: 'record',
+        table,
+        ground: { seriesResistance: 22, minimumVoltage: 50, ratedPower: 6 },
+        seriesRange: [10, 47],
+      },
+      { count: 1, known: 'record', table, ground: { seriesResistance: 33, minimumVoltage: 60, ratedPower: null }, seriesRange: null },
+    ]);
   });
 
   it('converts the example of the documentation', () => {

@@ -1,5 +1,6 @@
 import { afterAll, describe, expect, it } from 'vitest';
 import { askedPairing } from '../../server/schemas/pairing.ts';
+import { shownPairing } from '../../server/simulation/asked-circuit.ts';
 import { directSimulation } from '../../server/simulation/direct-simulation.ts';
 import type { Simulation } from '../../server/simulation/simulation.ts';
 import { startSimulationPool } from '../../server/simulation/simulation-pool.ts';
@@ -12,11 +13,11 @@ afterAll(() => pool.destroy());
 
 function modelPairing() {
   const completion = completePairing(askedPairing.parse({ ...briefPairing(), options: { dialPositions_pct: [40, 80] } }));
-  if (!completion.ok) throw new Error('It was to be completed.');
-  return toModel(completion.pairing);
+  return toModel(completion);
 }
 
 const { pairing, options } = modelPairing();
+const circuit = shownPairing(pairing, []);
 const place = { sweep: 'down', position: 40 } as const;
 
 describe.each<[string, Simulation]>([
@@ -40,13 +41,13 @@ describe.each<[string, Simulation]>([
 
   it('gives the same bits as the direct call', async () => {
     expect(await simulation.judge(pairing, options)).toEqual(await directSimulation.judge(pairing, options));
-    expect(await simulation.recordWaveforms(pairing, options.dialPositions, place)).toEqual(
-      await directSimulation.recordWaveforms(pairing, options.dialPositions, place),
+    expect(await simulation.recordWaveforms(circuit, options.dialPositions, place)).toEqual(
+      await directSimulation.recordWaveforms(circuit, options.dialPositions, place),
     );
   });
 
   it('gives waveforms as columns of doubles', async () => {
-    const outcome = await simulation.recordWaveforms(pairing, options.dialPositions, place);
+    const outcome = await simulation.recordWaveforms(circuit, options.dialPositions, place);
     if (!outcome.ok) throw new Error('It was to be recorded.');
     expect(outcome.value.time).toBeInstanceOf(Float64Array);
     expect(outcome.value.lampVoltage).toHaveLength(outcome.value.time.length);
@@ -56,6 +57,6 @@ describe.each<[string, Simulation]>([
     const impossible = { ...pairing, mains: { ...pairing.mains, voltage: Number.NaN } };
     const refused = { ok: false, failure: { kind: 'invalid-pairing', issues: [{ path: 'mains.voltage', message: expect.any(String) }] } };
     expect(await simulation.judge(impossible, options)).toMatchObject(refused);
-    expect(await simulation.recordWaveforms(impossible, options.dialPositions, place)).toMatchObject(refused);
+    expect(await simulation.recordWaveforms({ ...circuit, mains: impossible.mains }, options.dialPositions, place)).toMatchObject(refused);
   });
 });

@@ -14,8 +14,7 @@ function pool(queueLimit: number) {
 
 function inModel(pairing: Loose) {
   const completion = completePairing(askedPairing.parse(pairing));
-  if (!completion.ok) throw new Error('It was to be completed.');
-  return toModel(completion.pairing);
+  return toModel(completion);
 }
 
 describe('the simulation pool', () => {

@@ -1,7 +1,7 @@
 import { connect } from 'node:net';
 import { describe, expect, it } from 'vitest';
-import type { Judgement } from '../../model/index.ts';
 import { runStopStages } from '../../server/shutdown.ts';
+import type { AskedJudgement } from '../../server/simulation/asked-circuit.ts';
 import type { Simulated } from '../../server/simulation/simulation.ts';
 import { listenOnAnyPort, testApp } from '../support/server-app.ts';
 import { CANNED_JUDGEMENT, fakeSimulation, pending } from '../support/server-fake-simulation.ts';
@@ -55,14 +55,14 @@ describe('the stop sequence', () => {
 });
 
 describe('closing the application', () => {
-  async function listening(simulate: () => Promise<Simulated<Judgement>>) {
+  async function listening(simulate: () => Promise<Simulated<AskedJudgement>>) {
     const simulation = fakeSimulation(simulate);
     const { app } = await testApp({ simulation });
     return { app, port: await listenOnAnyPort(app), asked: simulation.asked };
   }
 
   it('lets a running request finish, closes its kept-alive connection with the answer, and then listens no more', async () => {
-    const { promise, resolve } = pending<Simulated<Judgement>>();
+    const { promise, resolve } = pending<Simulated<AskedJudgement>>();
     const { app, port, asked } = await listening(() => promise);
     const body = JSON.stringify(examplePairing());
     const running = converse(port, [

@@ -1,5 +1,5 @@
 import { describe, expect, it } from 'vitest';
-import type { Judgement } from '../../model/index.ts';
+import type { AskedJudgement } from '../../server/simulation/asked-circuit.ts';
 import type { Simulated } from '../../server/simulation/simulation.ts';
 import { testApp } from '../support/server-app.ts';
 import { CANNED_JUDGEMENT, fakeSimulation, pending } from '../support/server-fake-simulation.ts';
@@ -38,16 +38,16 @@ describe('POST /v1/verdicts', () => {
     expect([simulation.asked(), verdicts.count()]).toEqual([1, 1]);
   });
 
-  it('takes a default that is written out, another order of fields, and a judged pairing sent back for the same question', async () => {
+  it('takes an empty object for one left out, and another order of fields for the same question', async () => {
     const simulation = fakeSimulation();
     const { post, verdicts } = await testApp({ simulation });
     const first = (await post(examplePairing())).json();
-    const writtenOut = examplePairing();
-    writtenOut.dimmer.choke = { inductance_mH: 0.1 };
-    writtenOut.options = {};
-    writtenOut.addedLoad = null;
+    const emptied = examplePairing();
+    emptied.dimmer.choke = {};
+    emptied.options = {};
+    emptied.addedLoad = null;
     const reordered = Object.fromEntries(Object.entries(examplePairing()).reverse());
-    for (const again of [writtenOut, reordered, first.pairing]) {
+    for (const again of [emptied, reordered]) {
       const answer = await post(again);
       expect([answer.statusCode, answer.json().id]).toEqual([200, first.id]);
     }
@@ -67,8 +67,24 @@ describe('POST /v1/verdicts', () => {
     expect(verdicts.count()).toBe(changes.length);
   });
 
+  it('takes a default that is written out, and a judged pairing sent back, for questions of their own: less was assumed', async () => {
+    const { post } = await testApp({ simulation: fakeSimulation() });
+    const first = (await post(examplePairing())).json();
+    const writtenOut = examplePairing();
+    writtenOut.dimmer.choke = { inductance_mH: 0.1 };
+    const partly = (await post(writtenOut)).json();
+    const judged = (await post(first.pairing)).json();
+    const paths = (verdict: { assumptions: { path: string }[] }) => verdict.assumptions.map(({ path }) => path);
+    expect(new Set([first.id, partly.id, judged.id]).size).toBe(3);
+    expect([partly.pairing, judged.pairing]).toEqual([first.pairing, first.pairing]);
+    expect(paths(first).filter((path) => !paths(partly).includes(path))).toEqual(['dimmer.choke.inductance_mH']);
+    expect(paths(judged).filter((path) => !path.startsWith('model.'))).toEqual([]);
+    // each keeps what was assumed for it
+    expect((await post(examplePairing())).json()).toEqual(first);
+  });
+
   it('simulates once for callers that ask the same at the same time', async () => {
-    const { promise, resolve } = pending<Simulated<Judgement>>();
+    const { promise, resolve } = pending<Simulated<AskedJudgement>>();
     const simulation = fakeSimulation(() => promise);
     const { post, verdicts } = await testApp({ simulation });
     const asking = [post(examplePairing()), post(examplePairing()), post(examplePairing())];

@@ -10,7 +10,7 @@ import runTask from '../../server/simulation/simulation-thread.ts';
 export const LOSSES = { diesAlways: 61, hangsAlways: 62, throwsAlways: 63, diesOnce: 64 } as const;
 
 export default function runOrLose(task: SimulationTask): unknown {
-  const { frequency } = task.pairing.mains;
+  const frequency = 'pairing' in task ? task.pairing.mains.frequency : 0;
   if (frequency === LOSSES.diesAlways) process.exit(7);
   if (frequency === LOSSES.throwsAlways) throw new Error('A bug, for a test.');
   if (frequency === LOSSES.hangsAlways) {

@@ -45,6 +45,7 @@ const TIMED_DRIVE = {
 
 const INPUT = {
   seriesResistance_Ohm: 22,
+  seriesCapacitance_nF: 4700,
   inductance_mH: 2,
   inductorLoss_kOhm: 4,
   capacitance_nF: 47,
@@ -117,6 +118,13 @@ export function fullPairing(drive: 'diac' | 'timed'): Loose {
       drive === 'diac'
         ? { kind: 'resistor', resistance_kOhm: 8.2 }
         : { kind: 'resistor-capacitor', resistance_Ohm: 470, capacitance_nF: 150 },
-    options: { dialPositions_pct: [20, 60, 100], corners: 'nominal', dropOutAngle_deg: 25 },
+    options: {
+      dialPositions_pct: [20, 60, 100],
+      corners: 'nominal',
+      dropOutAngle_deg: 25,
+      supplyBand: { low_pct: 94, high_pct: 106 },
+      lampCount: { from: 1, to: 2, group: 1 },
+      remedies: false,
+    },
   });
 }
