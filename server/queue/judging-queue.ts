@@ -3,8 +3,8 @@
  * embedded-queue.ts (this process's threads) and redis-queue.ts (worker processes over Redis). Neither stores anything; answers may come
  * more than once and in any order, and who asked writes them down once.
  */
-import type { Judgement } from '../../model/index.ts';
 import type { AskedDimmer, AskedLamp, AskedPairing } from '../schemas/pairing.ts';
+import type { AskedJudgement } from '../simulation/asked-circuit.ts';
 
 /** What every pairing of a screening shares. */
 export type PairingFrame = Omit<AskedPairing, 'dimmer' | 'lamps'>;
@@ -33,13 +33,13 @@ export interface Chunk {
 }
 
 export interface AnswerFailure {
-  readonly kind: 'invalid-pairing' | 'thread-lost' | 'worker-lost';
+  readonly kind: 'invalid-pairing' | 'profile-refused' | 'thread-lost' | 'worker-lost';
   readonly detail: string;
   readonly attempts: number;
 }
 
 export type Answer = { readonly position: number; readonly fingerprint: string } & (
-  | { readonly ok: true; readonly judgement: Judgement /** ms of one thread */; readonly took_ms: number }
+  | { readonly ok: true; readonly judgement: AskedJudgement /** ms of one thread */; readonly took_ms: number }
   | { readonly ok: false; readonly failure: AnswerFailure }
 );
 

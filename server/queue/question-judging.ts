@@ -4,11 +4,11 @@
  */
 import { MODEL_VERSION } from '../../model/index.ts';
 import type { AskedPairing } from '../schemas/pairing.ts';
-import type { BackgroundSimulation } from '../simulation/simulation.ts';
+import type { BackgroundFailure, BackgroundSimulation } from '../simulation/simulation.ts';
 import { fingerprintOf } from '../verdicts/canonical-inputs.ts';
 import { completePairing } from '../verdicts/pairing-completion.ts';
 import { toModel } from '../verdicts/pairing-to-model.ts';
-import type { Answer, Chunk, Question } from './judging-queue.ts';
+import type { Answer, AnswerFailure, Chunk, Question } from './judging-queue.ts';
 
 export type QuestionOutcome =
   | { readonly kind: 'answered'; readonly answer: Answer }
@@ -23,21 +23,28 @@ export async function judgeQuestion(simulation: BackgroundSimulation, chunk: Chu
   }
   const { position, fingerprint } = question;
   const completion = completePairing(askedPairingOf(chunk, question));
-  if (!completion.ok || fingerprintOf(completion.pairing, MODEL_VERSION) !== fingerprint) {
+  if (fingerprintOf(completion, MODEL_VERSION) !== fingerprint) {
     return { kind: 'refused', detail: 'this code completes the pairing otherwise than the one that asked: their versions differ' };
   }
-  const { pairing, options } = toModel(completion.pairing);
+  const { pairing, options } = toModel(completion);
   const judged = await simulation.judgeInBackground(pairing, options);
   if (judged.ok) {
     return { kind: 'answered', answer: { position, fingerprint, ok: true, judgement: judged.value, took_ms: judged.took_ms } };
   }
   const { failure } = judged;
   if (failure.kind === 'stopping') return { kind: 'stopping' };
-  const told =
-    failure.kind === 'invalid-pairing'
-      ? { kind: failure.kind, detail: failure.issues.map(({ path, message }) => `${path} ${message}`).join('; '), attempts: 1 }
-      : failure;
-  return { kind: 'answered', answer: { position, fingerprint, ok: false, failure: told } };
+  return { kind: 'answered', answer: { position, fingerprint, ok: false, failure: told(failure) } };
+}
+
+function told(failure: Exclude<BackgroundFailure, { kind: 'stopping' }>): AnswerFailure {
+  switch (failure.kind) {
+    case 'invalid-pairing':
+      return { kind: failure.kind, detail: failure.issues.map(({ path, message }) => `${path} ${message}`).join('; '), attempts: 1 };
+    case 'profile-refused':
+      return { kind: failure.kind, detail: failure.failure.detail, attempts: 1 };
+    case 'thread-lost':
+      return failure;
+  }
 }
 
 export function askedPairingOf(chunk: Chunk, { lamp, dimmer, count }: Question): AskedPairing {

@@ -1,8 +1,8 @@
 /** Parameters and answers of the calls about screenings: ids, pages, where to resume a stream, rows of results. */
 import { z } from 'zod';
+import { GRADES } from './grade.ts';
 import { screening } from './screening.ts';
 import { cursorField, limitField, nextCursorField } from './url-values.ts';
-import { GRADES } from './verdict.ts';
 
 export const screeningParams = z.strictObject({
   id: z

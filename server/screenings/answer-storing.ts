@@ -1,7 +1,8 @@
 /** Turns the answer to a question into what the record holds: a verdict's row, or a failure with the pairing as it was asked. */
-import { type Judgement, MODEL_VERSION } from '../../model/index.ts';
+import { MODEL_VERSION } from '../../model/index.ts';
 import type { AnswerFailure } from '../queue/judging-queue.ts';
 import type { AskedPairing } from '../schemas/pairing.ts';
+import type { AskedJudgement } from '../simulation/asked-circuit.ts';
 import { canonicalJson, fingerprintOf } from '../verdicts/canonical-inputs.ts';
 import { completePairing } from '../verdicts/pairing-completion.ts';
 import { verdictRowOf } from '../verdicts/verdict-judging.ts';
@@ -11,13 +12,12 @@ import type { ScreeningStores } from './screening-dependencies.ts';
 export function storeJudgement(
   { verdicts, screeningVerdicts }: Pick<ScreeningStores, 'verdicts' | 'screeningVerdicts'>,
   asked: AskedPairing,
-  judgement: Judgement,
+  judgement: AskedJudgement,
   at: Date,
 ): number {
   const completion = completePairing(asked);
-  if (!completion.ok) throw new Error('A pairing was judged that cannot be completed.');
-  const fingerprint = fingerprintOf(completion.pairing, MODEL_VERSION);
-  verdicts.insertOnce(verdictRowOf(fingerprint, completion.pairing, completion.assumptions, judgement, at));
+  const fingerprint = fingerprintOf(completion, MODEL_VERSION);
+  verdicts.insertOnce(verdictRowOf(fingerprint, completion, judgement, at));
   const seq = screeningVerdicts.seqOf(fingerprint);
   if (seq === undefined) throw new Error('A verdict was stored and not found.');
   return seq;
@@ -28,7 +28,7 @@ export function storeFailure(
   screening: number,
   position: number,
   asked: AskedPairing,
-  { kind, detail, attempts }: AnswerFailure | { readonly kind: 'cannot-be-asked'; readonly detail: string; readonly attempts: 0 },
+  { kind, detail, attempts }: AnswerFailure,
 ): void {
   screenings.addFailure(screening, { position, kind, detail, attempts, pairing: canonicalJson(asked) });
 }

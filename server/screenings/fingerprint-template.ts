@@ -9,15 +9,16 @@ import type { AskedDimmer, AskedLamp } from '../schemas/pairing.ts';
 import { canonicalJson } from '../verdicts/canonical-inputs.ts';
 import { type Completion, completePairing } from '../verdicts/pairing-completion.ts';
 
-/** A lamp or a dimmer completed, as canonical JSON; or why it cannot be. */
-export type CompletedPart =
-  | { readonly ok: true; readonly json: string }
-  | { readonly ok: false; readonly failure: Extract<Completion, { ok: false }>['failure'] };
+/** A lamp or a dimmer completed, as canonical JSON, and what was assumed of it, as the inside of a JSON list. */
+export interface CompletedPart {
+  readonly json: string;
+  readonly assumed: string;
+}
 
 export interface FingerprintTemplate {
   completeLamp(lamp: AskedLamp): CompletedPart;
   completeDimmer(dimmer: AskedDimmer): CompletedPart;
-  fingerprint(lampJson: string, dimmerJson: string, count: number): string;
+  fingerprint(lamp: CompletedPart, dimmer: CompletedPart, count: number): string;
   /** whether each pairing speaks for its dimmer and its lamp as they stand */
   readonly plain: boolean;
 }
@@ -26,28 +27,39 @@ export interface FingerprintTemplate {
 const ANY_DIMMER: AskedDimmer = { latchingCurrent_mA: 50, holdingCurrent_mA: 30 };
 const ANY_LAMP: AskedLamp = { load: { kind: 'resistive', resistance_Ohm: 1000 } };
 
+const DIMMER = 'dimmer.';
+const LAMP = 'lamps[0].';
 const DIMMER_HERE = '(dimmer)';
 const LAMPS_HERE = '(lamps)';
 
 export function fingerprintTemplate(frame: PairingFrame, modelVersion: string): FingerprintTemplate {
   const completeWith = (lamp: AskedLamp, dimmer: AskedDimmer) => completePairing({ ...frame, dimmer, lamps: [{ count: 1, lamp }] });
   const whole = completeWith(ANY_LAMP, ANY_DIMMER);
-  if (!whole.ok) throw new Error('A plain resistor is always completed.');
   const text = canonicalJson({ modelVersion, pairing: { ...whole.pairing, dimmer: DIMMER_HERE, lamps: LAMPS_HERE } });
-  const [beforeDimmer = '', rest = ''] = text.split(`"${DIMMER_HERE}"`);
+  const [beforeDimmer = '', rest = ''] = text.slice(1).split(`"${DIMMER_HERE}"`);
   const [beforeLamps = '', end = ''] = rest.split(`"${LAMPS_HERE}"`);
+  const ofFrame = assumedOf(whole, (path) => !path.startsWith(DIMMER) && !path.startsWith(LAMP));
 
   return {
     completeLamp: (lamp) => {
       const completion = completeWith(lamp, ANY_DIMMER);
-      return completion.ok ? { ok: true, json: canonicalJson(completion.pairing.lamps[0]?.lamp) } : completion;
+      return { json: canonicalJson(completion.pairing.lamps[0]?.lamp), assumed: assumedOf(completion, (path) => path.startsWith(LAMP)) };
     },
     completeDimmer: (dimmer) => {
       const completion = completeWith(ANY_LAMP, dimmer);
-      return completion.ok ? { ok: true, json: canonicalJson(completion.pairing.dimmer) } : completion;
+      return { json: canonicalJson(completion.pairing.dimmer), assumed: assumedOf(completion, (path) => path.startsWith(DIMMER)) };
     },
-    fingerprint: (lampJson, dimmerJson, count) =>
-      createHash('sha256').update(`${beforeDimmer}${dimmerJson}${beforeLamps}[{"count":${count},"lamp":${lampJson}}]${end}`).digest('hex'),
+    fingerprint: (lamp, dimmer, count) => {
+      // in the order of sorted paths: dimmer, lamps, then mains and options
+      const assumed = [dimmer.assumed, lamp.assumed, ofFrame].filter((paths) => paths !== '').join(',');
+      const pairing = `${beforeDimmer}${dimmer.json}${beforeLamps}[{"count":${count},"lamp":${lamp.json}}]${end}`;
+      return createHash('sha256').update(`{"assumed":[${assumed}],${pairing}`).digest('hex');
+    },
     plain: isPlainPair(whole.pairing),
   };
+}
+
+function assumedOf({ assumptions }: Completion, isOfPart: (path: string) => boolean): string {
+  const paths = assumptions.map(({ path }) => path).filter(isOfPart);
+  return JSON.stringify(paths.sort()).slice(1, -1);
 }

@@ -1,12 +1,12 @@
 /**
- * Sorts the open pairings of a page: those stored already and those that cannot be asked are recorded at once, those whose question is
- * under way elsewhere in the screening wait for it, and the rest become a chunk to be judged.
+ * Sorts the open pairings of a page: those stored already are recorded at once, those whose question is under way elsewhere in the
+ * screening wait for it, and the rest become a chunk to be judged.
  */
 import { MODEL_VERSION } from '../../model/index.ts';
 import type { Chunk, PairingFrame, Question } from '../queue/judging-queue.ts';
 import type { FingerprintTemplate } from './fingerprint-template.ts';
 import type { PositionedPairing } from './pairing-positions.ts';
-import type { SelectedPart, SelectedParts } from './selected-parts.ts';
+import type { SelectedParts } from './selected-parts.ts';
 
 export interface Sieve {
   sift(pairings: readonly PositionedPairing[], handle: SieveHandling): Sifted;
@@ -14,7 +14,6 @@ export interface Sieve {
 
 export interface SieveHandling {
   stored(pairing: PositionedPairing, fingerprint: string, verdict: number): void;
-  cannotBeAsked(pairing: PositionedPairing, detail: string): void;
 }
 
 export interface Sifted {
@@ -37,7 +36,7 @@ export interface SieveParts {
 export function pairingSieve({ screening, frame, template, parts, seqOf }: SieveParts): Sieve {
   const underWay = new Map<string, Promise<void>>();
 
-  const sift = (pairings: readonly PositionedPairing[], { stored, cannotBeAsked }: SieveHandling): Sifted => {
+  const sift = (pairings: readonly PositionedPairing[], { stored }: SieveHandling): Sifted => {
     const lamps = indexed<SelectedParts['lamp']>();
     const dimmers = indexed<SelectedParts['dimmer']>();
     const questions: Question[] = [];
@@ -50,11 +49,7 @@ export function pairingSieve({ screening, frame, template, parts, seqOf }: Sieve
     for (const pairing of pairings) {
       const lamp = parts.lamp(pairing.lamp);
       const dimmer = parts.dimmer(pairing.dimmer);
-      if (!lamp.completed.ok || !dimmer.completed.ok) {
-        cannotBeAsked(pairing, whyNot(lamp, dimmer));
-        continue;
-      }
-      const fingerprint = template.fingerprint(lamp.completed.json, dimmer.completed.json, pairing.count);
+      const fingerprint = template.fingerprint(lamp.completed, dimmer.completed, pairing.count);
       const known = seqOf(fingerprint);
       const asked = underWay.get(fingerprint);
       if (known !== undefined) {
@@ -101,16 +96,4 @@ function indexed<Read extends (place: number) => unknown>() {
     return parts.push(part) - 1;
   };
   return { parts, indexOf };
-}
-
-function whyNot(lamp: SelectedPart<unknown>, dimmer: SelectedPart<unknown>): string {
-  const failed = [lamp, dimmer].filter(({ completed }) => !completed.ok);
-  return failed.map(({ id, completed }) => `${id}: ${completed.ok ? '' : failureText(completed.failure.kind)}`).join('; ');
-}
-
-function failureText(kind: 'phase-table-needs-fitting'): string {
-  switch (kind) {
-    case 'phase-table-needs-fitting':
-      return 'a phase table must be fitted to an iv-table or a reservoir load before it can be simulated';
-  }
 }

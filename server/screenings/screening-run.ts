@@ -99,12 +99,6 @@ export function startScreeningRun(deps: ScreeningDependencies, row: ScreeningRow
     tell();
   };
 
-  const askedAt = (pairing: PositionedPairing) => ({
-    ...frame,
-    dimmer: parts.dimmer(pairing.dimmer).asked,
-    lamps: [{ count: pairing.count, lamp: parts.lamp(pairing.lamp).asked }],
-  });
-
   const sift = (pairings: readonly PositionedPairing[]): Sifted =>
     sieve.sift(
       pairings.filter(({ position }) => recording.isOpen(position)),
@@ -116,16 +110,6 @@ export function startScreeningRun(deps: ScreeningDependencies, row: ScreeningRow
             store: () => {
               tie(pairing, fingerprint);
               return verdict;
-            },
-          }),
-        cannotBeAsked: (pairing, detail) =>
-          recording.add({
-            position: pairing.position,
-            outcome: 'failed',
-            store: () => {
-              const failure = { kind: 'cannot-be-asked', detail, attempts: 0 } as const;
-              storeFailure(deps, seq, pairing.position, askedAt(pairing), failure);
-              return 0;
             },
           }),
       },

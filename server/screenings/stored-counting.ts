@@ -29,8 +29,7 @@ export async function countStored(
     const pairing = positions.at(Math.floor((index * row.total) / lookedAt));
     const lamp = parts.lamp(pairing.lamp).completed;
     const dimmer = parts.dimmer(pairing.dimmer).completed;
-    if (!lamp.ok || !dimmer.ok) continue;
-    if (screeningVerdicts.seqOf(template.fingerprint(lamp.json, dimmer.json, pairing.count)) !== undefined) found += 1;
+    if (screeningVerdicts.seqOf(template.fingerprint(lamp, dimmer, pairing.count)) !== undefined) found += 1;
   }
   if (lookedAt === row.total) return { pairings: found, basis: 'counted', lookedAt };
   return { pairings: Math.round((found * row.total) / lookedAt), basis: 'sampled', lookedAt };

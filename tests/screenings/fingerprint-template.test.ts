@@ -13,15 +13,17 @@ describe('a fingerprint put together from parts', () => {
     ['the example at 120 V', { ...examplePairing(), mains: { voltage_V: 120, frequency_Hz: 60 } }],
     ['a full pairing with a diac', fullPairing('diac')],
     ['a full pairing with timed firing', fullPairing('timed')],
+    [
+      'a lamp known by its class',
+      { ...briefPairing(), lamps: [{ count: 2, lamp: { ratedPower_W: 7, load: { kind: 'class', class: 'filament' } } }] },
+    ],
   ])('is that of the whole pairing, for %s', (_, sent) => {
     const { dimmer, lamps, ...frame } = askedPairing.parse(sent);
     const template = fingerprintTemplate(frame, MODEL_VERSION);
     for (const { lamp, count } of lamps) {
       const completion = completePairing({ ...frame, dimmer, lamps: [{ count, lamp }] });
-      const lampPart = template.completeLamp(lamp);
-      const dimmerPart = template.completeDimmer(dimmer);
-      if (!completion.ok || !lampPart.ok || !dimmerPart.ok) throw new Error('All were to be completed.');
-      expect(template.fingerprint(lampPart.json, dimmerPart.json, count)).toBe(fingerprintOf(completion.pairing, MODEL_VERSION));
+      const parts = [template.completeLamp(lamp), template.completeDimmer(dimmer)] as const;
+      expect(template.fingerprint(...parts, count)).toBe(fingerprintOf(completion, MODEL_VERSION));
     }
   });
 });
