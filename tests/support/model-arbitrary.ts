@@ -172,21 +172,23 @@ const loads: fc.Arbitrary<Load> = fc.oneof(
 const lamps: fc.Arbitrary<Lamp> = record({ ratedPower: fc.constant(null), input: inputs, load: loads });
 
 /**
- * As lamps are built: what draws through a bridge has some ohms before it, an input inductor has a core that loses something and, as
- * an active bleeder, a film capacitor behind it. Without these a valid lamp can still be an oscillator (a falling curve that an inductor feeds), which no event
- * budget follows to its end.
+ * As lamps are built: what draws through a bridge has some ohms before it; an input inductor has a core that loses something; and behind
+ * an inductor, before an active bleeder and before anything whose current falls with the voltage stands a film capacitor. Without these
+ * a valid lamp can be an oscillator of some megahertz (a falling curve on its stray capacitance), which no event budget follows.
  */
 function asBuilt(lamp: Lamp): Lamp {
-  const { input } = lamp;
+  const { input, load } = lamp;
   const active = input.bleeder?.kind === 'active';
-  const bridged = lamp.load.kind !== 'resistive' || active;
+  const bridged = load.kind !== 'resistive' || active;
+  const falls = load.kind === 'iv-table' && load.points.some((p, k) => p.current < (load.points[k - 1]?.current ?? 0));
+  const filmed = active || falls || (input.inductance > 0 && bridged);
   return {
     ...lamp,
     input: {
       ...input,
       seriesResistance: bridged ? Math.max(input.seriesResistance, 4.7) : input.seriesResistance,
       inductorLoss: input.inductance > 0 ? (input.inductorLoss ?? 5e3) : input.inductorLoss,
-      capacitance: active || (input.inductance > 0 && bridged) ? Math.max(input.capacitance, 10e-9) : input.capacitance,
+      capacitance: filmed ? Math.max(input.capacitance, 10e-9) : input.capacitance,
     },
   };
 }
