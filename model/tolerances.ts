@@ -75,7 +75,7 @@ export const REPEAT_TOLERANCE = 1e-6;
 export const REPEAT_FLOOR = 1e-8;
 /** half-cycles simulated before observing a pattern that does not repeat, and half-cycles observed then */
 export const SETTLE_HALF_CYCLES = 60;
-export const OBSERVE_HALF_CYCLES = 60;
+export const OBSERVE_HALF_CYCLES = 120;
 /** s, interval below which that search does not halve on */
 export const PEAK_TIME = 1e-9;
 /** relative accuracy to which the largest current of a segment is searched */

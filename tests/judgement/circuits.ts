@@ -2,6 +2,7 @@
 import type { Dimmer, JudgeOptions, Lamp, Pairing } from '../../model/index.ts';
 import {
   both,
+  diacDrive,
   emulator,
   everydayDimmer,
   idealDimmer,
@@ -24,7 +25,13 @@ export const NOMINAL: JudgeOptions = { ...ALL_CORNERS, corners: 'nominal' };
 const milli = (value: number) => both(value / 1000);
 
 export const dimmer = (latching_mA: number, holding_mA: number, change: Partial<Dimmer> = {}): Dimmer =>
-  everydayDimmer({ latchingCurrent: milli(latching_mA), holdingCurrent: milli(holding_mA), ...change });
+  everydayDimmer({
+    latchingCurrent: milli(latching_mA),
+    holdingCurrent: milli(holding_mA),
+    // little fixed resistance: a dial that reaches far up, where a lamp that lets go early is fired again
+    drive: diacDrive({ fixedResistance: 6.8e3 }),
+    ...change,
+  });
 
 /** 8 W lamps that draw like resistors */
 export const emulators = (count: number, on: Dimmer, capacitance = 47e-9, lamp: Partial<Lamp> = {}): Pairing =>
