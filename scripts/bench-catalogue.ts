@@ -1,7 +1,8 @@
 /**
  * Measures how fast the catalogue answers. First, requests a second of a stored badge, a stored verdict and a 304, each against a bare
  * Fastify route that answers a constant of the same size, in turns. Then the 99th percentile of every query with many stored verdicts
- * against few, in turns too. The records are made in a temporary folder and deleted.
+ * against few, in turns too. Processor time stands beside both: it tells more where other work shares the machine. The records are made
+ * in a temporary folder and deleted.
  *
  *   npm run bench:catalogue [-- --rows 1000000 --few 10000 --rounds 5 --seconds 4 --requests 1000]
  */
@@ -12,10 +13,10 @@ import { join } from 'node:path';
 import { createInterface } from 'node:readline';
 import { parseArgs } from 'node:util';
 import { closeRecord, openRecord } from '../db/record.ts';
-import { figure, machineLine, spreadOf } from './bench-figures.ts';
+import { figure, machineLine, type Spread, spreadOf } from './bench-figures.ts';
 import { catalogueFor, dimmerId, fillRecord, lampId, realVerdicts, verdictIdOf } from './catalogue-filling.ts';
 import { QUERIES, type Query } from './catalogue-queries.ts';
-import { requestsPerSecond } from './load-generator.ts';
+import { type Load, loadOn, processorTime_s } from './load-generator.ts';
 import { type ServiceProcess, startService } from './service-process.ts';
 
 const { values } = parseArgs({
@@ -40,7 +41,7 @@ try {
   console.log(machineLine());
   const many = join(folder, 'many');
   const small = join(folder, 'few');
-  makeRecords([
+  await makeRecords([
     [small, few],
     [many, rows],
   ]);
@@ -52,8 +53,8 @@ try {
   rmSync(folder, { recursive: true, force: true });
 }
 
-function makeRecords(records: readonly (readonly [folder: string, rows: number])[]): void {
-  const real = realVerdicts();
+async function makeRecords(records: readonly (readonly [folder: string, rows: number])[]): Promise<void> {
+  const real = await realVerdicts();
   for (const [data, wanted] of records) {
     const began = performance.now();
     const file = join(data, 'holdfast.sqlite');
@@ -69,7 +70,7 @@ function makeRecords(records: readonly (readonly [folder: string, rows: number])
   }
 }
 
-async function compareThroughput({ address }: ServiceProcess): Promise<void> {
+async function compareThroughput({ address, pid }: ServiceProcess): Promise<void> {
   const badge = `${address}/v1/badges/${dimmerId(0)}/${lampId(0)}.svg?count=1`;
   const verdict = `${address}/v1/verdicts/${verdictIdOf(0)}`;
   const sizeOf = async (url: string) => (await (await fetch(url)).arrayBuffer()).byteLength;
@@ -88,47 +89,49 @@ async function compareThroughput({ address }: ServiceProcess): Promise<void> {
   console.log(
     `\nRequests a second, ${rounds} rounds of ${seconds} s in turns, 10 connections from a process of its own: median (least to most)`,
   );
-  for (const { url, status, headers } of contests) await requestsPerSecond(url, 2, status, headers);
+  for (const { url, status, headers, against } of contests) {
+    await loadOn(url, pid, 2, status, headers);
+    await loadOn(`${bare.address}/${against}`, bare.pid, 2, 200);
+  }
   for (const { name, url, status, headers, against, least } of contests) {
-    const [bares, ours, ratios]: [number[], number[], number[]] = [[], [], []];
+    const turns: (readonly [ours: Load, bare: Load])[] = [];
     for (let round = 0; round < rounds; round += 1) {
-      const bareRate = await requestsPerSecond(`${bare.address}/${against}`, seconds, 200);
-      const rate = await requestsPerSecond(url, seconds, status, headers);
-      bares.push(bareRate);
-      ours.push(rate);
-      ratios.push(rate / bareRate);
+      const bareLoad = await loadOn(`${bare.address}/${against}`, bare.pid, seconds, 200);
+      turns.push([await loadOn(url, pid, seconds, status, headers), bareLoad]);
     }
-    const ratio = spreadOf(ratios);
+    const rate = spreadOf(turns.map(([ours, theirs]) => ours.perSecond / theirs.perSecond));
+    const effort = spreadOf(turns.map(([ours, theirs]) => theirs.processor_us / ours.processor_us));
     console.log(
-      `  ${name.padEnd(24)} ${spread(ours).padEnd(28)} bare ${spread(bares).padEnd(28)} ratio ${percent(ratio.median)} ` +
-        `(${percent(ratio.least)} to ${percent(ratio.most)}), wanted ${percent(least)}: ${ratio.median >= least ? 'met' : 'MISSED'}`,
+      `  ${name.padEnd(24)} ${spread(turns.map(([ours]) => ours.perSecond)).padEnd(28)} bare ${spread(turns.map(([, theirs]) => theirs.perSecond)).padEnd(28)} ` +
+        `ratio ${percents(rate)}, wanted ${percent(least)}: ${rate.median >= least ? 'met' : 'MISSED'}; by processor time ${percents(effort)}`,
     );
   }
   bare.stop();
 }
 
 async function compareLatency(services: readonly [ServiceProcess, ServiceProcess]): Promise<void> {
+  const row = (name: string, cells: readonly string[]) =>
+    console.log(`  ${name.padEnd(42)}${cells.map((cell) => cell.padStart(10)).join('')}`);
   console.log(
-    `\nMilliseconds an answer, one request at a time, ${figure(few)} against ${figure(rows)} verdicts in turns; wanted: p99 at most twice`,
+    `\nMilliseconds an answer, one request at a time, with ${figure(few)} and with ${figure(rows)} verdicts in turns; wanted: p99 at most twice`,
   );
-  console.log(
-    `  ${'query'.padEnd(44)}${'few: median'.padStart(12)}${'p99'.padStart(8)}${'many: median'.padStart(14)}${'p99'.padStart(8)}${'p99 ratio'.padStart(11)}`,
-  );
+  row('', ['median', '', 'p99', '', 'p99 ratio', 'processor', '']);
   for (const query of QUERIES) {
     const wanted = Math.max(100, Math.round(requests * (query.share ?? 1)));
     const times: [number[], number[]] = [[], []];
+    const effort = [0, 0];
     for (let number = -20; number < wanted; number += 1) {
+      if (number === 0) for (const [index, { pid }] of services.entries()) effort[index] = -processorTime_s(pid);
       for (const [index, service] of services.entries()) {
         const time = await timeOf(query, service.address, index === 0 ? few : rows);
         if (number >= 0) times[index]?.push(time);
       }
     }
+    const processor = services.map(({ pid }, index) => (((effort[index] ?? 0) + processorTime_s(pid)) / wanted) * 1000);
     const [fewTimes, manyTimes] = times.map(percentiles) as [Percentiles, Percentiles];
     const ratio = manyTimes.p99 / fewTimes.p99;
-    const cells = [fewTimes.median, fewTimes.p99, manyTimes.median, manyTimes.p99].map((value) => value.toFixed(2));
-    console.log(
-      `  ${query.name.padEnd(44)}${cells[0]?.padStart(12)}${cells[1]?.padStart(8)}${cells[2]?.padStart(14)}${cells[3]?.padStart(8)}${ratio.toFixed(2).padStart(11)} ${ratio <= 2 ? '' : 'MISSED'}`,
-    );
+    const cells = [fewTimes.median, manyTimes.median, fewTimes.p99, manyTimes.p99, ratio, ...processor].map((value) => value.toFixed(2));
+    row(query.name, [...cells, ratio <= 2 ? '' : 'MISSED']);
   }
 }
 
@@ -157,16 +160,23 @@ function percentiles(times: readonly number[]): Percentiles {
   return { median: at(0.5), p99: at(0.99) };
 }
 
-async function startBareRoutes(routes: readonly string[]): Promise<{ readonly address: string; readonly stop: () => void }> {
+async function startBareRoutes(
+  routes: readonly string[],
+): Promise<{ readonly address: string; readonly pid: number; readonly stop: () => void }> {
   const script = new URL('./bare-route.ts', import.meta.url).pathname;
   const child = spawn(process.execPath, ['--import', 'tsx', script, ...routes], { stdio: ['ignore', 'pipe', 'inherit'] });
-  for await (const line of createInterface({ input: child.stdout })) return { address: line, stop: () => void child.kill('SIGTERM') };
+  for await (const line of createInterface({ input: child.stdout }))
+    return { address: line, pid: child.pid ?? 0, stop: () => void child.kill('SIGTERM') };
   throw new Error('The bare routes did not start.');
 }
 
 function spread(found: readonly number[]): string {
   const { median, least, most } = spreadOf(found);
   return `${figure(median)} (${figure(least)} to ${figure(most)})`;
+}
+
+function percents({ median, least, most }: Spread): string {
+  return `${percent(median)} (${percent(least)} to ${percent(most)})`;
 }
 
 function percent(share: number): string {

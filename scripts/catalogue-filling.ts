@@ -5,12 +5,13 @@
  */
 import { createHash } from 'node:crypto';
 import { readdirSync, readFileSync } from 'node:fs';
-import { type WrittenEvidence, writeEvidence } from '../db/evidence.ts';
+import { type Evidence, type WrittenEvidence, writeEvidence } from '../db/evidence.ts';
 import type { RecordDatabase } from '../db/record.ts';
 import { storesOf } from '../db/stores.ts';
-import { type Grade, judgePairing, MODEL_VERSION } from '../model/index.ts';
+import { type Grade, MODEL_VERSION } from '../model/index.ts';
 import { putEntry } from '../server/catalogue/entries.ts';
 import { type AskedPairing, askedPairing } from '../server/schemas/pairing.ts';
+import { directSimulation } from '../server/simulation/direct-simulation.ts';
 import { completePairing } from '../server/verdicts/pairing-completion.ts';
 import { toModel } from '../server/verdicts/pairing-to-model.ts';
 import { verdictRowOf } from '../server/verdicts/verdict-judging.ts';
@@ -44,32 +45,38 @@ function fingerprintOf(number: number): Buffer {
   return createHash('sha256').update(`verdict ${number}`).digest();
 }
 
-interface RealVerdict {
+export interface RealVerdict {
   readonly grade: Grade;
   readonly summary: string;
   readonly evidence: WrittenEvidence;
+  /** the same before it was written */
+  readonly json: Evidence;
   readonly asked: AskedPairing;
 }
 
-/** Every example pairing, judged with 1, 2 and 5 lamps in its first group. */
-export function realVerdicts(): readonly RealVerdict[] {
+/** Every example pairing that can be judged as it stands, with 1, 2 and 5 lamps in its first group. */
+export async function realVerdicts(): Promise<readonly RealVerdict[]> {
   const folder = new URL('./examples/', import.meta.url);
   const names = readdirSync(folder).filter((name) => name.endsWith('.json'));
-  return names.flatMap((name) => [1, 2, 5].map((count) => judged(readFileSync(new URL(name, folder), 'utf8'), count)));
+  const pairings = names.flatMap((name) => {
+    const parsed = askedPairing.safeParse(JSON.parse(readFileSync(new URL(name, folder), 'utf8')));
+    return parsed.success ? [1, 2, 5].map((count) => withCount(parsed.data, count)) : [];
+  });
+  const real: RealVerdict[] = [];
+  for (const asked of pairings) {
+    const completion = completePairing(asked);
+    const { pairing, options } = toModel(completion);
+    const judged = await directSimulation.judge(pairing, options);
+    if (!judged.ok) continue;
+    const row = verdictRowOf('0'.repeat(64), completion, judged.value, new Date(FIRST_AT));
+    real.push({ grade: row.grade, summary: row.summary, evidence: writeEvidence(row), json: row, asked });
+  }
+  return real;
 }
 
-function judged(text: string, count: number): RealVerdict {
-  const pairing = askedPairing.parse(JSON.parse(text));
+function withCount(pairing: AskedPairing, count: number): AskedPairing {
   const [first, ...others] = pairing.lamps;
-  if (first === undefined) throw new Error('An example has no lamps.');
-  const asked = { ...pairing, lamps: [{ ...first, count }, ...others] };
-  const completion = completePairing(asked);
-  if (!completion.ok) throw new Error('An example cannot be completed.');
-  const model = toModel(completion.pairing);
-  const outcome = judgePairing(model.pairing, model.options);
-  if (!outcome.ok) throw new Error('An example cannot be judged.');
-  const row = verdictRowOf('0'.repeat(64), completion.pairing, completion.assumptions, outcome.value, new Date(FIRST_AT));
-  return { grade: row.grade, summary: row.summary, evidence: writeEvidence(row), asked };
+  return first === undefined ? pairing : { ...pairing, lamps: [{ ...first, count }, ...others] };
 }
 
 /** Verdict n is of dimmer n mod D and lamp n div D mod L. Every 20th is at 120 V, every 10th of an old model, those of every 25th dimmer stale. */

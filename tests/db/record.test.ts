@@ -6,11 +6,12 @@ import { FIXED_NOW, temporaryFolder, temporaryRecord } from '../support/server-t
 
 describe('the record', () => {
   it.each([
+    ['page_size', 16384],
     ['journal_mode', 'wal'],
     ['synchronous', 1],
     ['foreign_keys', 1],
     ['busy_timeout', 2000],
-    ['wal_autocheckpoint', 1000],
+    ['wal_autocheckpoint', 500],
     ['journal_size_limit', 16777216],
     ['cache_size', -16384],
     ['mmap_size', 0],
