@@ -6,6 +6,7 @@ import { type JudgedPairs, judgedPairs } from './judged-pairs.ts';
 import { type PartnerSearch, partnerSearch } from './partner-search.ts';
 import type { RecordDatabase } from './record.ts';
 import { type RecordChanges, recordChanges } from './record-changes.ts';
+import { type RequirementStore, requirementStore } from './requirements.ts';
 import { type ScreeningPages, screeningPages } from './screening-pages.ts';
 import { type ScreeningSelection, screeningSelection } from './screening-selection.ts';
 import { type StalePairs, stalePairs } from './screening-stale.ts';
@@ -17,6 +18,7 @@ import { type VerdictStore, verdictStore } from './verdicts.ts';
 export interface Stores {
   readonly verdicts: VerdictStore;
   readonly verdictSearch: VerdictSearch;
+  readonly requirements: RequirementStore;
   readonly judgedPairs: JudgedPairs;
   readonly partnerSearch: PartnerSearch;
   readonly entries: EntryStore;
@@ -34,6 +36,7 @@ export function storesOf(record: RecordDatabase): Stores {
   return {
     verdicts: verdictStore(record),
     verdictSearch: verdictSearch(record),
+    requirements: requirementStore(record),
     judgedPairs: judgedPairs(record),
     partnerSearch: partnerSearch(record),
     entries: entryStore(record),

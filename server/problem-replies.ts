@@ -29,7 +29,6 @@ export function sendProblem(reply: FastifyReply, code: ProblemCode, detail: stri
 const CODES_OF_FASTIFY: { readonly [code: string]: readonly [ProblemCode, string] } = {
   FST_ERR_CTP_INVALID_MEDIA_TYPE: ['unsupported-media-type', 'Send the body as application/json.'],
   FST_ERR_CTP_INVALID_CONTENT_LENGTH: ['malformed-http', 'The body is not as long as Content-Length says.'],
-  FST_ERR_CTP_BODY_TOO_LARGE: ['body-too-large', 'Send at most 1 MiB (1,048,576 bytes).'],
   FST_ERR_CTP_EMPTY_JSON_BODY: ['malformed-json', 'The body is empty: send a JSON object.'],
   FST_ERR_CTP_INVALID_JSON_BODY: ['malformed-json', 'The body cannot be read as JSON.'],
   FST_ERR_BAD_URL: ['malformed-http', 'The URL cannot be decoded.'],
@@ -40,6 +39,9 @@ export function replyToError(error: FastifyError | RequestInvalid, request: Fast
     const count = error.issues.length;
     const detail = count === 1 ? 'One thing is wrong with it.' : `${count} things are wrong with it.`;
     return sendProblem(reply, 'invalid-request', detail, { issues: error.issues });
+  }
+  if (error.code === 'FST_ERR_CTP_BODY_TOO_LARGE') {
+    return sendProblem(reply, 'body-too-large', `Send at most ${request.routeOptions.bodyLimit.toLocaleString('en')} bytes.`);
   }
   const [code, detail] = CODES_OF_FASTIFY[error.code] ?? [];
   if (code !== undefined && detail !== undefined) return sendProblem(reply, code, detail);

@@ -37,7 +37,7 @@ export const PROBLEMS = {
     title: 'The entry is not as you expect it',
     when: '`If-Match` names another revision than the latest, or `If-None-Match: *` an entry that exists: read it again',
   },
-  'body-too-large': { status: 413, title: 'The body is too large', when: 'the body exceeds 1 MiB' },
+  'body-too-large': { status: 413, title: 'The body is too large', when: 'the body exceeds 1 MiB, or 8 MiB for a profile' },
   'list-too-large': {
     status: 413,
     title: 'The list is too large',

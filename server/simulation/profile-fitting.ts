@@ -7,15 +7,22 @@ import {
   type PhaseTable,
   type ProfileFit,
   readScopeColumns,
+  type ScopeRecord,
   type ScopeTable,
   type StatedColumns,
   separatorOf,
 } from '../../model/index.ts';
 import type { CircuitFailure } from './simulation.ts';
 
+/** What no record shows, by the supply that turns out to have been recorded: 180 V r.m.s. and more, and less. */
+export interface GroundBySupply {
+  readonly high: FitGround;
+  readonly low: FitGround;
+}
+
 export type ProfileQuestion =
   | { readonly kind: 'phase-table'; readonly table: PhaseTable; readonly ground: FitGround }
-  | { readonly kind: 'scope-record'; readonly csv: string; readonly stated: StatedColumns; readonly ground: FitGround };
+  | { readonly kind: 'scope-record'; readonly csv: string; readonly stated: StatedColumns; readonly grounds: GroundBySupply };
 
 /** `scope`: what was read from a scope record and taken out of it; null where a phase table was given */
 export type FittedProfile = ProfileFit & { readonly scope: ScopeTable | null };
@@ -33,8 +40,16 @@ export function fitProfile(question: ProfileQuestion): Outcome {
   const rows = rowsOf(question.csv);
   if (!rows.ok) return rows;
   const record = readScopeColumns(rows.value, question.stated);
-  const fit = record.ok ? fitScopeRecord(record.value, question.ground) : record;
+  const fit = record.ok ? fitScopeRecord(record.value, groundOf(record.value, question.grounds)) : record;
   return fit.ok ? fit : refused(fit.failure);
+}
+
+const HIGH_SUPPLY_FROM = 180;
+
+function groundOf({ voltage }: ScopeRecord, { high, low }: GroundBySupply): FitGround {
+  let squares = 0;
+  for (let k = 0; k < voltage.length; k++) squares += (voltage[k] ?? 0) ** 2;
+  return Math.sqrt(squares / voltage.length) >= HIGH_SUPPLY_FROM ? high : low;
 }
 
 type Refused = Extract<Outcome, { ok: false }>;

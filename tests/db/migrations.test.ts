@@ -43,6 +43,7 @@ describe('migrations', () => {
       'imports',
       'judged_pairs',
       'migrations',
+      'requirements',
       'revisions',
       'screening_entries',
       'screening_events',

@@ -68,13 +68,14 @@ const ENTRY_FILTER = { tag: 't', articleNumber: 'n', ratedPowerFrom: 0, ratedPow
 
 /** Calls everything the stores offer but imports, in every combination of filters. */
 function useEverything(stores: Stores): void {
-  const { verdicts, verdictSearch, judgedPairs, partnerSearch, entries, entrySearch } = stores;
+  const { verdicts, requirements, verdictSearch, judgedPairs, partnerSearch, entries, entrySearch } = stores;
   putEntry(stores, 'dimmer', 'd');
   putEntry(stores, 'lamp', 'l');
   judgedPair(stores, 1, ['d', 1], ['l', 1]);
   putEntry(stores, 'lamp', 'l', 'second');
   const { row } = verdicts.insertOnce(verdictRow(2));
   verdicts.findById(row.id);
+  requirements.insertOnce({ verdict_id: row.id, model_version: '1', created_at: row.created_at, content: '{}' });
   verdicts.count();
   judgedPairs.ofVerdict(1, 10);
   judgedPairs.ofPair('d', 'l', 10);

@@ -138,6 +138,17 @@ CREATE TABLE migrations (
   applied_at TEXT NOT NULL
 ) STRICT;
 
+CREATE TABLE requirements (
+  verdict INTEGER NOT NULL REFERENCES verdicts (seq),
+  -- of the model that computed it, which may be a later one than the verdict's
+  model_version TEXT NOT NULL,
+  -- ms since 1970-01-01 UTC
+  created_at INTEGER NOT NULL,
+  -- the model's Requirement, in SI units
+  content TEXT NOT NULL CHECK (json_valid(content)),
+  PRIMARY KEY (verdict, model_version)
+) STRICT;
+
 CREATE TABLE revisions (
   entry INTEGER NOT NULL REFERENCES entries (seq),
   revision INTEGER NOT NULL,
