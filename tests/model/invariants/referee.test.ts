@@ -7,8 +7,8 @@ import fc from 'fast-check';
 import { expect, test } from 'vitest';
 import type { Pairing } from '../../../model/pairing.ts';
 import { CARRY_OVER_ANGLE } from '../../../model/tolerances.ts';
+import { angleDistance, anglesFromRest } from '../../support/model-angles.ts';
 import { builtPairings, dialPositions, PATIENCE, runsOf } from '../../support/model-arbitrary.ts';
-import { startRun } from '../../support/model-run.ts';
 import { type SteppedHalfCycle, stepThrough } from '../../support/model-stepper.ts';
 
 const HALF_CYCLES = 2;
@@ -16,7 +16,6 @@ const COARSE = 100_000;
 const FINE = 1_000_000;
 /** degrees: some ten coarse steps, for one event's lateness makes the next one's */
 const NEAR = 0.02;
-const COMPARED = 6;
 
 /** a conduction that reaches far into a half-cycle without a firing is that one's own, fired at 0, as the engine records it */
 function carriedOver(stepped: readonly SteppedHalfCycle[]): SteppedHalfCycle[] {
@@ -36,36 +35,14 @@ function carriedOver(stepped: readonly SteppedHalfCycle[]): SteppedHalfCycle[] {
   return records;
 }
 
-/** degrees between the two at their worst, over the first firings and ends; without end where their numbers differ */
-function distance(engine: readonly SteppedHalfCycle[], referee: readonly SteppedHalfCycle[]): number {
-  let most = 0;
-  engine.forEach((record, k) => {
-    const other = referee[k] ?? { firings: [], ends: [] };
-    // the last half-cycle may end while the triac conducts
-    for (const key of k === HALF_CYCLES - 1 ? (['firings'] as const) : (['firings', 'ends'] as const)) {
-      const many = Math.min(record[key].length, other[key].length) > COMPARED;
-      if (!many && record[key].length !== other[key].length) most = Number.POSITIVE_INFINITY;
-      record[key].slice(0, COMPARED).forEach((angle, n) => {
-        most = Math.max(most, Math.abs(angle - (other[key][n] ?? angle)));
-      });
-    }
-  });
-  return most;
-}
-
 function compare(pairing: Pairing, dial: number): 'agrees' | 'agrees with finer steps' | 'open' {
-  const run = startRun(pairing, dial);
-  const engine: SteppedHalfCycle[] = [];
-  for (let k = 0; k < HALF_CYCLES; k++) {
-    const { outcome, record } = run.finishHalfCycle();
-    if (outcome !== 'done') return 'open';
-    engine.push(record);
-  }
+  const engine = anglesFromRest(pairing, dial, HALF_CYCLES);
+  if (engine.length < HALF_CYCLES) return 'open';
   const coarse = stepThrough(pairing, dial, HALF_CYCLES, COARSE);
-  const far = coarse === null ? Number.POSITIVE_INFINITY : distance(engine, carriedOver(coarse));
+  const far = coarse === null ? Number.POSITIVE_INFINITY : angleDistance(engine, carriedOver(coarse));
   if (far < NEAR) return 'agrees';
   const fine = stepThrough(pairing, dial, HALF_CYCLES, FINE);
-  const near = fine === null ? Number.POSITIVE_INFINITY : distance(engine, carriedOver(fine));
+  const near = fine === null ? Number.POSITIVE_INFINITY : angleDistance(engine, carriedOver(fine));
   return near < NEAR || near < far / 4 ? 'agrees with finer steps' : 'open';
 }
 
