@@ -6,12 +6,12 @@ import type { EntryStore } from '../../db/entries.ts';
 import type { JudgedPairs, PairVerdictRow } from '../../db/judged-pairs.ts';
 import type { RecordChanges } from '../../db/record-changes.ts';
 import type { VerdictStore } from '../../db/verdicts.ts';
-import type { Judgement } from '../../model/index.ts';
 import { MOST_OF_PAIR } from '../catalogue/pair-verdicts.ts';
 import type { BadgeAnswer } from '../schemas/badge-calls.ts';
+import type { AskedJudgement } from '../simulation/asked-circuit.ts';
 import { badgePicture } from './badge-picture.ts';
 import { type BadgeWords, badgeWords } from './badge-words.ts';
-import { type PairStanding, pairStanding, type StandingQuestion } from './pair-standing.ts';
+import { type CountOutcome, type PairStanding, pairStanding, type StandingQuestion } from './pair-standing.ts';
 
 export type BadgeForm = 'svg' | 'json';
 
@@ -28,20 +28,27 @@ export type PairBadge =
 
 export type PairBadges = (form: BadgeForm, dimmerId: string, lampId: string, question: StandingQuestion) => PairBadge;
 
+/** Of a model version that judged no lamp counts, `lampCounts` is not there. */
+type StoredJudgement = Pick<AskedJudgement, 'conditions'> & Partial<Pick<AskedJudgement, 'lampCounts'>>;
+
 const CAUTION = 'A screening by simulation, not a type test. Follow both makers’ instructions; work on the mains is for a licensed person.';
 
 export function pairBadges({ entries, verdicts, judgedPairs, recordChanges }: BadgeDependencies): PairBadges {
-  const lowestDialOf = ({ id }: PairVerdictRow): number | null => {
-    const judgement = verdicts.findById(id)?.judgement;
-    if (judgement === undefined) return null;
-    const { conditions } = JSON.parse(judgement) as Judgement;
-    return conditions.find(({ kind }) => kind === 'lowest-dial')?.position ?? null;
+  const outcomesOf = (row: PairVerdictRow): readonly CountOutcome[] => {
+    const stored = verdicts.findById(row.id);
+    if (stored === undefined) throw new Error(`Verdict ${row.id} is tied to a pair and not stored.`);
+    const { conditions, lampCounts } = JSON.parse(stored.judgement) as StoredJudgement;
+    const lowestDial = conditions.find(({ kind }) => kind === 'lowest-dial')?.position ?? null;
+    // Counts of one circuit out of several that a lamp may be do not speak for the lamp.
+    const others = lampCounts != null && lampCounts.circuit === null ? lampCounts.counts : [];
+    const own = { count: row.lamp_count, grade: row.grade, lowestDial, verdict: row };
+    return [own, ...others.filter(({ count }) => count !== row.lamp_count).map((other) => ({ ...other, verdict: row }))];
   };
 
   return (form, dimmerId, lampId, question) => {
     const stamp = judgedPairs.stampOf(dimmerId, lampId);
     if (stamp === undefined) return { ok: false, missing: entries.has('dimmer', dimmerId) ? 'lamp' : 'dimmer' };
-    const standing = pairStanding(judgedPairs.ofPair(dimmerId, lampId, MOST_OF_PAIR), question, lowestDialOf);
+    const standing = pairStanding(judgedPairs.ofPair(dimmerId, lampId, MOST_OF_PAIR), question, outcomesOf);
     const words = badgeWords(standing);
     const text = form === 'svg' ? pictureOf(standing, words) : JSON.stringify(badgeJson(dimmerId, lampId, question, standing, words));
     return { ok: true, text, holds: holdsWhile(() => judgedPairs.stampOf(dimmerId, lampId) === stamp, recordChanges) };
@@ -91,11 +98,11 @@ function badgeJson(
     judgedCounts: [...standing.judgedCounts],
     lowestDial_pct: standing.lowestDial,
     mains: standing.mains,
-    verdicts: standing.verdicts.map(({ id, lamp_count, grade, model_version }) => ({
-      id,
-      count: lamp_count,
+    verdicts: standing.outcomes.map(({ count: of, grade, verdict }) => ({
+      id: verdict.id,
+      count: of,
       grade,
-      modelVersion: model_version,
+      modelVersion: verdict.model_version,
     })),
     caution: CAUTION,
   };

@@ -1,11 +1,28 @@
 import { describe, expect, it } from 'vitest';
-import type { Grade } from '../../model/index.ts';
+import type { CountGrade, Grade } from '../../model/index.ts';
+import type { AskedJudgement } from '../../server/simulation/asked-circuit.ts';
 import { testApp } from '../support/server-app.ts';
 import { dimmerEntry, lampEntry, send } from '../support/server-entries.ts';
 import { CANNED_JUDGEMENT, fakeSimulation } from '../support/server-fake-simulation.ts';
 import type { Loose } from '../support/server-pairings.ts';
 
-type Outcome = Grade | readonly ['conditional', lowestDial: number];
+type Outcome = Grade | readonly ['conditional', lowestDial: number] | AskedJudgement;
+
+const LAMP_COUNTS = {
+  circuit: null,
+  group: 0,
+  smallest: 4,
+  largest: 5,
+  unbroken: true,
+  below: null,
+  above: null,
+  summary: 'For a test.',
+  counters: CANNED_JUDGEMENT.counters,
+};
+
+function whole(outcome: Pick<CountGrade, 'count' | 'grade' | 'lowestDial'>): CountGrade {
+  return { ...outcome, decidedBy: 'nominal', cause: null, detail: 'For a test.' };
+}
 
 /** One dimmer and one lamp; `judged` gives the outcome for each lamp count, in that order of time. */
 async function pair(judged: readonly (readonly [count: number, outcome: Outcome, mains?: Loose])[] = []) {
@@ -29,6 +46,7 @@ async function pair(judged: readonly (readonly [count: number, outcome: Outcome,
 
 function judgementOf(outcome: Outcome): typeof CANNED_JUDGEMENT {
   if (typeof outcome === 'string') return { ...CANNED_JUDGEMENT, grade: outcome };
+  if ('dial' in outcome) return outcome;
   const [grade, position] = outcome;
   return { ...CANNED_JUDGEMENT, grade, conditions: [{ kind: 'lowest-dial', position, detail: 'For a test.' }] };
 }
@@ -121,6 +139,23 @@ describe('a badge', () => {
     expect(await said()).toMatchObject({ grade: 'unsuitable', counts: [3], mains: at120 });
     expect(await said('?mainsVoltage_V=230&mainsFrequency_Hz=50')).toMatchObject({ grade: 'suitable', counts: [1, 2] });
     expect(await said('?mainsVoltage_V=240&mainsFrequency_Hz=50')).toMatchObject({ state: 'not-screened', mains: null });
+  });
+
+  it('speaks of the counts that one verdict was asked about, and first of a verdict of the very count', async () => {
+    const counts = [
+      { count: 3, grade: 'unsuitable' as const, lowestDial: null },
+      { count: 4, grade: 'unsuitable' as const, lowestDial: null },
+      { count: 5, grade: 'conditional' as const, lowestDial: 15 },
+    ];
+    const { said } = await pair([
+      [4, { ...CANNED_JUDGEMENT, grade: 'suitable', lampCounts: { ...LAMP_COUNTS, counts: counts.map(whole) } }],
+    ]);
+    expect(await said()).toMatchObject({ grade: 'conditional', counts: [4, 5], judgedCounts: [3, 4, 5], lowestDial_pct: 15 });
+    expect(await said('?count=5')).toMatchObject({ label: 'Conditional', lines: ['5 lamps', 'dial from 15 % up'] });
+    expect(await said('?count=6')).toMatchObject({ state: 'not-screened' });
+    const ofClass = { ...LAMP_COUNTS, circuit: 'one of three', counts: counts.map(whole) };
+    const other = await pair([[4, { ...CANNED_JUDGEMENT, grade: 'suitable', lampCounts: ofClass }]]);
+    expect(await other.said()).toMatchObject({ grade: 'suitable', judgedCounts: [4] });
   });
 
   it('names the verdicts it rests on, and carries a caution', async () => {
