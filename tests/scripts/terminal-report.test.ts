@@ -21,13 +21,11 @@ const statesOf = (verdict: Verdict): ReadonlySet<string> => new Set(verdict.dial
 
 describe('the example pairings of the guest house', () => {
   it('are these five, and each does what the README says of it', async () => {
-    expect(readdirSync(EXAMPLES).sort()).toEqual([
-      'attic-stairs.json',
-      'bedroom.json',
-      'breakfast-room.json',
-      'entrance-hall.json',
-      'landing.json',
-    ]);
+    expect(
+      readdirSync(EXAMPLES)
+        .filter((name) => name.endsWith('.json'))
+        .sort(),
+    ).toEqual(['attic-stairs.json', 'bedroom.json', 'breakfast-room.json', 'entrance-hall.json', 'landing.json']);
 
     const breakfastRoom = await judged('breakfast-room');
     expect(breakfastRoom.grade).toBe('suitable');
