@@ -110,7 +110,7 @@ export function entryStore(record: RecordDatabase): EntryStore {
     const circuit = sameCircuit.get(known.seq, sha256) ?? revision;
     updateEntry.run({ seq: known.seq, revision, circuit, name, articleNumber, ratedPower, at });
     insertRevision.run({ seq: known.seq, revision, circuit, sha256, content, at });
-    if (circuit !== known.circuit) pairs.markStale(known.seq);
+    if (circuit !== known.circuit) pairs.markStale(known.seq, circuit !== revision);
   };
 
   return {
@@ -134,7 +134,7 @@ export function entryStore(record: RecordDatabase): EntryStore {
       if (before === undefined) return false;
       search.forget(kind, id);
       markDeleted.run(at, before.seq);
-      pairs.markStale(before.seq);
+      pairs.markStale(before.seq, false);
       return true;
     },
   };

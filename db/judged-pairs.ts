@@ -60,8 +60,11 @@ export interface PairMains {
 export interface JudgedPairs {
   /** Ties a stored verdict to what it judged, once: the same tie again changes nothing. */
   tie(verdictId: string, circuit: JudgedCircuit): void;
-  /** Marks anew what an entry's edit or deletion makes stale, or fresh again. Inside the transaction that edits it. */
-  markStale(entry: number): void;
+  /**
+   * Marks what an entry's edit or deletion makes stale, or fresh again where `returns`: its circuit is one that it had before. Inside the
+   * transaction that edits it.
+   */
+  markStale(entry: number, returns: boolean): void;
   /** A verdict's ties, first made first, at most `limit`. */
   ofVerdict(verdict: number, limit: number): readonly JudgedPairRow[];
   /** Of the verdicts of two entries for each other at a count the newest that holds, else the newest of earlier revisions. */
@@ -111,10 +114,10 @@ export function judgedPairs(record: RecordDatabase): JudgedPairs {
     'SELECT dimmer, dimmer_revision, lamp, lamp_revision, lamp_count FROM judged_pairs WHERE circuit_row = ? ORDER BY seq',
   );
   const markCircuit = record.prepare(`UPDATE judged_pairs SET stale = ${OUTDATED} WHERE circuit_row = ?`);
-  const markEntry = record.prepare(
-    `UPDATE judged_pairs SET stale = ${OUTDATED} WHERE circuit_row IN
-     (SELECT circuit_row FROM judged_pairs WHERE dimmer = @entry UNION SELECT circuit_row FROM judged_pairs WHERE lamp = @entry)`,
-  );
+  const ofEntry =
+    'circuit_row IN (SELECT circuit_row FROM judged_pairs WHERE dimmer = @entry UNION SELECT circuit_row FROM judged_pairs WHERE lamp = @entry)';
+  const markAnew = record.prepare(`UPDATE judged_pairs SET stale = ${OUTDATED} WHERE ${ofEntry}`);
+  const markAllStale = record.prepare(`UPDATE judged_pairs SET stale = 1 WHERE ${ofEntry} AND stale = 0`);
   const ofVerdict = record.prepare<[number, number], JudgedPairRow>(
     `SELECT d.id AS dimmer_id, dimmer_revision, l.id AS lamp_id, lamp_revision, lamp_count, plain, stale FROM judged_pairs p
      LEFT JOIN entries d ON d.seq = p.dimmer LEFT JOIN entries l ON l.seq = p.lamp WHERE p.verdict = ? ORDER BY p.seq LIMIT ?`,
@@ -171,7 +174,7 @@ export function judgedPairs(record: RecordDatabase): JudgedPairs {
 
   return {
     tie: (verdictId, circuit) => tie.immediate(verdictId, circuit),
-    markStale: (entry) => void markEntry.run({ entry }),
+    markStale: (entry, returns) => void (returns ? markAnew : markAllStale).run({ entry }),
     ofVerdict: (verdict, limit) => ofVerdict.all(verdict, limit),
     stampOf: (dimmerId, lampId) => stampOf.get(dimmerId, lampId),
     ofPair: (dimmerId, lampId, limit) => ofPair.all({ dimmerId, lampId, limit }),

@@ -64,7 +64,6 @@ const NEWER = `EXISTS (SELECT 1 FROM judged_pairs n CROSS JOIN verdicts w ON w.s
     AND w.mains_voltage = v.mains_voltage AND w.mains_frequency = v.mains_frequency)`;
 
 const CHECKS = [
-  ['lampCount', 'p.lamp_count = @lampCount'],
   ['mainsVoltage', 'v.mains_voltage = @mainsVoltage'],
   ['mainsFrequency', 'v.mains_frequency = @mainsFrequency'],
 ] as const satisfies readonly (readonly [keyof PartnerFilter, string])[];
@@ -102,15 +101,16 @@ export function partnerSearch(record: RecordDatabase): PartnerSearch {
 }
 
 function walkText(kind: EntryKind, filter: PartnerFilter): string {
-  const checks = [
-    HELD('p'),
-    `p.${PARTNER_OF[kind]} IS NOT NULL`,
+  const ofVerdict = [
     `v.grade IN (${filter.grades.map((_, index) => `@grade${index}`).join(', ')})`,
     ...CHECKS.flatMap(([field, check]) => (filter[field] === undefined ? [] : [check])),
     `NOT ${NEWER}`,
-  ];
-  return `SELECT p.created_at, p.verdict, p.seq, (${checks.join(' AND ')}) AS hit
-    FROM judged_pairs p CROSS JOIN verdicts v ON v.seq = p.verdict
+  ].join(' AND ');
+  const ofPair = [HELD('p'), `p.${PARTNER_OF[kind]} IS NOT NULL`, ...(filter.lampCount === undefined ? [] : ['p.lamp_count = @lampCount'])];
+  // AND would evaluate both its sides; a CASE leaves the verdict unread where the pair itself does not hold.
+  return `SELECT p.created_at, p.verdict, p.seq,
+      CASE WHEN ${ofPair.join(' AND ')} THEN (SELECT ${ofVerdict} FROM verdicts v WHERE v.seq = p.verdict) ELSE 0 END AS hit
+    FROM judged_pairs p
     WHERE p.${kind} = (SELECT seq FROM entries WHERE kind = '${kind}' AND id = @id)
       AND (p.created_at, p.verdict, p.seq) < (@at, @verdict, @seq)
     ORDER BY p.created_at DESC, p.verdict DESC, p.seq DESC`;

@@ -1,7 +1,7 @@
 /**
- * Lists stored verdicts, newest first, by any combination of filters. One filter walks its index in that order, the others are checked
- * row by row. A page ends after a fixed number of rows looked at, so that a rare combination costs pages and not time, however many
- * verdicts are stored.
+ * Lists stored verdicts, newest first, by any combination of filters. One index is walked in that order, what it does not decide is
+ * checked row by row. A page ends after a fixed number of rows looked at, so that a rare combination costs pages and not time, however
+ * many verdicts are stored.
  */
 import type { Grade } from '../model/index.ts';
 import { preparedOnce } from './prepared-statements.ts';
@@ -55,10 +55,9 @@ export interface VerdictSearch {
 
 export const NEWEST: VerdictPlace = { created_at: Number.MAX_SAFE_INTEGER, seq: Number.MAX_SAFE_INTEGER };
 
-/** rows looked at for one page: a few milliseconds */
-const MOST_LOOKED_AT = 2_000;
-/** a filter with fewer hits than this is walked without weighing it against others */
-const FEW = 500;
+/** Rows looked at for one page: each a read at some other place of the file, or one after the other in an index. Some milliseconds either way. */
+const MOST_SCATTERED = 1_000;
+const MOST_IN_INDEX = 8_000;
 
 type Field = keyof VerdictFilter;
 interface Walk {
@@ -74,7 +73,7 @@ const PAIRS = 'judged_pairs p';
 const DIMMER = `p.dimmer = (SELECT seq FROM entries WHERE kind = 'dimmer' AND id = @dimmerId)`;
 const LAMP = `p.lamp = (SELECT seq FROM entries WHERE kind = 'lamp' AND id = @lampId)`;
 
-/** Ways to walk, each through an index in the order of lists; the ones before the others are never worse. */
+/** Ways to walk, each through an index in the order of lists. Those of entries come first: no other filter tells as much. */
 const PAIR_WALKS: readonly Walk[] = [
   { fields: ['dimmerId', 'lampId'], from: PAIRS, seq: 'p.verdict', condition: `${DIMMER} AND ${LAMP}` },
   { fields: ['lampId'], from: PAIRS, seq: 'p.verdict', condition: LAMP },
@@ -87,6 +86,7 @@ const VERDICT_WALKS: readonly Walk[] = [
   { fields: ['mainsVoltage'], from: VERDICTS, seq: 'v.seq', condition: 'v.mains_voltage = @mainsVoltage' },
   { fields: ['modelVersion'], from: VERDICTS, seq: 'v.seq', condition: 'v.model_version = @modelVersion' },
 ];
+/** Its index holds every filter of a verdict. */
 const WALK_ALL: Walk = { fields: [], from: VERDICTS, seq: 'v.seq', condition: 'TRUE' };
 
 /** What each filter asks of a row; those on ties are asked of one and the same tie. */
@@ -113,18 +113,23 @@ export function verdictSearch(record: RecordDatabase): VerdictSearch {
   const prepare = preparedOnce(record);
   const heading = record.prepare<[number], VerdictHeading>(`SELECT ${HEADING} FROM verdicts WHERE seq = ?`);
 
-  const leastHits = (walks: readonly Walk[], values: object): Walk | undefined => {
-    const weighed = (walk: Walk) => {
-      const sql = `SELECT count(*) AS hits FROM (SELECT 1 FROM ${walk.from} WHERE ${walk.condition} AND ${within(walk)} LIMIT ${MOST_LOOKED_AT})`;
-      return prepare<{ hits: number }>(sql).get(values)?.hits ?? 0;
-    };
-    let least: { readonly walk: Walk; readonly hits: number } | undefined;
-    for (const walk of walks) {
-      const hits = weighed(walk);
-      if (least === undefined || hits < least.hits) least = { walk, hits };
-      if (least.hits < FEW) break;
-    }
-    return least?.walk;
+  /** How far back in time a walk comes in one page; as far as can be where it ends before. */
+  const reachOf = (walk: Walk, filter: VerdictFilter, values: object): number => {
+    const time = timeOf(walk);
+    const sql = `SELECT ${time} AS at FROM ${walk.from} WHERE ${walk.condition} AND ${within(walk)}
+      ORDER BY ${time} DESC, ${walk.seq} DESC LIMIT 1 OFFSET ${mostLookedAt(walk, filter) - 1}`;
+    return prepare<{ at: number }>(sql).get(values)?.at ?? Number.NEGATIVE_INFINITY;
+  };
+
+  const choose = (filter: VerdictFilter, values: object): Walk => {
+    const given = (walk: Walk) => walk.fields.length > 0 && walk.fields.every((field) => filter[field] !== undefined);
+    const ofEntries = PAIR_WALKS.find(given);
+    if (ofEntries !== undefined) return ofEntries;
+    const walks = [...(filter.stale === true ? [STALE_WALK] : []), ...VERDICT_WALKS.filter(given)];
+    const [first] = walks;
+    if (first === undefined || (walks.length === 1 && checksFor(first, filter).length === 0)) return first ?? WALK_ALL;
+    const reaches = [...walks, WALK_ALL].map((walk) => ({ walk, reach: reachOf(walk, filter, values) }));
+    return reaches.reduce((best, one) => (one.reach < best.reach ? one : best)).walk;
   };
 
   return {
@@ -135,17 +140,15 @@ export function verdictSearch(record: RecordDatabase): VerdictSearch {
         createdFrom: filter.createdFrom ?? 0,
         ...placeBelow(before, filter.createdBefore),
       };
-      const given = (walk: Walk) => walk.fields.every((field) => filter[field] !== undefined);
-      const candidates = [...(filter.stale === true ? [STALE_WALK] : []), ...VERDICT_WALKS.filter(given)];
-      const walk = PAIR_WALKS.find(given) ?? (candidates.length > 1 ? leastHits(candidates, values) : candidates[0]) ?? WALK_ALL;
-
+      const walk = choose(filter, values);
+      const most = mostLookedAt(walk, filter);
       const headings: VerdictHeading[] = [];
       let last: VerdictPlace = before;
       let lookedAt = 0;
       for (const { created_at, seq, hit } of prepare<LookedAt>(walkText(walk, filter)).iterate(values)) {
         // A verdict tied to several entries that a walk of ties passes comes once for each, one after the other.
         const isNext = seq !== last.seq;
-        if (isNext && (headings.length === limit || lookedAt >= MOST_LOOKED_AT)) return { headings, next: last };
+        if (isNext && (headings.length === limit || lookedAt >= most)) return { headings, next: last };
         lookedAt += 1;
         last = { created_at, seq };
         if (hit === 0 || headings.at(-1)?.seq === seq) continue;
@@ -163,22 +166,34 @@ function placeBelow(before: VerdictPlace, createdBefore: number | undefined): { 
   return { at: before.created_at, seq: before.seq };
 }
 
-function within({ from, seq }: Walk): string {
-  const time = from === VERDICTS ? 'v.created_at' : 'p.created_at';
-  return `(${time}, ${seq}) < (@at, @seq) AND ${time} >= @createdFrom`;
+const timeOf = ({ from }: Walk) => (from === VERDICTS ? 'v.created_at' : 'p.created_at');
+
+function within(walk: Walk): string {
+  return `(${timeOf(walk)}, ${walk.seq}) < (@at, @seq) AND ${timeOf(walk)} >= @createdFrom`;
 }
 
-function walkText(walk: Walk, filter: VerdictFilter): string {
+function mostLookedAt(walk: Walk, filter: VerdictFilter): number {
+  const readsRows = checksFor(walk, filter).length > 0 && (walk !== WALK_ALL || filter.stale !== undefined);
+  return readsRows ? MOST_SCATTERED : MOST_IN_INDEX;
+}
+
+/** What a walk leaves to be checked, the cheapest first. */
+function checksFor(walk: Walk, filter: VerdictFilter): readonly string[] {
   const asked = (checks: readonly (readonly [Field, string])[]) =>
     checks.flatMap(([field, condition]) => (filter[field] === undefined || walk.fields.includes(field) ? [] : [condition]));
   const verdictChecks = asked(VERDICT_CHECKS);
   const tieChecks = asked(TIE_CHECKS);
-  const order = (time: string) => `WHERE ${walk.condition} AND ${within(walk)} ORDER BY ${time} DESC, ${walk.seq} DESC`;
-  const hit = (checks: readonly string[]) => (checks.length === 0 ? '1' : `(${checks.join(' AND ')})`);
   if (walk.from === PAIRS) {
-    const join = verdictChecks.length === 0 ? '' : `CROSS JOIN ${VERDICTS} ON v.seq = p.verdict`;
-    return `SELECT p.verdict AS seq, p.created_at, ${hit([...verdictChecks, ...tieChecks])} AS hit FROM ${PAIRS} ${join} ${order('p.created_at')}`;
+    const ofVerdict = `(SELECT ${verdictChecks.join(' AND ')} FROM ${VERDICTS} WHERE v.seq = p.verdict)`;
+    return verdictChecks.length === 0 ? tieChecks : [...tieChecks, ofVerdict];
   }
-  const tied = tieChecks.length === 0 ? [] : [`EXISTS (SELECT 1 FROM ${PAIRS} WHERE p.verdict = v.seq AND ${tieChecks.join(' AND ')})`];
-  return `SELECT v.seq, v.created_at, ${hit([...verdictChecks, ...tied])} AS hit FROM ${VERDICTS} ${order('v.created_at')}`;
+  const tied = `EXISTS (SELECT 1 FROM ${PAIRS} WHERE p.verdict = v.seq AND ${tieChecks.join(' AND ')})`;
+  return tieChecks.length === 0 ? verdictChecks : [...verdictChecks, tied];
+}
+
+function walkText(walk: Walk, filter: VerdictFilter): string {
+  // AND would evaluate both its sides; a CASE stops at the first that does not hold.
+  const hit = checksFor(walk, filter).reduceRight((rest, check) => `CASE WHEN ${check} THEN ${rest} ELSE 0 END`, '1');
+  return `SELECT ${walk.seq} AS seq, ${timeOf(walk)} AS created_at, ${hit} AS hit FROM ${walk.from}
+    WHERE ${walk.condition} AND ${within(walk)} ORDER BY ${timeOf(walk)} DESC, ${walk.seq} DESC`;
 }

@@ -36,7 +36,7 @@ CREATE INDEX verdicts_by_mains ON verdicts (mains_voltage, created_at);
 
 CREATE INDEX verdicts_by_model_version ON verdicts (model_version, created_at);
 
-CREATE INDEX verdicts_by_time ON verdicts (created_at);
+CREATE INDEX verdicts_by_time ON verdicts (created_at, seq, grade, lamp_count, mains_voltage, mains_frequency, model_version);
 
 CREATE TABLE entries (
   seq INTEGER PRIMARY KEY AUTOINCREMENT,

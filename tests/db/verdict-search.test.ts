@@ -94,6 +94,20 @@ describe('a list of verdicts', () => {
     for (const limit of [1, 10]) expect(found(stores, filter, limit)).toEqual(numbers);
   });
 
+  it('walks the filter that tells most, and finds what any other walk would', () => {
+    const stores = storesOf(temporaryRecord());
+    stores.entries.together(() => {
+      for (let number = 1; number <= 1_500; number += 1) {
+        const changes = { grade: number % 500 === 0 ? ('conditional' as const) : ('suitable' as const), lamp_count: (number % 2) + 1 };
+        stores.verdicts.insertOnce(verdictRow(number, changes));
+      }
+    });
+    expect(found(stores, { grade: 'conditional', lampCount: 1 })).toEqual([1500, 1000, 500]);
+    expect(found(stores, { grade: 'conditional', lampCount: 2 })).toEqual([]);
+    expect(found(stores, { grade: 'suitable', lampCount: 1, modelVersion: '1' }, 100)).toHaveLength(747);
+    expect(found(stores, { grade: 'suitable', mainsVoltage: 120 })).toEqual([]);
+  });
+
   it('lists a verdict once although several of the entries asked for share it', () => {
     const stores = storesOf(temporaryRecord());
     putEntry(stores, 'dimmer', 'd');
@@ -105,14 +119,15 @@ describe('a list of verdicts', () => {
 
   it('ends a page early where many rows were looked at in vain, and finds the rare one on the next', () => {
     const stores = storesOf(temporaryRecord());
+    putEntry(stores, 'dimmer', 'd');
+    putEntry(stores, 'lamp', 'l');
     stores.entries.together(() => {
-      for (let number = 1; number <= 2_500; number += 1) {
-        stores.verdicts.insertOnce(verdictRow(number, number === 7 ? { mains_frequency: 60 } : {}));
-      }
+      for (let number = 1; number <= 2_500; number += 1) stores.verdicts.insertOnce(verdictRow(number));
     });
-    const first = stores.verdictSearch.page({ mainsFrequency: 60, mainsVoltage: 230 }, NEWEST, 10);
-    expect([first.headings, first.next?.seq]).toEqual([[], 501]);
-    expect(found(stores, { mainsFrequency: 60, mainsVoltage: 230 })).toEqual([7]);
-    expect(found(stores, { mainsFrequency: 60, grade: 'suitable', lampCount: 1 })).toEqual([7]);
+    judgedPair(stores, 7, ['d', 1], ['l', 1]);
+    const first = stores.verdictSearch.page({ stale: false }, NEWEST, 10);
+    expect([first.headings, first.next?.seq]).toEqual([[], 1501]);
+    expect(found(stores, { stale: false })).toEqual([7]);
+    expect(found(stores, { stale: false, grade: 'suitable', lampCount: 1 })).toEqual([7]);
   });
 });
