@@ -38,8 +38,8 @@ export interface ScreeningRun {
 
 /** ms after which known outcomes are written even where the batch is small */
 const WRITE_AT_LEAST = 1_000;
-/** outcomes of a batch: some ten milliseconds of writing */
-const BATCH = 256;
+/** outcomes of a batch: some milliseconds of writing */
+const BATCH = 128;
 /** ms between tries where the disk is full or the queue away */
 const RETRY = 3_000;
 
