@@ -190,7 +190,7 @@ function layGroup(
   const behind = layout.dropperFrom(to, input.seriesCapacitance * n, DROPPER_DISCHARGE / n);
   const node = layout.inductorFrom(behind, input.inductance / n, input.inductorLoss === null ? null : input.inductorLoss / n);
   const curve = staticCurve(group);
-  const stray = load.kind !== 'reservoir' && curve !== null && curveFalls(curve) ? STRAY_CAPACITANCE : 0;
+  const stray = curve !== null && curveFalls(curve) ? STRAY_CAPACITANCE : 0;
   layout.capacitor(node, NEUTRAL, Math.max(input.capacitance, stray) * n);
   if (input.damper !== null) layout.seriesCapacitor(node, NEUTRAL, input.damper.capacitance * n, input.damper.resistance / n);
   if (input.bleeder?.kind === 'resistor') layout.conductor(node, NEUTRAL, input.bleeder.resistance / n);

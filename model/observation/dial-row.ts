@@ -11,8 +11,9 @@ const mean = (values: readonly number[]): number => (values.length === 0 ? 0 : v
 /** (max - min)/(max + min), 0 where nothing was delivered */
 function modulation(values: readonly number[]): number {
   if (values.length === 0) return 0;
-  const most = Math.max(...values);
-  const least = Math.min(...values);
+  // a half-cycle in which the lamps' capacitors gave more back than was drawn delivered nothing
+  const most = Math.max(0, ...values);
+  const least = Math.max(0, Math.min(...values));
   return most + least > 0 ? (most - least) / (most + least) : 0;
 }
 

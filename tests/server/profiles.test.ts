@@ -7,7 +7,7 @@ import { briefPairing, type Loose } from '../support/server-pairings.ts';
 
 const KITCHEN = readFileSync(new URL('../../scripts/examples/records/kitchen.csv', import.meta.url), 'utf8');
 
-async function fit(body: Loose) {
+async function postProfile(body: Loose) {
   const { app, post } = await testApp();
   const answer = await app.inject({ method: 'POST', url: '/v1/profiles', payload: body });
   return { status: answer.statusCode, body: answer.json() as Loose, post };
@@ -27,7 +27,7 @@ function changed(
 
 describe('POST /v1/profiles', () => {
   it('fits a phase table to a lamp that a pairing takes as it is', async () => {
-    const { status, body, post } = await fit(EXAMPLE_PROFILE);
+    const { status, body, post } = await postProfile(EXAMPLE_PROFILE);
     expect(status).toBe(200);
     expect(body).toMatchObject({ form: 'iv-table', scope: null, lamp: { ratedPower_W: 8, load: { kind: 'iv-table' } } });
     expect(body.residual_pct).toBeLessThan(5);
@@ -39,7 +39,7 @@ describe('POST /v1/profiles', () => {
   });
 
   it('gets the values of a known circuit back from a scope record within 5 %, and says what it took out of the record', async () => {
-    const { status, body } = await fit(record(KITCHEN, { ratedPower_W: 6 }));
+    const { status, body } = await postProfile(record(KITCHEN, { ratedPower_W: 6 }));
     expect(status).toBe(200);
     // scripts/examples/records/kitchen.csv: 4.7 uF, 26.7 Ohm in all, 6 W, 22 nF; 1.3 V and 3 mA of offset, current reversed
     const { load, input } = body.lamp;
@@ -78,26 +78,26 @@ describe('POST /v1/profiles', () => {
     ['a header without units', record(KITCHEN.replace('time_ms,voltage_V,current_mA', 'time,voltage,current')), 'unreadable-record'],
     ['a quote that is not closed', record(`${KITCHEN}"1,2,3`), 'unreadable-record'],
   ])('refuses a scope record with %s by a clear fault', async (_, body, fault) => {
-    const answer = await fit(body);
+    const answer = await postProfile(body);
     expect(answer.status).toBe(422);
     expect(answer.body).toMatchObject({ type: 'urn:holdfast:problem:scope-record-unusable', fault, detail: expect.any(String) });
     expect(answer.body.detail.length).toBeGreaterThan(30);
   });
 
   it('names the row and the column of a fault in one of them', async () => {
-    expect((await fit(record(KITCHEN.replace('\n0.5,', '\nhalf,')))).body).toMatchObject({ row: 7, column: 'time' });
+    expect((await postProfile(record(KITCHEN.replace('\n0.5,', '\nhalf,')))).body).toMatchObject({ row: 7, column: 'time' });
   });
 
   it('takes the units that a header does not name, and columns in another order', async () => {
     const bare = changed(([t = '', v = '', i = '']) => [i, t, 'x', v], '').slice(1);
     const stated = { units: { time: 'ms', voltage: 'V', current: 'mA' }, columns: { time: 1, voltage: 3, current: 0 } };
-    const { status, body } = await fit(record(bare, { ...stated, ratedPower_W: 6 }));
+    const { status, body } = await postProfile(record(bare, { ...stated, ratedPower_W: 6 }));
     expect([status, body.form]).toEqual([200, 'reservoir']);
   });
 
   it('refuses a record that no lamp draws, with the residual and why', async () => {
     const points = Array.from({ length: 180 }, (_, phase_deg) => ({ phase_deg, current_mA: phase_deg > 120 ? 40 : 0 }));
-    const { status, body } = await fit({ kind: 'phase-table', voltage_V: 230, frequency_Hz: 50, points });
+    const { status, body } = await postProfile({ kind: 'phase-table', voltage_V: 230, frequency_Hz: 50, points });
     expect(status).toBe(422);
     expect(body).toMatchObject({ type: 'urn:holdfast:problem:profile-not-fitted', limit_pct: 15 });
     expect(body.residual_pct).toBeGreaterThan(15);
@@ -105,11 +105,14 @@ describe('POST /v1/profiles', () => {
 
   it('refuses a bad body by its places', async () => {
     const flat = { ...EXAMPLE_PROFILE, points: EXAMPLE_PROFILE.points.map((point) => ({ ...point, current_mA: 0 })) };
-    expect((await fit(flat)).body).toMatchObject({
+    expect((await postProfile(flat)).body).toMatchObject({
       status: 400,
       issues: [{ path: 'points', message: expect.stringMatching(/every point is 0/) }],
     });
-    expect((await fit({ kind: 'scope-record' })).body).toMatchObject({ status: 400, issues: [{ path: 'csv' }] });
-    expect((await fit(record(KITCHEN, { units: { time: 'h' } }))).body).toMatchObject({ status: 400, issues: [{ path: 'units.time' }] });
+    expect((await postProfile({ kind: 'scope-record' })).body).toMatchObject({ status: 400, issues: [{ path: 'csv' }] });
+    expect((await postProfile(record(KITCHEN, { units: { time: 'h' } }))).body).toMatchObject({
+      status: 400,
+      issues: [{ path: 'units.time' }],
+    });
   });
 });
