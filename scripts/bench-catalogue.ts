@@ -38,6 +38,7 @@ const [rows, few, rounds, seconds, requests] = [values.rows, values.few, values.
 ];
 
 const folder = values.keep ?? mkdtempSync(join(tmpdir(), 'holdfast-bench-'));
+const services: ServiceProcess[] = [];
 try {
   console.log(machineLine());
   const many = join(folder, 'many');
@@ -46,11 +47,14 @@ try {
     [small, few],
     [many, rows],
   ]);
-  const services = [await startService(small), await startService(many)] as const;
-  await compareThroughput(services[1]);
-  await compareLatency(services);
-  for (const service of services) await service.stop();
+  const atFew = await startService(small);
+  services.push(atFew);
+  const atMany = await startService(many);
+  services.push(atMany);
+  await compareThroughput(atMany);
+  await compareLatency([atFew, atMany]);
 } finally {
+  for (const service of services) await service.stop();
   if (values.keep === undefined) rmSync(folder, { recursive: true, force: true });
 }
 
@@ -81,33 +85,36 @@ async function compareThroughput({ address, pid }: ServiceProcess): Promise<void
 
   const rounds304 = ['if-none-match', await tagOf(badge)].join('=');
   const verdict304 = ['if-none-match', await tagOf(verdict)].join('=');
-  const contests = [
-    { name: `badge, ${badgeSize} bytes`, url: badge, status: 200, headers: [], against: 0, least: 0.7 },
-    { name: `verdict, ${verdictSize} bytes`, url: verdict, status: 200, headers: [], against: 1, least: 0.7 },
-    { name: 'badge, 304', url: badge, status: 304, headers: [rounds304], against: 0, least: 0.85 },
-    { name: 'verdict, 304', url: verdict, status: 304, headers: [verdict304], against: 1, least: 0.85 },
-  ];
-  console.log(
-    `\nRequests a second, ${rounds} rounds of ${seconds} s in turns, 10 connections from a process of its own: median (least to most)`,
-  );
-  for (const { url, status, headers, against } of contests) {
-    await loadOn(url, pid, 2, status, headers);
-    await loadOn(`${bare.address}/${against}`, bare.pid, 2, 200);
-  }
-  for (const { name, url, status, headers, against, least } of contests) {
-    const turns: (readonly [ours: Load, bare: Load])[] = [];
-    for (let round = 0; round < rounds; round += 1) {
-      const bareLoad = await loadOn(`${bare.address}/${against}`, bare.pid, seconds, 200);
-      turns.push([await loadOn(url, pid, seconds, status, headers), bareLoad]);
-    }
-    const rate = spreadOf(turns.map(([ours, theirs]) => ours.perSecond / theirs.perSecond));
-    const effort = spreadOf(turns.map(([ours, theirs]) => theirs.processor_us / ours.processor_us));
+  try {
+    const contests = [
+      { name: `badge, ${badgeSize} bytes`, url: badge, status: 200, headers: [], against: 0, least: 0.7 },
+      { name: `verdict, ${verdictSize} bytes`, url: verdict, status: 200, headers: [], against: 1, least: 0.7 },
+      { name: 'badge, 304', url: badge, status: 304, headers: [rounds304], against: 0, least: 0.85 },
+      { name: 'verdict, 304', url: verdict, status: 304, headers: [verdict304], against: 1, least: 0.85 },
+    ];
     console.log(
-      `  ${name.padEnd(24)} ${spread(turns.map(([ours]) => ours.perSecond)).padEnd(28)} bare ${spread(turns.map(([, theirs]) => theirs.perSecond)).padEnd(28)} ` +
-        `ratio ${percents(rate)}, wanted ${percent(least)}: ${rate.median >= least ? 'met' : 'MISSED'}; by processor time ${percents(effort)}`,
+      `\nRequests a second, ${rounds} rounds of ${seconds} s in turns, 10 connections from a process of its own: median (least to most)`,
     );
+    for (const { url, status, headers, against } of contests) {
+      await loadOn(url, pid, 2, status, headers);
+      await loadOn(`${bare.address}/${against}`, bare.pid, 2, 200);
+    }
+    for (const { name, url, status, headers, against, least } of contests) {
+      const turns: (readonly [ours: Load, bare: Load])[] = [];
+      for (let round = 0; round < rounds; round += 1) {
+        const bareLoad = await loadOn(`${bare.address}/${against}`, bare.pid, seconds, 200);
+        turns.push([await loadOn(url, pid, seconds, status, headers), bareLoad]);
+      }
+      const rate = spreadOf(turns.map(([ours, theirs]) => ours.perSecond / theirs.perSecond));
+      const effort = spreadOf(turns.map(([ours, theirs]) => theirs.processor_us / ours.processor_us));
+      console.log(
+        `  ${name.padEnd(24)} ${spread(turns.map(([ours]) => ours.perSecond)).padEnd(28)} bare ${spread(turns.map(([, theirs]) => theirs.perSecond)).padEnd(28)} ` +
+          `ratio ${percents(rate)}, wanted ${percent(least)}: ${rate.median >= least ? 'met' : 'MISSED'}; by processor time ${percents(effort)}`,
+      );
+    }
+  } finally {
+    bare.stop();
   }
-  bare.stop();
 }
 
 async function compareLatency(services: readonly [ServiceProcess, ServiceProcess]): Promise<void> {

@@ -1,4 +1,5 @@
 import { describe, expect, it } from 'vitest';
+import { readyAnswers } from '../../server/ready-answers.ts';
 import { listenOnAnyPort, testApp } from '../support/server-app.ts';
 import { dimmerEntry, lampEntry, send } from '../support/server-entries.ts';
 import { CANNED_JUDGEMENT, fakeSimulation } from '../support/server-fake-simulation.ts';
@@ -84,5 +85,24 @@ describe('an answer that is ready', () => {
     await ask(BADGE);
     app.isStopping = true;
     expect(await ask(BADGE)).toMatchObject({ status: 503, headers: { connection: 'close' } });
+  });
+
+  it('makes room for others once all of them weigh too much, the one not asked for longest first', () => {
+    const ready = readyAnswers(10_000);
+    const ask = (url: string) => {
+      const written: number[] = [];
+      const response = { writeHead: (status: number) => void written.push(status), end: () => undefined };
+      return ready.answer({ method: 'GET', url, headers: {} } as never, response as never)?.status;
+    };
+    const give = (url: string) => {
+      const reply = { header: () => reply, type: () => reply, code: () => reply, send: () => reply, getHeaders: () => ({}) };
+      const request = { raw: { url }, headers: {}, routeOptions: { url } };
+      ready.send(request as never, reply as never, { type: 'text/plain', text: 'x'.repeat(1_000), holds: () => true });
+    };
+    for (const url of ['/a', '/b', '/c']) give(url);
+    expect([ask('/a'), ask('/b'), ask('/c')]).toEqual([200, 200, 200]);
+    ask('/a');
+    give('/d');
+    expect([ask('/a'), ask('/b'), ask('/c'), ask('/d')]).toEqual([200, undefined, 200, 200]);
   });
 });
