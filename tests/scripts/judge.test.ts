@@ -113,6 +113,6 @@ describe('refusing on the command line', () => {
     const points = Array.from({ length: 181 }, (_, phase_deg) => ({ phase_deg, current_mA: phase_deg % 36 < 18 ? 60 : 5 }));
     const load = { kind: 'phase-table', voltage_V: 230, frequency_Hz: 50, points };
     const asked = { ...JSON.parse(landing()), lamps: [{ count: 1, lamp: { load } }] };
-    await expectRefused([fileHolding(JSON.stringify(asked))], 'lamps[0].lamp.load', '15 %');
+    await expectRefused([fileHolding(JSON.stringify(asked))], 'lamps[0].lamp', 'more than 15.0 %');
   });
 });
