@@ -8,7 +8,9 @@ export function settlingLines(found: Verdict['wouldSettle']): string[] {
   if (found === null) return [];
   if (found.kind === 'circuit') return wrap(`Ask the maker of the lamps for ${found.ask}.`, '  - ');
   const { path, what, threshold, gradeBelow, gradeAbove, corner, measure, alsoOpen, assumed } = found;
-  const turns = `It is ${gradeBelow} below and ${gradeAbove} above ${round(threshold.low)} to ${round(threshold.high)} (${corner}); ${round(assumed)} was assumed.`;
+  const unit = path.slice(path.lastIndexOf('_') + 1);
+  const range = `${round(threshold.low)} to ${round(threshold.high)} ${unit}`;
+  const turns = `It is ${gradeBelow} below and ${gradeAbove} above ${range} (${corner}); ${round(assumed)} ${unit} was assumed.`;
   return [
     ...wrap(`Measure ${what} and give it as ${path}. ${turns}`, '  - '),
     ...wrap(measure, '  - '),

@@ -58,6 +58,9 @@ export const LEAST_LATCHING = 1e-3;
 export const MOST_LATCHING = 1;
 /** factor between the latching currents first tried on a ratio that no other gives a hint for */
 export const LADDER_RATIO = 4;
+/** step of that search where it comes down from a current that fails on the way down of the dial: currents that do over less than this
+ * can be passed over */
+export const DESCENT_RATIO = 1.08;
 /** a point is found once the smallest current known to fail is within this factor of it: finer than such currents are ever stated */
 export const REQUIREMENT_RATIO = 1.01;
 /** share of a point's currents at which it is checked that smaller ones do as well */

@@ -10,7 +10,15 @@ import type { CornerInputs, CornerName, JudgeOptions, Requirement, RequirementPo
 import { cornersOf } from './corners.ts';
 import { failsOnTheWayUp, trialPositions } from './dial-trial.ts';
 import { EffortTally } from './effort.ts';
-import { LADDER_RATIO, LEAST_LATCHING, MOST_LATCHING, PROBE_BELOW, REQUIREMENT_RATIO, REQUIREMENT_RATIOS } from './judgement-figures.ts';
+import {
+  DESCENT_RATIO,
+  LADDER_RATIO,
+  LEAST_LATCHING,
+  MOST_LATCHING,
+  PROBE_BELOW,
+  REQUIREMENT_RATIO,
+  REQUIREMENT_RATIOS,
+} from './judgement-figures.ts';
 import { checkJudgeExtras } from './options-check.ts';
 import { type JudgedCorner, judgeCorner, overCorners } from './over-corners.ts';
 import { stopCause } from './stop-cause.ts';
@@ -74,14 +82,32 @@ class Ray {
   edge(fine: number): number | null {
     let floor = fine;
     while (floor >= LEAST_LATCHING) {
-      let low = floor;
-      while (this.failing !== null && this.failing.at / low > REQUIREMENT_RATIO) {
-        const middle = Math.sqrt(low * this.failing.at);
-        if (this.looksFine(middle, this.failing.corner)) low = middle;
-      }
-      if (this.does(low, this.failing?.corner)) return low;
-      // another corner, or the way down, fails sooner: now below this one
-      if (low === floor) floor /= LADDER_RATIO;
+      const looked = this.failing?.corner;
+      const low = this.narrow(floor, (at, corner) => this.looksFine(at, corner));
+      if (this.does(low, looked)) return low;
+      // the way up misses what fails on the way down: from here on the whole dial is asked, from above, for the largest current that does
+      const below = low > floor && this.failing?.corner === looked ? this.descend(floor) : null;
+      if (below !== null) return this.narrow(below, (at, corner) => this.does(at, corner));
+      // another corner fails sooner: now below this one
+      if (low === floor || this.failing?.corner === looked) floor /= LADDER_RATIO;
+    }
+    return null;
+  }
+
+  /** the largest current found between one that is fine and the failing one above it, by halving; no finer than it is stated */
+  private narrow(fine: number, isFine: (at: number, corner: CornerName) => boolean): number {
+    let low = fine;
+    while (this.failing !== null && this.failing.at / low > REQUIREMENT_RATIO) {
+      const middle = Math.sqrt(low * this.failing.at);
+      if (isFine(middle, this.failing.corner)) low = middle;
+    }
+    return low;
+  }
+
+  /** the first current that does on the way down from the failing one, no lower than `floor`; null where none was met */
+  private descend(floor: number): number | null {
+    for (let at = (this.failing?.at ?? 0) / DESCENT_RATIO; at >= floor; at /= DESCENT_RATIO) {
+      if (this.does(at, this.failing?.corner)) return at;
     }
     return null;
   }
