@@ -62,6 +62,24 @@ describe('judging from the command line', () => {
     expect(withIt.stdout).toBe(without.stdout);
   });
 
+  it('adds remedies, counts and the requirement where they are asked for, and takes the file for the rest', async () => {
+    const attic = `${EXAMPLES}attic-stairs.json`;
+    const [report, json] = await Promise.all([
+      runJudge(['--remedies', '--counts', '1-2', '--requirement', attic]),
+      runJudge(['--remedies', '--counts', '1-2', '--requirement', '--json', attic]),
+    ]);
+    expect([report.code, json.code]).toEqual([0, 0]);
+    const { requirement, ...printed } = JSON.parse(json.stdout);
+    expect(verdict.parse(printed)).toEqual(printed);
+    expect(printed.pairing.options).toMatchObject({ remedies: true, lampCount: { from: 1, to: 2, group: 0 } });
+    expect(printed.lampCounts.counts).toHaveLength(2);
+    const words = report.stdout.replace(/\s+/g, ' ');
+    for (const title of ['Remedies', 'How many lamps', 'What dimmer would do']) expect(report.stdout).toContain(`\n${title}\n`);
+    for (const { detail } of printed.remedies.found) expect(words).toContain(detail);
+    expect(words).toContain(printed.lampCounts.summary);
+    expect(words).toContain(requirement.summary);
+  });
+
   it('explains itself with --help and ends with 0', async () => {
     const run = await runJudge(['--help']);
     expect(run).toMatchObject({ code: 0, stderr: '' });
@@ -73,6 +91,8 @@ describe('refusing on the command line', () => {
   it('shows the usage where no file, two files or an unknown option is given', async () => {
     await expectRefused([], 'name the file that holds the pairing', 'Usage: npm run judge');
     await expectRefused(['a.json', 'b.json'], 'one file at a time; these are 2: a.json b.json', 'Usage: npm run judge');
+    await expectRefused(['--counts', '3', 'a.json'], '--counts takes two numbers of lamps like 1-12, not 3');
+    await expectRefused(['--counts', '5-2', 'a.json'], '--counts 5-2: must be from 5');
     await expectRefused(['--jsn', 'a.json'], "Unknown option '--jsn'", 'Usage: npm run judge');
   });
 

@@ -21,7 +21,7 @@ describe('the README', () => {
 
   it('shows what its examples answer when they are run', async () => {
     const examples = readmeExamples(readme);
-    expect(examples.map(({ language }) => language)).toEqual(['json', 'text']);
+    expect(examples.map(({ language }) => language)).toEqual(['json', 'text', 'text', 'text', 'text', 'text']);
     const address = await service();
     let refreshed = readme;
     for (const { command, language, answer, from, to } of examples.toReversed()) {

@@ -20,12 +20,21 @@ async function judged(name: string, change: (asked: AskedPairing) => AskedPairin
 const statesOf = (verdict: Verdict): ReadonlySet<string> => new Set(verdict.dial.map((row) => row.state));
 
 describe('the example pairings of the guest house', () => {
-  it('are these five, and each does what the README says of it', async () => {
+  it('are these eight, and each does what the README says of it', async () => {
     expect(
       readdirSync(EXAMPLES)
         .filter((name) => name.endsWith('.json'))
         .sort(),
-    ).toEqual(['attic-stairs.json', 'bedroom.json', 'breakfast-room.json', 'entrance-hall.json', 'landing.json']);
+    ).toEqual([
+      'attic-stairs.json',
+      'bedroom.json',
+      'breakfast-room.json',
+      'dining-room.json',
+      'entrance-hall.json',
+      'kitchen.json',
+      'landing.json',
+      'study.json',
+    ]);
 
     const breakfastRoom = await judged('breakfast-room');
     expect(breakfastRoom.grade).toBe('suitable');
@@ -45,6 +54,42 @@ describe('the example pairings of the guest house', () => {
     expect([...statesOf(atticStairs)]).toEqual(['dark']);
   });
 
+  it('show what would settle a grade: a value to measure in the study, a circuit to ask for in the dining room', async () => {
+    const study = await judged('study');
+    expect(study.grade).toBe('undetermined');
+    expect(study.wouldSettle).toMatchObject({ kind: 'value', path: 'lamps[0].lamp.input.capacitance_nF', assumed: 47 });
+    // the same lamps with the value measured, on either side of the threshold
+    const threshold = study.wouldSettle?.kind === 'value' ? study.wouldSettle.threshold : { low: 0, high: 0 };
+    const measured = async (capacitance_nF: number) => {
+      const verdict = await judged('study', (asked) => ({
+        ...asked,
+        lamps: asked.lamps.map(({ count, lamp }) => ({ count, lamp: { ...lamp, input: { capacitance_nF } } })),
+        options: { corners: 'all' },
+      }));
+      return verdict.corners.some(({ grade }) => grade === 'unsuitable');
+    };
+    expect([await measured(threshold.low), await measured(threshold.high)]).toEqual([false, true]);
+
+    const diningRoom = await judged('dining-room');
+    expect(diningRoom.grade).toBe('undetermined');
+    expect(diningRoom.wouldSettle?.kind).toBe('circuit');
+    expect(new Set(diningRoom.variants.map(({ grade }) => grade))).toContain('unsuitable');
+    expect(diningRoom.variants.filter(({ shown }) => shown)).toHaveLength(1);
+    expect(diningRoom.lampClasses[0]?.candidates.map(({ name }) => name)).toEqual(diningRoom.variants.map(({ name }) => name));
+  });
+
+  it('show the lamp that was fitted to a record, with its residual, and judge it with what no record tells', async () => {
+    const kitchen = await judged('kitchen');
+    expect(kitchen.grade).toBe('suitable');
+    const [fit] = kitchen.fits;
+    expect(fit).toMatchObject({ path: 'lamps[0].lamp', form: 'reservoir', lamp: { load: { kind: 'reservoir' } } });
+    expect(fit?.residual_pct).toBeLessThan(1);
+    expect(kitchen.variants.length).toBeGreaterThan(1);
+    expect(kitchen.assumptions).toContainEqual({ path: 'lamps[0].lamp.load.power_W', value: 'constant', basis: expect.any(String) });
+    const report = terminalReport(kitchen, plain).replace(/\s+/g, ' ');
+    expect(report).toMatch(/fitted as reservoir: 4\.7 uF, 26\.\d Ohm, [56]\.?\d* W, 22 nF across the input, residual 0\.\d+ %/);
+  });
+
   it('show a mixed circuit that its filament lamp keeps steady: without it the same lamps re-fire', async () => {
     const hall = await judged('entrance-hall');
     expect(hall.pairing.lamps.map(({ lamp }) => lamp.load.kind)).toEqual(['iv-table', 'reservoir', 'resistive']);
@@ -61,6 +106,9 @@ describe('the report for a terminal', () => {
     const verdicts = [
       await judged('landing'),
       await judged('entrance-hall'),
+      await judged('dining-room'),
+      await judged('study'),
+      await judged('landing', (asked) => ({ ...asked, options: { remedies: true, lampCount: { from: 1, to: 3 } } })),
       await judged('breakfast-room', (asked) => ({ ...asked, ...fine })),
     ];
     for (const verdict of verdicts) {
