@@ -1,11 +1,27 @@
 /** Converts a profile from the wire to the question that a thread answers, and its answer back. Nothing is judged and nothing stored. */
 import type { FitGround, ScopeTable } from '../../model/index.ts';
-import type { Profile, ProfileRequest } from '../schemas/profile.ts';
+import type { Profile, ProfileQuery, ProfileRequest } from '../schemas/profile.ts';
 import type { FittedProfile, ProfileQuestion } from '../simulation/profile-fitting.ts';
 import { fitToWire } from '../verdicts/lamp-to-wire.ts';
 import { defaultFor, PHASE_TABLE_DEFAULTS, PHASE_TABLE_INPUT_DEFAULTS } from '../verdicts/pairing-defaults.ts';
 import { tableToModel } from '../verdicts/pairing-to-model.ts';
 import { shown } from '../verdicts/shown-figures.ts';
+
+/** What the address says goes before what the body says. */
+export function withQuery(asked: ProfileRequest, { units, columns, ...ground }: ProfileQuery): ProfileRequest {
+  const stated = { ...asked, ...ground };
+  if (stated.kind === 'phase-table') return stated;
+  return {
+    ...stated,
+    ...(units === undefined ? {} : { units: byColumn(units, (unit) => unit) as typeof stated.units }),
+    ...(columns === undefined ? {} : { columns: byColumn(columns, Number) }),
+  };
+}
+
+function byColumn<T>(list: string, read: (text: string) => T): { readonly time: T; readonly voltage: T; readonly current: T } {
+  const [time = '', voltage = '', current = ''] = list.split(',');
+  return { time: read(time), voltage: read(voltage), current: read(current) };
+}
 
 export function profileQuestion(asked: ProfileRequest): ProfileQuestion {
   if (asked.kind === 'phase-table') {

@@ -4,6 +4,7 @@ import { PHASE_TABLE_INPUT_DEFAULTS } from '../verdicts/pairing-defaults.ts';
 import { fitFields } from './found-lamp.ts';
 import { minimumVoltageAskedOfTable, phasePoints, phaseTableFields } from './lamp-load.ts';
 import { choice, quantity, quantityOrNull, wholeNumber } from './quantities.ts';
+import { numberText } from './url-values.ts';
 
 const groundFields = {
   ratedPower_W: quantityOrNull('W', 0.1, 2000, {
@@ -16,6 +17,13 @@ const groundFields = {
   }).optional(),
   minimumVoltage_V: minimumVoltageAskedOfTable.optional(),
 };
+
+const ordered = (of: readonly (readonly string[])[]) => new RegExp(`^(${of.map((choices) => choices.join('|')).join('),(')})$`);
+const UNITS = [
+  ['s', 'ms', 'us', 'ns'],
+  ['V', 'mV', 'kV'],
+  ['A', 'mA', 'uA'],
+] as const;
 
 const place = (of: string) => wholeNumber(0, 99, { is: `Place of the ${of} column, counted from 0` }).optional();
 const unit = <const U extends readonly [string, ...string[]]>(units: U, of: string) =>
@@ -53,9 +61,9 @@ export const profileRequest = z
       csv,
       units: z
         .strictObject({
-          time: unit(['s', 'ms', 'us', 'ns'], 'time'),
-          voltage: unit(['V', 'mV', 'kV'], 'voltage'),
-          current: unit(['A', 'mA', 'uA'], 'current'),
+          time: unit(UNITS[0], 'time'),
+          voltage: unit(UNITS[1], 'voltage'),
+          current: unit(UNITS[2], 'current'),
         })
         .optional()
         .describe('Units that no header names.'),
@@ -67,6 +75,23 @@ export const profileRequest = z
     }),
   ])
   .meta({ id: 'ProfileRequest', description: 'What a lamp was recorded to draw from undimmed mains.', examples: [EXAMPLE_PROFILE] });
+
+/** What a URL can say of a record, for one that is sent as CSV by itself. It goes before what the body says. */
+export const profileQuery = z
+  .strictObject({
+    ratedPower_W: numberText(0.1, 2000, 'Rated power of the lamp.'),
+    seriesResistance_Ohm: numberText(0.1, 10_000, 'Resistor before the input capacitor.'),
+    minimumVoltage_V: numberText(1, 400, 'Voltage below which a reservoir’s drain stops.'),
+    units: z
+      .string()
+      .regex(ordered(UNITS), { error: 'must be units of time, voltage and current, as ms,V,mA' })
+      .describe('Units of time, voltage and current that no header names, as `ms,V,mA`.'),
+    columns: z
+      .string()
+      .regex(/^\d{1,2},\d{1,2},\d{1,2}$/, { error: 'must be places of time, voltage and current counted from 0, as 0,1,2' })
+      .describe('Places of time, voltage and current that no header names, counted from 0, as `0,1,2`.'),
+  })
+  .partial();
 
 const scopeFound = z
   .object({
@@ -86,5 +111,6 @@ export const profile = z
   .object({ ...fitFields, scope: scopeFound.nullable().describe('Null where a phase table was sent.') })
   .meta({ id: 'Profile', description: 'The lamp that was fitted to a record. Nothing of it is stored.' });
 
+export type ProfileQuery = z.output<typeof profileQuery>;
 export type ProfileRequest = z.output<typeof profileRequest>;
 export type Profile = z.output<typeof profile>;

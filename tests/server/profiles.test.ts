@@ -95,6 +95,33 @@ describe('POST /v1/profiles', () => {
     expect([status, body.form]).toEqual([200, 'reservoir']);
   });
 
+  it('takes a record as text/csv by itself, with the address for what it does not say', async () => {
+    const { app } = await testApp();
+    const send = (url: string, payload: string) => app.inject({ method: 'POST', url, headers: { 'content-type': 'text/csv' }, payload });
+    const sent = await send('/v1/profiles?ratedPower_W=6', KITCHEN);
+    expect(sent.statusCode).toBe(200);
+    expect(sent.json()).toEqual((await postProfile(record(KITCHEN, { ratedPower_W: 6 }))).body);
+    const bare = KITCHEN.slice(KITCHEN.indexOf('\n') + 1);
+    expect((await send('/v1/profiles?units=ms,V,mA&columns=0,1,2', bare)).statusCode).toBe(200);
+    const refused = await send('/v1/profiles?units=mA,ms,V', bare);
+    expect([refused.statusCode, refused.json().issues[0].path]).toEqual([400, 'units']);
+  });
+
+  it('takes 8 MiB and no more', async () => {
+    const rows = `${KITCHEN}${'0,0,0\n'.repeat(1_400_000)}`;
+    const answer = await postProfile(record(rows));
+    expect([answer.status, answer.body.detail]).toEqual([413, 'Send at most 8,388,608 bytes.']);
+  });
+
+  it('refuses a record of more rows than it reads', async () => {
+    const answer = await postProfile(record(`${KITCHEN}${'0,0,0\n'.repeat(200_000)}`));
+    expect(answer.body).toMatchObject({
+      status: 422,
+      fault: 'unreadable-record',
+      detail: expect.stringContaining('more than 200000 rows'),
+    });
+  });
+
   it('refuses a record that no lamp draws, with the residual and why', async () => {
     const points = Array.from({ length: 180 }, (_, phase_deg) => ({ phase_deg, current_mA: phase_deg > 120 ? 40 : 0 }));
     const { status, body } = await postProfile({ kind: 'phase-table', voltage_V: 230, frequency_Hz: 50, points });
