@@ -90,14 +90,15 @@ function walkFor(prepare: Prepare, filter: EntryFilter, values: Values): string 
   }
   if (filter.tag !== undefined) return `SELECT id FROM entry_tags WHERE kind = @kind AND tag = @tag ${inOrder}`;
 
-  const isFew = (hits: string) =>
-    (prepare<{ hits: number }>(`SELECT count(*) AS hits FROM (SELECT 1 ${hits} LIMIT ${FEW + 1})`).get(values)?.hits ?? 0) <= FEW;
-  const byWord = filter.words.map((_, index) => `FROM entry_words WHERE kind = @kind AND ${WORD_RANGE(index)}`).find(isFew);
-  if (byWord !== undefined) return `SELECT DISTINCT id ${byWord} ${inOrder}`;
-  if (filtersPower(filter)) {
-    const byPower = `FROM entries INDEXED BY entries_by_rated_power WHERE kind = @kind AND ${POWER_RANGE} AND deleted_at IS NULL`;
-    if (isFew(byPower)) return `SELECT id ${byPower} ${inOrder}`;
-  }
+  const hitsOf = (hits: string) =>
+    prepare<{ hits: number }>(`SELECT count(*) AS hits FROM (SELECT 1 ${hits} LIMIT ${FEW + 1})`).get(values)?.hits ?? 0;
+  const power = `FROM entries INDEXED BY entries_by_rated_power WHERE kind = @kind AND ${POWER_RANGE} AND deleted_at IS NULL`;
+  const ways = [
+    ...filter.words.map((_, index) => `FROM entry_words WHERE kind = @kind AND ${WORD_RANGE(index)}`),
+    ...(filtersPower(filter) ? [power] : []),
+  ].map((from) => ({ from, hits: hitsOf(from) }));
+  const fewest = ways.toSorted((a, b) => a.hits - b.hits)[0];
+  if (fewest !== undefined && fewest.hits <= FEW) return `SELECT DISTINCT id ${fewest.from} ${inOrder}`;
   return `SELECT id FROM entries WHERE kind = @kind AND deleted_at IS NULL ${inOrder}`;
 }
 

@@ -163,7 +163,8 @@ export function judgedPairs(record: RecordDatabase): JudgedPairs {
 
     let circuitRow = 0;
     for (const part of parts) {
-      const { lastInsertRowid } = insert.run({ ...part, ...verdict, circuitRow, plain: plain ? 1 : 0 });
+      const isPair = part.dimmer !== null && part.lamp !== null;
+      const { lastInsertRowid } = insert.run({ ...part, ...verdict, circuitRow, plain: plain && isPair ? 1 : 0 });
       if (circuitRow !== 0) continue;
       circuitRow = Number(lastInsertRowid);
       pointAtItself.run(circuitRow);

@@ -106,10 +106,10 @@ function walkText(kind: EntryKind, filter: PartnerFilter): string {
     ...CHECKS.flatMap(([field, check]) => (filter[field] === undefined ? [] : [check])),
     `NOT ${NEWER}`,
   ].join(' AND ');
-  const ofPair = [HELD('p'), `p.${PARTNER_OF[kind]} IS NOT NULL`, ...(filter.lampCount === undefined ? [] : ['p.lamp_count = @lampCount'])];
-  // AND would evaluate both its sides; a CASE leaves the verdict unread where the pair itself does not hold.
+  const ofPair = [...(filter.lampCount === undefined ? [] : ['p.lamp_count = @lampCount']), 'p.plain = 1', 'p.stale = 0'];
+  // AND would evaluate both its sides; a CASE reads no row where the index says enough, and no verdict where the pair does not hold.
   return `SELECT p.created_at, p.verdict, p.seq,
-      CASE WHEN ${ofPair.join(' AND ')} THEN (SELECT ${ofVerdict} FROM verdicts v WHERE v.seq = p.verdict) ELSE 0 END AS hit
+      ${ofPair.reduceRight((rest, check) => `CASE WHEN ${check} THEN ${rest} ELSE 0 END`, `(SELECT ${ofVerdict} FROM verdicts v WHERE v.seq = p.verdict)`)} AS hit
     FROM judged_pairs p
     WHERE p.${kind} = (SELECT seq FROM entries WHERE kind = '${kind}' AND id = @id)
       AND (p.created_at, p.verdict, p.seq) < (@at, @verdict, @seq)

@@ -67,8 +67,9 @@ export function readyAnswers(mostBytes = MOST_BYTES): ReadyAnswers {
       const tag = tagOf(bytes);
       reply.header('etag', tag);
       const route = request.routeOptions.url ?? 'none';
-      const headersOf304 = headersIn(reply);
-      const headers = [...headersOf304, 'content-type', type, 'content-length', String(bytes.length)];
+      const all = headersIn(reply);
+      const headers = [...all.flat(), 'content-type', type, 'content-length', String(bytes.length)];
+      const headersOf304 = all.filter(([name]) => NEEDED_WITH_304.has(name)).flat();
       keep(request.raw.url ?? '', { route, bytes, tag, headers, headersOf304, holds });
       if (matchesTag(request.headers['if-none-match'], tag)) reply.code(304).send();
       else reply.type(type).send(bytes);
@@ -93,9 +94,12 @@ export function readyAnswers(mostBytes = MOST_BYTES): ReadyAnswers {
   };
 }
 
-function headersIn(reply: FastifyReply): readonly string[] {
+/** A client that has the answer has its other headers too (RFC 9110, 15.4.5); these it may need to use what it has, or to keep it longer. */
+const NEEDED_WITH_304 = new Set(['etag', 'cache-control', 'vary', 'access-control-allow-origin', 'cross-origin-resource-policy']);
+
+function headersIn(reply: FastifyReply): readonly (readonly [name: string, value: string])[] {
   const headers = Object.entries(reply.getHeaders()).filter(([name, value]) => name !== 'x-request-id' && value !== undefined);
-  return headers.flatMap(([name, value]) => [name, String(value)]);
+  return headers.map(([name, value]) => [name, String(value)]);
 }
 
 /** Puts ready answers before the application's own listener, from when it is ready until it is told to stop. */

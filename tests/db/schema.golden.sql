@@ -12,11 +12,11 @@ CREATE INDEX import_rows_by_entry ON import_rows (import, id) WHERE id IS NOT NU
 
 CREATE INDEX imports_by_state ON imports (state, id);
 
-CREATE INDEX judged_pairs_by_dimmer ON judged_pairs (dimmer, created_at, verdict);
+CREATE INDEX judged_pairs_by_dimmer ON judged_pairs (dimmer, created_at, verdict, lamp_count, plain);
 
-CREATE INDEX judged_pairs_by_lamp ON judged_pairs (lamp, created_at, verdict);
+CREATE INDEX judged_pairs_by_lamp ON judged_pairs (lamp, created_at, verdict, lamp_count, plain);
 
-CREATE INDEX judged_pairs_by_pair ON judged_pairs (dimmer, lamp, created_at, verdict);
+CREATE INDEX judged_pairs_by_pair ON judged_pairs (dimmer, lamp, created_at, verdict, lamp_count, plain, stale);
 
 CREATE INDEX judged_pairs_of_circuit ON judged_pairs (circuit_row);
 
