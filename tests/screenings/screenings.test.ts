@@ -1,4 +1,5 @@
 import { describe, expect, it } from 'vitest';
+import type { RecordDatabase } from '../../db/record.ts';
 import { putEntry } from '../../server/catalogue/entries.ts';
 import { embeddedQueue } from '../../server/queue/embedded-queue.ts';
 import type { AskedScreening } from '../../server/schemas/screening.ts';
@@ -16,6 +17,19 @@ async function ask({ screenings }: TestScreenings, asked: AskedScreening = cheap
   const answer = await screenings.ask(asked);
   if (!answer.ok) throw new Error(`It was to be accepted: ${JSON.stringify(answer.issues)}`);
   return answer.screening;
+}
+
+const pagesOf = (record: RecordDatabase) => record.pragma('page_count', { simple: true }) as number;
+
+/** How many pages of its file a whole screening fills where nothing is in its way. */
+async function pagesTaken(lamps: number, dimmers: number): Promise<number> {
+  const record = temporaryRecord();
+  fillCatalogue(record, lamps, dimmers);
+  const before = pagesOf(record);
+  const service = testScreenings(record, fakeQueue());
+  await ask(service);
+  await service.settled();
+  return pagesOf(record) - before;
 }
 
 describe('a screening', () => {
@@ -153,13 +167,17 @@ describe('a screening', () => {
     const record = temporaryRecord();
     fillCatalogue(record, 20, 20);
     const service = testScreenings(record, fakeQueue());
-    const pages = record.pragma('page_count', { simple: true }) as number;
-    record.pragma(`max_page_count = ${pages + 20}`);
+    const room = Math.floor((await pagesTaken(20, 20)) / 2);
+    expect(room).toBeGreaterThan(2);
+    const fullAt = pagesOf(record) + room;
+    record.pragma(`max_page_count = ${fullAt}`);
     const { id } = await ask(service);
     await expect.poll(async () => (await service.read(id)).state, PATIENCE).toBe('paused');
     const paused = await service.read(id);
     expect(paused.pause).toEqual({ reason: 'disk-full', detail: 'The disk that holds the record is full.' });
+    expect(paused.counts.done).toBeGreaterThan(0);
     expect(paused.counts.toGo).toBeGreaterThan(0);
+    expect(pagesOf(record)).toBeLessThanOrEqual(fullAt);
 
     record.pragma('max_page_count = 1000000');
     await service.settled();
