@@ -112,6 +112,15 @@ export function checkPairing(pairing: Pairing): Issue[] {
     if (!(drive.residualVoltage + drive.gateVoltage < Math.min(drive.breakover.positive, drive.breakover.negative))) {
       c.say('dimmer.drive.residualVoltage', 'with the gate voltage must stay below the breakover voltage, or the diac could not conduct');
     }
+    const least = Math.min(drive.breakover.positive, drive.breakover.negative) - drive.residualVoltage - drive.gateVoltage;
+    const dump = least / (drive.diacResistance + drive.gateResistance);
+    // it would turn off as soon as it has broken over, and break over again at once
+    if (dump > 0 && dump <= drive.diacHoldingCurrent) {
+      c.say(
+        'dimmer.drive.diacHoldingCurrent',
+        `must be below the current that flows at breakover (${dump} A), or the diac could not stay on`,
+      );
+    }
     if (drive.secondSection !== null) {
       c.positive('dimmer.drive.secondSection.resistance', drive.secondSection.resistance);
       c.positive('dimmer.drive.secondSection.capacitance', drive.secondSection.capacitance);

@@ -91,12 +91,26 @@ const timedFields = {
   }),
 };
 
+/** what a current through the diac follows from, besides the breakover */
+const DIAC_OF_ONE_VALUE = {
+  residual_V: DIAC_DEFAULTS.residual_V,
+  gateVoltage_V: DIAC_DEFAULTS.gateVoltage_V,
+  diacResistance_Ohm: DIAC_DEFAULTS.diacResistance_Ohm,
+  gateResistance_Ohm: DIAC_DEFAULTS.gateResistance_Ohm,
+  diacHoldingCurrent_mA: DIAC_DEFAULTS.diacHoldingCurrent_mA,
+};
+
+const shortest = (value: number): string => String(Number(value.toPrecision(3)));
+
 const diacKind = z.literal('diac').describe('A diac discharges the timing capacitor into the gate.');
 const timedKind = z.literal('timed').describe('A controller fires the gate at an angle that the dial sets.');
 
 const askedDiac = withRule(
   z.strictObject({ kind: diacKind, ...z.strictObject(diacFields).partial().shape, secondSection: secondSection.optional() }),
-  reportPowerlessDump,
+  (sent, report) => {
+    reportPowerlessDump(sent, report);
+    reportDiacThatLetsGo(sent, report);
+  },
 );
 const askedTimed = withRule(z.strictObject({ kind: timedKind, ...z.strictObject(timedFields).partial().shape }), reportTimingOutOfOrder);
 const askedRatings = withRule(z.strictObject(ratingsFields).partial(), reportRatingsOutOfOrder);
@@ -162,6 +176,26 @@ function reportPowerlessDump(sent: unknown, report: Report): void {
     report(
       ['residual_V'],
       `with gateVoltage_V (${gate}) must stay below breakover_V (${breakover}): otherwise nothing is left to fire the gate`,
+    );
+    return;
+  }
+}
+
+/** The diac stays on after it has broken over: what then flows is above its holding current, or it would turn off and break over without end. */
+function reportDiacThatLetsGo(sent: unknown, report: Report): void {
+  const given = (field: keyof typeof DIAC_OF_ONE_VALUE): number => numberAt(sent, field) ?? DIAC_OF_ONE_VALUE[field].at230;
+  // a section without a capacitor is a resistor in series with the diac
+  const bare = numberAt(sent, 'secondSection', 'capacitance_nF') === 0 ? (numberAt(sent, 'secondSection', 'resistance_kOhm') ?? 0) : 0;
+  const resistance = given('diacResistance_Ohm') + given('gateResistance_Ohm') + 1e3 * bare;
+  for (const polarity of POLARITIES) {
+    const breakover = readPolarity(valueAt(sent, 'breakover_V') ?? DIAC_DEFAULTS.breakover_V.at230, polarity)?.maximum;
+    const voltage = (breakover ?? 0) - given('residual_V') - given('gateVoltage_V');
+    const flows = (1e3 * voltage) / resistance;
+    // with nothing to flow at all another rule has spoken
+    if (!(flows > 0) || given('diacHoldingCurrent_mA') < flows) continue;
+    report(
+      ['diacHoldingCurrent_mA'],
+      `must be below the current that flows when the diac has broken over, ${shortest(flows)} mA (${shortest(voltage)} V left over ${shortest(resistance)} Ohm): otherwise it turns off at once and cannot fire the gate`,
     );
     return;
   }

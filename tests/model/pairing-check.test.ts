@@ -91,6 +91,7 @@ describe('what is refused', () => {
     ['a snubber of negative resistance', onDimmer({ snubber: { resistance: -1, capacitance: 33e-9 } }), 'dimmer.snubber.resistance'],
     ['a negative interference capacitor', onDimmer({ interferenceCapacitance: -1e-9 }), 'dimmer.interferenceCapacitance'],
     ['timing without a fixed resistor', onDiac({ fixedResistance: 0 }), 'dimmer.drive.fixedResistance'],
+    ['a diac that its own dump cannot keep on', onDiac({ gateResistance: 4700 }), 'dimmer.drive.diacHoldingCurrent'],
     ['a diac that drops as much as it breaks over at', onDiac({ residualVoltage: 31.2 }), 'dimmer.drive.residualVoltage'],
     [
       'a second section of no capacitance',

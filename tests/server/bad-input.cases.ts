@@ -272,6 +272,24 @@ export const BAD_INPUT_CASES: readonly BadInputCase[] = [
     says: /breakover_V \(20\)/,
   },
   {
+    title: 'a diac that turns off at a higher current than its own dump drives',
+    breakIt: (p) => drive(p, { kind: 'diac', gateResistance_Ohm: 4700 }),
+    path: 'dimmer.drive.diacHoldingCurrent_mA',
+    says: /below the current that flows when the diac has broken over, 4\.06 mA \(19\.1 V left over 4710 Ohm\)/,
+  },
+  {
+    title: 'that in the polarity that breaks over lower',
+    breakIt: (p) => drive(p, { kind: 'diac', breakover_V: { positive: 32, negative: 14 }, diacHoldingCurrent_mA: 12 }),
+    path: 'dimmer.drive.diacHoldingCurrent_mA',
+    says: /10 mA \(1\.1 V left over 110 Ohm\)/,
+  },
+  {
+    title: 'that behind a timing section without a capacitor',
+    breakIt: (p) => drive(p, { kind: 'diac', secondSection: { resistance_kOhm: 10, capacitance_nF: 0 } }),
+    path: 'dimmer.drive.diacHoldingCurrent_mA',
+    says: /1\.89 mA \(19\.1 V left over 10100 Ohm\)/,
+  },
+  {
     title: 'a full dial that fires later than a low one',
     breakIt: (p) => drive(p, { kind: 'timed', firingAngleFull_deg: 151 }),
     path: 'dimmer.drive.firingAngleFull_deg',

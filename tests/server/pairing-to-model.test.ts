@@ -124,7 +124,7 @@ describe('converting a pairing to the model', () => {
   it('takes every part whose capacitor is zero for absent, and lets every other zero through', () => {
     const zeros = fullPairing('diac');
     zeros.dimmer.snubber.capacitance_nF = 0;
-    zeros.dimmer.drive.secondSection.capacitance_nF = 0;
+    zeros.dimmer.drive.secondSection = { resistance_kOhm: 1, capacitance_nF: 0 };
     zeros.dimmer.interferenceCapacitance_nF = 0;
     zeros.dimmer.choke = { inductance_mH: 0, resistance_Ohm: 0.2, lossResistance_kOhm: null };
     zeros.dimmer.onVoltage_V = 0;
@@ -143,8 +143,8 @@ describe('converting a pairing to the model', () => {
     expect(pairing.lamps.map(({ lamp }) => lamp.input.damper)).toEqual([null, null, null, null]);
     expect(pairing.lamps.map(({ lamp }) => lamp.input.bleeder?.kind ?? null)).toEqual(['resistor', null, null, null]);
     expect(pairing.dimmer.choke).toEqual({ inductance: 0, resistance: 0.2, lossResistance: null });
-    // the section's 10 kOhm stays, in series with the diac
-    expect(pairing.dimmer.drive).toMatchObject({ secondSection: null, diacResistance: 10_010 });
+    // the section's 1 kOhm stays, in series with the diac
+    expect(pairing.dimmer.drive).toMatchObject({ secondSection: null, diacResistance: 1010 });
   });
 
   it('lets nothing through that the model would refuse, at either end of every range', () => {
