@@ -135,11 +135,11 @@ export interface ValueWouldSettle {
   /** what it is, in words: "the diac's breakover voltage" */
   readonly what: string;
   readonly assumed: number;
-  /** between these two the grade flips at that corner; found by bracketing */
+  /** between these two the grade over all corners flips; found by bracketing */
   readonly threshold: { readonly low: number; readonly high: number };
   readonly gradeBelow: Grade;
   readonly gradeAbove: Grade;
-  /** at which the flip was found */
+  /** the corner that decides on the side that does not work */
   readonly corner: CornerName;
   readonly measure: string;
   /** one plain sentence */

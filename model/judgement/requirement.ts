@@ -176,9 +176,11 @@ function summaryOf(points: readonly RequirementPoint[], complaint: string | null
     return `No latching and holding currents (from ${1e3 * LEAST_LATCHING} mA up) make these lamps suitable on such a dimmer. ${complaint ?? ''}`.trim();
   }
   const milli = (a: number): string => String(Number((1e3 * a).toPrecision(3)));
-  const largest = (pick: (p: RequirementPoint) => number): string => milli(Math.max(...points.map(pick)));
+  const most = (pick: (p: RequirementPoint) => number): number => Math.max(...points.map(pick));
+  const [latching, holding] = [most((p) => p.latchingCurrent), most((p) => p.holdingCurrent)];
+  const atOnce = points.some((p) => p.latchingCurrent * REQUIREMENT_RATIO >= latching && p.holdingCurrent * REQUIREMENT_RATIO >= holding);
   const plain = points.every((p) => p.smallerDoes);
-  return `Look for a dimmer whose latching and holding currents (maxima at 25 degrees C) lie inside these points: at most ${largest((p) => p.latchingCurrent)} mA latching and ${largest((p) => p.holdingCurrent)} mA holding, not both at once. ${
+  return `Look for a dimmer whose latching and holding currents (maxima at 25 degrees C) lie inside these points: at most ${milli(latching)} mA latching and ${milli(holding)} mA holding${atOnce ? '' : ', not both at once'}. ${
     plain
       ? 'At each point the lamps are suitable, with a little more of both currents they are not, and with half of both they are.'
       : 'With half of both currents some points are not suitable: a smaller current is not always better here, so judge the dimmer that is chosen.'

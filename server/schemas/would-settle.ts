@@ -9,10 +9,12 @@ export const wouldSettle = z
       path: z.string().describe('Where the value stands in `pairing`. Its unit, at the end, is that of the figures here.'),
       what: z.string(),
       assumed: z.number(),
-      threshold: z.object({ low: z.number(), high: z.number() }).describe('The grade flips between these two; found by simulation.'),
+      threshold: z
+        .object({ low: z.number(), high: z.number() })
+        .describe('The grade over all corners flips between these two; found by simulation.'),
       gradeBelow: gradeField,
       gradeAbove: gradeField,
-      corner: cornerName.describe('Where the flip was found.'),
+      corner: cornerName.describe('Which decides on the side that does not work.'),
       measure: z.string().describe('How one would find the real value out.'),
       detail: z.string(),
       alsoOpen: z.array(z.string()).describe('Other assumed values that look as if they flipped the grade too.'),

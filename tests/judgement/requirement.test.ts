@@ -79,6 +79,19 @@ describe('the requirement boundary', () => {
     expect(boundaryOf(other, coarse).points).toEqual(boundaryOf(lamps, coarse).points);
   });
 
+  it('says whether the largest of both currents may be had at once', () => {
+    const largest = ({ points, summary }: Requirement) => ({
+      atOnce: points.some((p) =>
+        points.every((q) => p.latchingCurrent >= 0.99 * q.latchingCurrent && p.holdingCurrent >= 0.99 * q.holdingCurrent),
+      ),
+      denied: summary.includes('not both at once'),
+    });
+    // here the holding current decides at every ratio
+    expect(largest(boundaryOf(lamps, coarse))).toEqual({ atOnce: true, denied: false });
+    // fired from the crest on it latches up to 0.996 Vp/R and holds up to 0.52 Vp/R; no ratio that is looked at has both
+    expect(largest(boundaryOf(resistiveLamp(85, 90), NOMINAL))).toEqual({ atOnce: false, denied: true });
+  });
+
   it('says so where no currents do', () => {
     const { points, summary } = boundaryOf(pairing(mains230, dimmer(50, 30), reservoirLamp(8, 4.7e-6, 50), 2), NOMINAL);
     expect(points).toEqual([]);

@@ -49,6 +49,21 @@ describe('a grade that hinges on an assumed value', () => {
     expect([wouldSettle.gradeBelow, wouldSettle.gradeAbove]).toEqual(['unsuitable', 'suitable']);
   });
 
+  it('gives the threshold over every corner where the nominal one, which fails first, works long before the others', () => {
+    // at nominal mains, warm, it latches from 22 degrees on, at low mains in the cold from 30
+    const { grade, corners, wouldSettle } = judged(firedFrom(15), assuming(10, 60));
+    expect([grade, corners.map((c) => [c.name, c.grade])]).toEqual(['undetermined', [['nominal', 'unsuitable']]]);
+    if (wouldSettle?.kind !== 'value') throw new Error('nothing would settle it');
+    const { threshold, gradeBelow, gradeAbove, corner } = wouldSettle;
+    expect(threshold.low).toBeLessThan(LATCHES_FROM + 0.01);
+    expect(threshold.high).toBeGreaterThan(LATCHES_FROM - 0.01);
+    // 1/64 of the way from 15 to 60 degrees
+    expect(threshold.high - threshold.low).toBeLessThanOrEqual(45 / 64 + 1e-9);
+    expect([gradeBelow, gradeAbove, corner]).toEqual(['unsuitable', 'suitable', 'low-mains-cold']);
+    const sure = [threshold.low, threshold.high].map((angle) => judgePairing(firedFrom(angle), ALL_CORNERS));
+    expect(sure.map((o) => o.ok && o.value.grade)).toEqual(['unsuitable', 'suitable']);
+  });
+
   it('is sure where the value cannot lie beyond the threshold', () => {
     expect(judged(firedFrom(40), assuming(32, 60))).toMatchObject({ grade: 'suitable', wouldSettle: null });
     expect(judged(firedFrom(25), assuming(20, 28))).toMatchObject({ grade: 'unsuitable', wouldSettle: null });

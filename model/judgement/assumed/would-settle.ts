@@ -4,7 +4,7 @@
  * trying a few dial positions first: an upset on a narrow part of the dial can go unnoticed.
  */
 import type { Pairing } from '../../pairing.ts';
-import type { CornerInputs, Grade, JudgeOptions, ValueWouldSettle } from '../../verdict.ts';
+import type { CornerInputs, JudgeOptions, ValueWouldSettle } from '../../verdict.ts';
 import { failsOnTheWayUp, topPositions, trialPositions } from '../dial-trial.ts';
 import type { EffortTally } from '../effort.ts';
 import { RANKING_HALVINGS, SETTLING_HALVINGS, SURE_TRIES } from '../judgement-figures.ts';
@@ -48,9 +48,8 @@ class Settling {
     this.corner = cornerToTry(base);
   }
 
-  /** over every corner */
-  gradeOf(pairing: Pairing): Grade {
-    return overCorners(pairing, this.options, this.effort, { first: this.corner.name }).grade;
+  over(pairing: Pairing): OverCorners {
+    return overCorners(pairing, this.options, this.effort, { first: this.corner.name });
   }
 
   /** whether a few dial positions say that the pairing works where it did not, or does not where it did */
@@ -78,16 +77,31 @@ class Settling {
     return left[0] as Flip;
   }
 
-  /** value up to which the grade stays, and value from which it has flipped */
-  bracket(flip: Flip): readonly [number, number] {
-    let [kept, gone] = [0, 1];
-    while (gone - kept > 2 ** -SETTLING_HALVINGS) {
-      const middle = (kept + gone) / 2;
-      if (this.isFlipped(flip.value.at(along(flip, middle)))) gone = middle;
-      else kept = middle;
-    }
-    return [along(flip, kept), along(flip, gone)];
+  /**
+   * The shares of the way up to which the grade stays and from which it has flipped, over every corner: found at the corner that is tried,
+   * and sought again over all of them where another corner flips sooner, or still holds the old grade there.
+   */
+  bracket(flip: Flip): Bracket {
+    const atCorner = (share: number): boolean => this.isFlipped(flip.value.at(along(flip, share)));
+    const overall = (share: number): boolean => isWorkable(this.over(flip.value.at(along(flip, share))).grade) !== this.works;
+    const found = halved({ kept: 0, gone: 1 }, atCorner);
+    if (overall(found.kept)) return halved({ kept: 0, gone: found.kept }, overall);
+    return overall(found.gone) ? found : halved({ kept: found.gone, gone: 1 }, overall);
   }
+}
+
+interface Bracket {
+  readonly kept: number;
+  readonly gone: number;
+}
+
+function halved({ kept, gone }: Bracket, hasFlipped: (share: number) => boolean): Bracket {
+  while (gone - kept > 2 ** -SETTLING_HALVINGS) {
+    const middle = (kept + gone) / 2;
+    if (hasFlipped(middle)) gone = middle;
+    else kept = middle;
+  }
+  return { kept, gone };
 }
 
 /** the nearest flip that holds at every corner, and the values for which it might */
@@ -99,7 +113,7 @@ function nearestSureFlip(settling: Settling, values: readonly OpenValue[]): { fl
   let left = candidates;
   for (let tries = 0; tries < SURE_TRIES && left.length > 0; tries++) {
     const flip = settling.nearest(left);
-    if (isWorkable(settling.gradeOf(flip.value.at(flip.end))) !== settling.works) return { flip, candidates };
+    if (isWorkable(settling.over(flip.value.at(flip.end)).grade) !== settling.works) return { flip, candidates };
     left = left.filter((f) => f !== flip);
   }
   return null;
@@ -112,21 +126,21 @@ export function wouldSettle(pairing: Pairing, options: JudgeOptions, base: OverC
   const found = nearestSureFlip(settling, values);
   if (found === null) return null;
   const { flip, candidates } = found;
-  const [kept, gone] = settling.bracket(flip);
   const { path, about, assumed } = flip.value;
-  const beyond = settling.gradeOf(flip.value.at(flip.end));
-  const upward = gone > kept;
-  const [gradeBelow, gradeAbove] = upward ? [base.grade, beyond] : [beyond, base.grade];
-  const [runs, fails] = isWorkable(gradeAbove) ? ['above', 'below'] : ['below', 'above'];
+  const bracket = settling.bracket(flip);
+  const [kept, gone] = [along(flip, bracket.kept), along(flip, bracket.gone)];
+  const [before, beyond] = [settling.over(flip.value.at(kept)), settling.over(flip.value.at(gone))];
+  const [below, above] = gone > kept ? [before, beyond] : [beyond, before];
+  const [runs, fails] = isWorkable(above.grade) ? ['above', 'below'] : ['below', 'above'];
   return {
     kind: 'value',
     path,
     what: about.what,
     assumed,
     threshold: { low: Math.min(kept, gone), high: Math.max(kept, gone) },
-    gradeBelow,
-    gradeAbove,
-    corner: settling.corner.name,
+    gradeBelow: below.grade,
+    gradeAbove: above.grade,
+    corner: (settling.works ? beyond : before).decisive.corner.name,
     measure: about.measure,
     detail: `It hinges on ${about.what}, which was assumed (${shown(about, assumed)}): ${runs} about ${shown(about, (kept + gone) / 2)} the lamps run, ${fails} it they do not.`,
     alsoOpen: [...new Set(candidates.map((f) => f.value.path))].filter((p) => p !== path),
