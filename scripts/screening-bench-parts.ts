@@ -78,6 +78,7 @@ export async function screen(stores: Stores, queue: JudgingQueue, asked: AskedSc
 
 export interface Service {
   readonly url: string;
+  readonly pid: number;
   stop(): Promise<void>;
 }
 
@@ -91,7 +92,7 @@ export async function startRedis(folder: string): Promise<Service> {
   const options = ['--port', String(port), '--bind', '127.0.0.1', '--dir', folder, '--appendonly', 'yes', '--save', ''];
   const child = spawn('redis-server', options, { stdio: ['ignore', 'pipe', 'inherit'] });
   await lineWith(child, 'Ready to accept connections');
-  return { url: `redis://127.0.0.1:${port}`, stop: () => ended(child) };
+  return { url: `redis://127.0.0.1:${port}`, pid: child.pid ?? 0, stop: () => ended(child) };
 }
 
 export async function startWorker(redisUrl: string, threads: number): Promise<Service> {
@@ -101,7 +102,7 @@ export async function startWorker(redisUrl: string, threads: number): Promise<Se
     stdio: ['ignore', 'pipe', 'inherit'],
   });
   await lineWith(child, '"judging"');
-  return { url: redisUrl, stop: () => ended(child) };
+  return { url: redisUrl, pid: child.pid ?? 0, stop: () => ended(child) };
 }
 
 function lineWith(child: ChildProcess, text: string): Promise<void> {

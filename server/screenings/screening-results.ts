@@ -6,6 +6,7 @@ import { stringify } from 'csv-stringify/sync';
 import { outcomeAt, PAGE_LENGTH } from '../../db/screening-pages.ts';
 import type { FailureRow, ScreeningRow } from '../../db/screenings.ts';
 import type { Grade } from '../../model/index.ts';
+import { pacing } from '../imports/pacing.ts';
 import type { ScreeningRequest } from '../schemas/screening.ts';
 import { type PairingPositions, pairingPositions } from './pairing-positions.ts';
 import type { ScreeningStores } from './screening-dependencies.ts';
@@ -27,10 +28,11 @@ export interface ResultRow {
 type ResultStores = Pick<ScreeningStores, 'screenings' | 'screeningSelection' | 'screeningPages' | 'screeningVerdicts'>;
 
 /** pages read at a time */
-const STRIDE = 8;
+const STRIDE = 4;
 
 export async function* screeningResults(stores: ResultStores, row: ScreeningRow): AsyncGenerator<readonly ResultRow[]> {
   const positions = pairingPositions(row, countsOf(JSON.parse(row.request) as ScreeningRequest), stores.screeningSelection);
+  const breathe = pacing();
   for (let next = 0; ; ) {
     const pages = stores.screeningPages.from(row.seq, next, STRIDE);
     const last = pages.at(-1);
@@ -38,7 +40,7 @@ export async function* screeningResults(stores: ResultStores, row: ScreeningRow)
     const rows = pages.flatMap(({ page, outcomes }) => pageRows(stores, row.seq, positions, page, outcomes));
     if (rows.length > 0) yield rows;
     next = last.page + 1;
-    await new Promise((resolve) => setImmediate(resolve));
+    await breathe();
   }
 }
 

@@ -5,6 +5,7 @@
  */
 import type { ScreeningRow } from '../../db/screenings.ts';
 import { MODEL_VERSION } from '../../model/index.ts';
+import { pacing } from '../imports/pacing.ts';
 import type { Answer, Chunk } from '../queue/judging-queue.ts';
 import { askedPairingOf } from '../queue/question-judging.ts';
 import type { ScreeningRequest } from '../schemas/screening.ts';
@@ -183,6 +184,7 @@ export function startScreeningRun(deps: ScreeningDependencies, row: ScreeningRow
   };
 
   const walk = async (): Promise<void> => {
+    const breathe = pacing();
     let fault: unknown;
     for (let page = row.open_page; page < positions.pages && !ending.signal.aborted && fault === undefined; page += 1) {
       const pairings = positions.page(page);
@@ -200,8 +202,7 @@ export function startScreeningRun(deps: ScreeningDependencies, row: ScreeningRow
         }
         if (recording.waiting() >= BATCH) await settle();
       }
-      // Others' requests come between any two pages.
-      await new Promise((resolve) => setImmediate(resolve));
+      await breathe();
     }
     await chunksUnderWay.idle();
     if (fault !== undefined) throw fault;

@@ -3,6 +3,7 @@
  * ones where looking at all would take minutes.
  */
 import { MODEL_VERSION } from '../../model/index.ts';
+import { pacing } from '../imports/pacing.ts';
 import type { AcceptedAnswer, ScreeningRequest } from '../schemas/screening.ts';
 import { fingerprintTemplate } from './fingerprint-template.ts';
 import { type PositionedScreening, pairingPositions } from './pairing-positions.ts';
@@ -10,9 +11,8 @@ import type { ScreeningStores } from './screening-dependencies.ts';
 import { countsOf, frameOf } from './screening-frame.ts';
 import { selectedParts } from './selected-parts.ts';
 
-/** pairings looked at: half a second at most, in slices */
+/** pairings looked at: half a second at most, with breaks */
 const MOST_LOOKED_AT = 1_000;
-const SLICE = 20;
 
 export async function countStored(
   { screeningSelection, screeningVerdicts }: ScreeningStores,
@@ -23,9 +23,10 @@ export async function countStored(
   const parts = selectedParts(screeningSelection, row.seq, template);
   const positions = pairingPositions(row, countsOf(request), screeningSelection);
   const lookedAt = Math.min(row.total, MOST_LOOKED_AT);
+  const breathe = pacing();
   let found = 0;
   for (let index = 0; index < lookedAt; index += 1) {
-    if (index % SLICE === 0) await new Promise((resolve) => setImmediate(resolve));
+    await breathe();
     const pairing = positions.at(Math.floor((index * row.total) / lookedAt));
     const lamp = parts.lamp(pairing.lamp).completed;
     const dimmer = parts.dimmer(pairing.dimmer).completed;
