@@ -17,6 +17,7 @@ COPY package.json package-lock.json ./
 COPY db ./db
 COPY model ./model
 COPY server ./server
+COPY scripts/backup.ts scripts/restore.ts scripts/record-arguments.ts ./scripts/
 RUN mkdir /data && chown node:node /data
 USER node
 VOLUME /data
