@@ -121,3 +121,5 @@ export const DIP_RECOVERY = 1.1;
 export const RING_FADED = 7;
 /** samples per period of the fastest living ring when dips are looked for; each is refined afterwards */
 export const DIP_SAMPLES = 8;
+/** but at least this many in a visit shorter than the ring it rings with: most are a piece of one swing, and the search refines them */
+export const DIP_PIECES = 3;

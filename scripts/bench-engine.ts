@@ -13,7 +13,7 @@ import { linearKey } from '../model/circuit/configuration.ts';
 import { closeModeSystem, openModeSystem } from '../model/circuit/mode-system.ts';
 import { layNetwork } from '../model/circuit/network.ts';
 import { DimmerRun } from '../model/engine/dimmer-run.ts';
-import { linearMode } from '../model/engine/mode.ts';
+import { linearMode } from '../model/engine/linear-mode.ts';
 import type { Pairing } from '../model/index.ts';
 import { sweepDial } from '../model/observation/dial-sweep.ts';
 import { LADDER_LEVELS } from '../model/tolerances.ts';

@@ -48,6 +48,9 @@ export const GROUPS_FROM = 7;
 export const GROUP_OUTPUT = { voltage: 0, bridge: 1, bridgeReversed: 2, reservoir: 3, excess: 4 } as const;
 export const GROUP_OUTPUTS = 5;
 
+/** most guards a group has in any configuration: its curve's segment, its bridge both ways or with a bleeder, its drain's segment */
+export const MOST_GROUP_GUARDS = 4;
+
 export type Change = (from: Configuration) => Configuration;
 
 /** the configuration holds while lower < output < upper; crossing a bound applies its change */

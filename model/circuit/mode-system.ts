@@ -4,6 +4,7 @@
  * the mains sine and one constant per switching part. The timing resistor, the only part that the dial moves, is left open as a port
  * and folded in afterwards (a rank-one change), so that a dial change does not repeat the nodal analysis.
  */
+import { numbers } from '../numbers.ts';
 import type { Dimmer } from '../pairing.ts';
 import { BRIDGE_DROP, LEAST_RESISTANCE, RESERVOIR_LEAKAGE } from '../tolerances.ts';
 import type { Configuration, GroupConfiguration } from './configuration.ts';
@@ -74,7 +75,7 @@ export function openModeSystem(network: Network, dimmer: Dimmer, configuration: 
   const fixed = network.capacitors.filter((b) => b.resistance === 0);
   const m = network.nodes + fixed.length;
   const width = m + columns;
-  const matrix = new Float64Array(m * width);
+  const matrix = numbers(m * width);
   const scale = (state: number): number => network.scale[state] as number;
 
   const add = (row: number, column: number, value: number): void => {
@@ -152,7 +153,7 @@ export function openModeSystem(network: Network, dimmer: Dimmer, configuration: 
 
   const outputs = GROUPS_FROM + GROUP_OUTPUTS * network.groups.length;
   const rowCount = n + outputs + (hasPort ? 1 : 0);
-  const rows = new Float64Array(rowCount * columns);
+  const rows = numbers(rowCount * columns);
   const accumulate = (row: number, unknown: number, factor: number): void => {
     if (unknown === NEUTRAL || factor === 0) return;
     for (let c = 0; c < columns; c++) {
@@ -230,7 +231,7 @@ export function openModeSystem(network: Network, dimmer: Dimmer, configuration: 
 export function closeModeSystem(open: OpenModeSystem, timingResistance: number): ModeSystem {
   const { states, outputs, constants } = open;
   const columns = states + 1 + constants;
-  const rows = new Float64Array((states + outputs) * columns);
+  const rows = numbers((states + outputs) * columns);
   const portColumn = open.columns - 1;
   const portRow = (states + outputs) * open.columns;
   const divisor = open.hasPort ? timingResistance - (open.rows[portRow + portColumn] as number) : 1;

@@ -12,9 +12,10 @@
  *
  * Time inside a half-cycle runs from its zero crossing, so it never loses digits however long the run.
  */
-import { type Configuration, OUTPUT, restingConfiguration, type Sign } from '../circuit/configuration.ts';
-import { type OpenModeSystem, triacKnee } from '../circuit/mode-system.ts';
+import { type Configuration, MOST_GROUP_GUARDS, OUTPUT, restingConfiguration, type Sign } from '../circuit/configuration.ts';
+import { triacKnee } from '../circuit/mode-system.ts';
 import type { Network } from '../circuit/network.ts';
+import { numbers } from '../numbers.ts';
 import type { Dimmer, PerPolarity } from '../pairing.ts';
 import {
   CARRY_OVER_ANGLE,
@@ -26,8 +27,9 @@ import {
   STANDSTILL,
   STEP_BUDGET,
 } from '../tolerances.ts';
+import { ConfigurationMap, SWITCH, type Switching, wayByGuard, wayBySwitching } from './configuration-map.ts';
 import { emptyHalfCycle, type HalfCycle } from './half-cycle.ts';
-import { type Mode, ModeShelf, type Passage, SWITCH, type Switching } from './mode.ts';
+import { type Mode, ModeShelf, OTHER_GUARDS, type Passage, watchOutput } from './mode.ts';
 import { ModeWalk } from './mode-walk.ts';
 
 /** hears of every visit to a mode: from `start` (s into the half-cycle) for `duration`, coordinates at its start */
@@ -63,7 +65,7 @@ export class DimmerRun {
   /** with an ideal switch the triac, once fired, stays on to the end: for asking when the lamps themselves would stop */
   readonly idealSwitch: boolean;
 
-  private readonly shared: Map<string, OpenModeSystem>;
+  private readonly map: ConfigurationMap;
   private readonly shelves: Map<number, ModeShelf>;
   private readonly walk: ModeWalk;
   private readonly knee: number;
@@ -91,16 +93,16 @@ export class DimmerRun {
     this.dimmer = dimmer;
     this.idealSwitch = parent !== undefined;
     this.halfPeriod = Math.PI / network.omega;
-    this.shared = parent?.shared ?? new Map();
+    this.map = parent?.map ?? new ConfigurationMap(network, dimmer);
     this.shelves = parent?.shelves ?? new Map();
-    this.walk = new ModeWalk(this.shortestStep());
+    this.walk = new ModeWalk(
+      this.halfPeriod / 2 ** LADDER_LEVELS,
+      network.states,
+      network.groups.length * MOST_GROUP_GUARDS + OTHER_GUARDS,
+    );
     this.knee = triacKnee(dimmer);
-    this.x = new Float64Array(network.states);
-    this.coordinates = new Float64Array(network.states + 2);
-  }
-
-  private shortestStep(): number {
-    return this.halfPeriod / 2 ** LADDER_LEVELS;
+    this.x = numbers(network.states);
+    this.coordinates = numbers(network.states + 2);
   }
 
   get steps(): number {
@@ -125,7 +127,7 @@ export class DimmerRun {
     if (shelf === undefined) {
       const { drive } = this.dimmer;
       const resistance = drive.kind === 'diac' ? drive.fixedResistance + drive.potentiometer * (1 - position / 100) : 0;
-      shelf = new ModeShelf(this.network, this.dimmer, resistance, this.shared, this.shortestStep());
+      shelf = new ModeShelf(this.network, this.map, resistance);
       this.shelves.set(position, shelf);
     }
     this.shelf = shelf;
@@ -134,7 +136,7 @@ export class DimmerRun {
 
   /** true state at this moment (reservoir voltages positive), scaled as in Network */
   state(into: Float64Array): void {
-    for (let k = 0; k < into.length; k++) into[k] = (this.x[k] as number) * (this.mode.flips[k] as number);
+    for (let k = 0; k < into.length; k++) into[k] = (this.x[k] as number) * (this.mode.mapped.flips[k] as number);
   }
 
   get configuration(): Configuration {
@@ -180,7 +182,7 @@ export class DimmerRun {
   }
 
   private switchTo(switching: Switching): void {
-    this.change(this.shelf.after(this.mode, switching));
+    this.change(this.shelf.passage(this.mode, wayBySwitching(switching)));
   }
 
   private angle(): number {
@@ -297,7 +299,8 @@ export class DimmerRun {
       else if (this.below) to = holding;
       if (triacSign === -1) [from, to] = [-to, -from];
     }
-    return this.watchOutput(g, OUTPUT.triacCurrent, from, to);
+    watchOutput(this.mode, g, OUTPUT.triacCurrent, from, to);
+    return g + 1;
   }
 
   // --- diac ------------------------------------------------------------------------------------------------------------------
@@ -342,30 +345,24 @@ export class DimmerRun {
     if (!diac) {
       const upward = timing.orientation === 1 ? drive.breakover.positive : drive.breakover.negative;
       const downward = timing.orientation === 1 ? drive.breakover.negative : drive.breakover.positive;
-      return this.watchOutput(g, OUTPUT.timingVoltage, -downward, upward);
+      watchOutput(this.mode, g, OUTPUT.timingVoltage, -downward, upward);
+      return g + 1;
     }
     const hold = drive.diacHoldingCurrent;
     let from = this.gated ? Math.max(drive.gateThreshold, hold) : hold;
     let to = this.gated ? Number.POSITIVE_INFINITY : drive.gateThreshold;
     if (!this.gated && drive.gateThreshold <= hold) to = Number.POSITIVE_INFINITY;
     if (diacSign === -1) [from, to] = [-to, -from];
-    return this.watchOutput(g, OUTPUT.diacCurrent, from, to);
+    watchOutput(this.mode, g, OUTPUT.diacCurrent, from, to);
+    return g + 1;
   }
 
   // --- guards ----------------------------------------------------------------------------------------------------------------
 
-  private watchOutput(g: number, output: number, lower: number, upper: number): number {
-    const { windows } = this.mode;
-    windows.output[g] = output;
-    windows.lower[g] = lower;
-    windows.upper[g] = upper;
-    return g + 1;
-  }
-
   private triacGuard = -1;
 
   private setGuards(): void {
-    const groups = this.mode.guards.length;
+    const groups = this.mode.mapped.guards.length;
     const afterDiac = this.watchDiac(groups);
     this.triacGuard = afterDiac;
     this.walk.guardCount = this.watchTriac(afterDiac);
@@ -375,7 +372,7 @@ export class DimmerRun {
     this.events++;
     const g = this.walk.crossedGuard;
     const side = this.walk.crossedSide;
-    if (g < this.mode.guards.length) this.change(this.shelf.beyond(this.mode, g, side));
+    if (g < this.mode.mapped.guards.length) this.change(this.shelf.passage(this.mode, wayByGuard(g, side)));
     else if (g === this.triacGuard) this.triacCrossed(side);
     else this.diacCrossed(side);
   }

@@ -3,6 +3,7 @@
  * arithmetic, back substitution (Golub & Van Loan, Matrix Computations, ch. 7). The result is a real basis: one column per real
  * eigenvalue and two per complex pair, so that the system is diagonal but for a rotation per pair.
  */
+import { copied, numbers } from '../numbers.ts';
 import { DEFECT_NUDGES, MODE_CONDITION } from '../tolerances.ts';
 
 export interface ModalBasis {
@@ -21,7 +22,19 @@ export interface ModalBasis {
 }
 
 /** most states a circuit can have: twelve groups with every optional part stay below */
-const MOST_STATES = 128;
+export const MOST_STATES = 128;
+
+/** scratch of the decomposition that is being made: the triangular matrix, what transforms it, the inverse's left half, vectors */
+const hRe = new Float64Array(MOST_STATES * MOST_STATES);
+const hIm = new Float64Array(MOST_STATES * MOST_STATES);
+const qRe = new Float64Array(MOST_STATES * MOST_STATES);
+const qIm = new Float64Array(MOST_STATES * MOST_STATES);
+const left = new Float64Array(MOST_STATES * MOST_STATES);
+const v = new Float64Array(MOST_STATES);
+const yRe = new Float64Array(MOST_STATES);
+const yIm = new Float64Array(MOST_STATES);
+const vRe = new Float64Array(MOST_STATES);
+const vIm = new Float64Array(MOST_STATES);
 
 function at(a: Float64Array, k: number): number {
   return a[k] as number;
@@ -34,7 +47,6 @@ function size(re: number, im: number): number {
 
 /** reduces h (n x n) to upper Hessenberg form and accumulates the orthogonal transformation in q */
 function toHessenberg(h: Float64Array, q: Float64Array, n: number): void {
-  const v = new Float64Array(n);
   for (let k = 0; k < n - 2; k++) {
     let norm = 0;
     for (let r = k + 1; r < n; r++) norm += at(h, r * n + k) ** 2;
@@ -206,8 +218,9 @@ function toTriangular(re: Float64Array, im: Float64Array, qRe: Float64Array, qIm
 
 /** real inverse by Gauss-Jordan with partial pivoting */
 function invert(matrix: Float64Array, n: number): Float64Array {
-  const m = Float64Array.from(matrix);
-  const inverse = new Float64Array(n * n);
+  const m = left;
+  for (let k = 0; k < n * n; k++) m[k] = at(matrix, k);
+  const inverse = numbers(n * n);
   for (let k = 0; k < n; k++) inverse[k * n + k] = 1;
   for (let k = 0; k < n; k++) {
     let pivot = k;
@@ -239,23 +252,14 @@ function invert(matrix: Float64Array, n: number): Float64Array {
 
 function norm(matrix: Float64Array): number {
   let sum = 0;
-  for (const x of matrix) sum += x * x;
+  for (let k = 0; k < matrix.length; k++) sum += at(matrix, k) ** 2;
   return Math.sqrt(sum);
 }
 
-/** eigenvector of the triangular (re, im) for its k-th diagonal entry, in the original coordinates: [re, im] columns, largest entry real */
-function eigenvector(
-  re: Float64Array,
-  im: Float64Array,
-  qRe: Float64Array,
-  qIm: Float64Array,
-  n: number,
-  k: number,
-  smallest: number,
-): [Float64Array, Float64Array] {
-  const yRe = new Float64Array(n);
-  const yIm = new Float64Array(n);
+/** eigenvector of the triangular (re, im) for its k-th diagonal entry, in the original coordinates, into vRe and vIm, largest entry real */
+function eigenvector(re: Float64Array, im: Float64Array, n: number, k: number, smallest: number): void {
   yRe[k] = 1;
+  yIm[k] = 0;
   for (let i = k - 1; i >= 0; i--) {
     let sRe = 0;
     let sIm = 0;
@@ -271,11 +275,11 @@ function eigenvector(
     yRe[i] = (sRe * dRe + sIm * dIm) / square;
     yIm[i] = (sIm * dRe - sRe * dIm) / square;
   }
-  const vRe = new Float64Array(n);
-  const vIm = new Float64Array(n);
   let largest = 0;
   let largestAt = 0;
   for (let r = 0; r < n; r++) {
+    vRe[r] = 0;
+    vIm[r] = 0;
     for (let j = 0; j <= k; j++) {
       const t = r * n + j;
       vRe[r] = at(vRe, r) + at(qRe, t) * at(yRe, j) - at(qIm, t) * at(yIm, j);
@@ -295,17 +299,20 @@ function eigenvector(
     vRe[r] = a * pRe - b * pIm;
     vIm[r] = a * pIm + b * pRe;
   }
-  return [vRe, vIm];
 }
 
 function decompose(matrix: Float64Array, n: number): ModalBasis {
-  const h = Float64Array.from(matrix);
-  const q = new Float64Array(n * n);
-  for (let k = 0; k < n; k++) q[k * n + k] = 1;
-  toHessenberg(h, q, n);
-  const im = new Float64Array(n * n);
-  const qIm = new Float64Array(n * n);
-  toTriangular(h, im, q, qIm, n);
+  const h = hRe;
+  const im = hIm;
+  for (let k = 0; k < n * n; k++) {
+    h[k] = at(matrix, k);
+    im[k] = 0;
+    qRe[k] = 0;
+    qIm[k] = 0;
+  }
+  for (let k = 0; k < n; k++) qRe[k * n + k] = 1;
+  toHessenberg(h, qRe, n);
+  toTriangular(h, im, qRe, qIm, n);
   const scale = norm(matrix);
   const realBelow = 1e-13 * scale;
   const reals: number[] = [];
@@ -323,12 +330,12 @@ function decompose(matrix: Float64Array, n: number): ModalBasis {
     }
   }
   const count = reals.length + pairs.length;
-  const decay = new Float64Array(count);
-  const rotation = new Float64Array(count);
-  const basis = new Float64Array(n * n);
+  const decay = numbers(count);
+  const rotation = numbers(count);
+  const basis = numbers(n * n);
   const smallest = 1e-16 * scale || 1e-300;
   [...reals, ...pairs].forEach((k, mode) => {
-    const [vRe, vIm] = eigenvector(h, im, q, qIm, n, k, smallest);
+    eigenvector(h, im, n, k, smallest);
     decay[mode] = at(h, k * n + k);
     const isPair = mode >= reals.length;
     rotation[mode] = isPair ? at(im, k * n + k) : 0;
@@ -347,16 +354,17 @@ function pattern(r: number, c: number): number {
   return ((r * 31 + c * 17 + r * c * 7 + 5) % 23) / 11.5 - 1;
 }
 
+const isComplete = ({ reals, pairs }: ModalBasis, n: number): boolean => reals + 2 * pairs === n;
+
 /**
  * Modal basis of a real n x n matrix (row-major). Where the eigenvectors are nearly parallel (critical damping, equal twins) the
  * matrix is nudged by a tiny share of itself, which separates them at an error far below any tolerance.
  */
 export function modalBasis(matrix: Float64Array, n: number): ModalBasis {
   let best = decompose(matrix, n);
-  const complete = (m: ModalBasis): boolean => m.reals + 2 * m.pairs === n;
   for (const nudge of DEFECT_NUDGES) {
-    if (complete(best) && best.condition < MODE_CONDITION) return best;
-    const nudged = Float64Array.from(matrix);
+    if (isComplete(best, n) && best.condition < MODE_CONDITION) return best;
+    const nudged = copied(matrix);
     for (let r = 0; r < n; r++) {
       for (let c = 0; c < n; c++) {
         const weight = Math.sqrt(Math.abs(at(matrix, r * n + r) * at(matrix, c * n + c)));
@@ -364,7 +372,7 @@ export function modalBasis(matrix: Float64Array, n: number): ModalBasis {
       }
     }
     const apart = decompose(nudged, n);
-    if (complete(apart) && (!complete(best) || apart.condition < best.condition)) best = apart;
+    if (isComplete(apart, n) && (!isComplete(best, n) || apart.condition < best.condition)) best = apart;
   }
   return best;
 }

@@ -9,18 +9,30 @@
  *
  * How far the next step may reach follows from this one: s grows with h^2 and d with h.
  */
+import { numbers } from '../numbers.ts';
 import { EVENT_TIME, ROOT_SHARE } from '../tolerances.ts';
-import { LEVELS, type Mode, type Passage } from './mode.ts';
-
-const CLEAR = 0;
-const CROSSING = 1;
-const DOUBTFUL = 2;
+import { AFTER, BEFORE, BEND, LOWER, RANGE, REST, SLACK, UPPER, WATCHED_STRIDE } from './kernels.ts';
+import { LEVELS } from './linear-mode.ts';
+import type { Mode, Passage } from './mode.ts';
+import { ends, quinticRoot } from './quintic-root.ts';
 
 export type WalkOutcome = 'reached' | 'crossed' | 'out-of-steps';
 
-/** most guards and coordinates a mode can have: twelve groups with every optional part stay well below */
-const MOST_GUARDS = 128;
+/** most coordinates that a mode can have: twelve groups with every optional part stay below */
 const MOST_COORDINATES = 160;
+
+/** reserve of a step that nothing bounds: more than the ladder is long */
+const MOST_RESERVE = 1e9;
+
+/** scratch of the crossing that is being located: an output's parts, factors, a slope and a curvature */
+const parts = new Float64Array(3 * MOST_COORDINATES);
+const moved = new Float64Array(MOST_COORDINATES);
+const slopes = new Float64Array(2);
+
+/** how often 4 goes into a number: how many levels a step may be longer or shorter by; 0 where the number is below 4, or not one */
+function powersOfFour(x: number): number {
+  return x >= 4 ? (31 - Math.clz32(Math.min(x, MOST_RESERVE))) >> 1 : 0;
+}
 
 export class ModeWalk {
   /** how many of the mode's windows are watched: set by the caller before `begin` */
@@ -34,28 +46,34 @@ export class ModeWalk {
   uncertified = 0;
 
   private mode!: Mode;
-  private z = new Float64Array(MOST_COORDINATES);
-  private zNext = new Float64Array(MOST_COORDINATES);
-  private readonly zStart = new Float64Array(MOST_COORDINATES);
-  private readonly size = new Float64Array(MOST_COORDINATES);
-  /** per guard: bound on |y''|/8 from the slow terms, and the whole range of the fast ones; valid from when they were taken on, since
-   * what decays only gets smaller */
-  private readonly bend = new Float64Array(MOST_GUARDS);
-  private readonly range = new Float64Array(MOST_GUARDS);
-  private readonly y0 = new Float64Array(MOST_GUARDS);
-  private readonly y1 = new Float64Array(MOST_GUARDS);
-  private readonly watched = new Int32Array(MOST_GUARDS);
+  private z: Float64Array;
+  private zNext: Float64Array;
+  private readonly zStart: Float64Array;
+  /** the guards on the watch: a record, an output's row and a guard's number each. Their bounds are valid from when they were taken on,
+   * since what decays only gets smaller */
+  private readonly watched: Float64Array;
+  private readonly rows: Int32Array;
+  private readonly guards: Int32Array;
   private watchedCount = 0;
-  private readonly suspects = new Int32Array(MOST_GUARDS);
+  /** of the step last tried: guards (by their place on the watch) that certainly leave, once; square of the factor by which the step
+   * could have been longer, over all guards */
+  private readonly suspects: Int32Array;
+  private suspectCount = 0;
+  private reserve = 0;
   private level = 6;
-  private slope = 0;
-  private curvature = 0;
   private firstStep = true;
-  private growing = false;
   private readonly shortest: number;
 
-  constructor(shortest: number) {
+  /** the ladder's shortest step, s; how many states and at most how many guards the circuit's modes have */
+  constructor(shortest: number, states: number, mostGuards: number) {
     this.shortest = shortest;
+    this.z = numbers(states + 2);
+    this.zNext = numbers(states + 2);
+    this.zStart = numbers(states + 2);
+    this.watched = numbers(mostGuards * WATCHED_STRIDE);
+    this.rows = new Int32Array(mostGuards);
+    this.guards = new Int32Array(mostGuards);
+    this.suspects = new Int32Array(mostGuards);
   }
 
   /** starts a visit: x in the mode's own (mirrored) coordinates, the mains' cosine and sine at this moment */
@@ -82,21 +100,8 @@ export class ModeWalk {
   }
 
   /** goes over to a neighbouring mode at this moment: the state is the same, its coordinates are the new mode's */
-  pass(passage: Passage): void {
-    const { to, matrix } = passage;
-    const { z, zNext, zStart } = this;
-    const n = to.linear.states;
-    for (let r = 0, at = 0; r < n; r++) {
-      let sum = 0;
-      for (let c = 0; c < n + 2; c++, at++) sum += (matrix[at] as number) * (z[c] as number);
-      sum += matrix[at++] as number;
-      zNext[r] = sum;
-      zStart[r] = sum;
-    }
-    zNext[n] = z[n] as number;
-    zNext[n + 1] = z[n + 1] as number;
-    zStart[n] = z[n] as number;
-    zStart[n + 1] = z[n + 1] as number;
+  pass({ to, matrix }: Passage): void {
+    to.linear.kernels.pass(this.z, this.zNext, this.zStart, matrix);
     this.takeNext();
     this.start(to);
   }
@@ -106,102 +111,21 @@ export class ModeWalk {
     this.elapsed = 0;
     this.level = mode.startLevel;
     this.firstStep = true;
-    this.growing = mode.linear.grows;
-  }
-
-  /** sizes of the terms now */
-  private measure(): void {
-    const { linear } = this.mode;
-    const { reals } = linear.modal;
-    const { z, size } = this;
-    for (let t = 0; t < reals; t++) size[t] = Math.abs(z[t] as number);
-    for (let t = reals, k = reals; t < linear.terms; t++, k += 2) {
-      const re = z[k] as number;
-      const im = z[k + 1] as number;
-      size[t] = Math.sqrt(re * re + im * im);
-    }
-  }
-
-  /** takes the bounds of one guard afresh: terms that are slow at this level count by their curvature, the others by their range */
-  private takeBounds(g: number, output: number, level: number): void {
-    const { linear } = this.mode;
-    const { outputRows, outputStride, terms, bends, ranges } = linear;
-    const { reals } = linear.modal;
-    const { size } = this;
-    let bend = 0;
-    let range = 0;
-    let at = output * outputStride;
-    let b = level * terms;
-    for (let t = 0; t < reals; t++, at++, b++) {
-      const share = Math.abs(outputRows[at] as number) * (size[t] as number);
-      bend += share * (bends[b] as number);
-      range += share * (ranges[b] as number);
-    }
-    for (let t = reals; t < terms; t++, at += 3, b++) {
-      const share = (outputRows[at + 2] as number) * (size[t] as number);
-      bend += share * (bends[b] as number);
-      range += share * (ranges[b] as number);
-    }
-    this.bend[g] = bend;
-    this.range[g] = range;
   }
 
   /** value of an output now */
   value(output: number): number {
-    return this.valueOf(this.z, output);
-  }
-
-  private valueOf(z: Float64Array, output: number): number {
-    const { linear } = this.mode;
+    const { linear, restOutput } = this.mode;
     const { outputRows, outputStride, terms } = linear;
     const { reals } = linear.modal;
-    let sum = this.mode.restOutput[output] as number;
+    const { z } = this;
+    let sum = restOutput[output] as number;
     let at = output * outputStride;
     for (let k = 0; k < reals; k++, at++) sum += (outputRows[at] as number) * (z[k] as number);
     for (let t = reals, k = reals; t < terms; t++, k += 2, at += 3) {
       sum += (outputRows[at] as number) * (z[k] as number) + (outputRows[at + 1] as number) * (z[k + 1] as number);
     }
     return sum;
-  }
-
-  /** how far an output can be moved by terms of these sizes */
-  private reach(output: number, sizes: Float64Array): number {
-    const { linear } = this.mode;
-    const { outputRows, outputStride, terms } = linear;
-    const { reals } = linear.modal;
-    let sum = 0;
-    let at = output * outputStride;
-    for (let t = 0; t < reals; t++, at++) sum += Math.abs(outputRows[at] as number) * (sizes[t] as number);
-    for (let t = reals; t < terms; t++, at += 3) sum += (outputRows[at + 2] as number) * (sizes[t] as number);
-    return sum;
-  }
-
-  /** first and second derivative of an output at the coordinates, into `slope` and `curvature` */
-  private differentiate(z: Float64Array, output: number): void {
-    const { linear } = this.mode;
-    const { outputRows, outputStride, decay, rotation, terms } = linear;
-    const { reals } = linear.modal;
-    let at = output * outputStride;
-    let first = 0;
-    let second = 0;
-    for (let k = 0; k < reals; k++, at++) {
-      const d = decay[k] as number;
-      const share = (outputRows[at] as number) * (z[k] as number) * d;
-      first += share;
-      second += share * d;
-    }
-    for (let t = reals, k = reals; t < terms; t++, k += 2, at += 3) {
-      const d = decay[t] as number;
-      const q = rotation[t] as number;
-      const a = outputRows[at] as number;
-      const b = outputRows[at + 1] as number;
-      const re = d * (z[k] as number) - q * (z[k + 1] as number);
-      const im = q * (z[k] as number) + d * (z[k + 1] as number);
-      first += a * re + b * im;
-      second += a * (d * re - q * im) + b * (q * re + d * im);
-    }
-    this.slope = first;
-    this.curvature = second;
   }
 
   /** the state now, in the mode's own coordinates */
@@ -226,54 +150,33 @@ export class ModeWalk {
   }
 
   /**
-   * Takes stock of the guards at this moment: their values, and which of them could leave their window at all before `end` (time since
-   * the visit's start). Returns the first guard that is outside by more than its slack (crossedGuard, crossedSide), or -1.
+   * Takes stock of the guards at this moment: their values, and which of them could leave their window at all, however long the visit.
+   * Returns the first guard that is outside by more than its slack (crossedGuard, crossedSide), or -1.
    */
   begin(): number {
-    const { restOutput, windows } = this.mode;
-    const { z, size, y0, watched, guardCount, growing } = this;
-    const { output: outputs, lower: lowers, upper: uppers, slack: slacks } = windows;
-    let count = 0;
-    this.measure();
-    for (let g = 0; g < guardCount; g++) {
-      const output = outputs[g] as number;
-      const rest = restOutput[output] as number;
-      const lower = lowers[g] as number;
-      const upper = uppers[g] as number;
-      const y = this.valueOf(z, output);
-      const slack = slacks[g] as number;
-      if (y < lower - slack || y > upper + slack) {
-        this.crossedGuard = g;
-        this.crossedSide = y < lower ? 0 : 1;
-        return g;
-      }
-      const reach = this.reach(output, size);
-      if (!growing && rest - reach > lower && rest + reach < upper) continue;
-      watched[count++] = g;
-      y0[g] = y;
-      this.takeBounds(g, output, this.level);
+    const { linear, windows } = this.mode;
+    const count = linear.kernels.begin(
+      this.z,
+      linear.bends,
+      linear.ranges,
+      this.level * linear.terms,
+      linear.outputRows,
+      windows.records,
+      windows.rows,
+      this.guardCount,
+      linear.grows,
+      this.watched,
+      this.rows,
+      this.guards,
+      slopes,
+    );
+    if (count >= 0) {
+      this.watchedCount = count;
+      return -1;
     }
-    this.watchedCount = count;
-    return -1;
-  }
-
-  /** moves coordinates by a time that is not on the ladder */
-  private advance(into: Float64Array, from: Float64Array, by: number): void {
-    const { linear } = this.mode;
-    const { reals } = linear.modal;
-    const { decay, rotation, terms } = linear;
-    for (let t = 0; t < reals; t++) into[t] = (from[t] as number) * Math.exp((decay[t] as number) * by);
-    for (let t = reals, k = reals; t < terms; t++, k += 2) {
-      const d = decay[t] as number;
-      const angle = (rotation[t] as number) * by;
-      const size = d === 0 ? 1 : Math.exp(d * by);
-      const re = size * Math.cos(angle);
-      const im = size * Math.sin(angle);
-      const a = from[k] as number;
-      const b = from[k + 1] as number;
-      into[k] = re * a - im * b;
-      into[k + 1] = re * b + im * a;
-    }
+    this.crossedGuard = ~count;
+    this.crossedSide = slopes[0] === 0 ? 0 : 1;
+    return ~count;
   }
 
   private takeNext(): void {
@@ -286,45 +189,21 @@ export class ModeWalk {
   private settleAt(elapsed: number): void {
     if (elapsed === this.elapsed) return;
     this.elapsed = elapsed;
-    this.advance(this.zNext, this.zStart, elapsed);
+    this.moveBy(elapsed, this.zStart);
     this.takeNext();
   }
 
-  /** time (0, span] after the present coordinates at which a guard that is monotone there passes the bound; leaves the coordinates there in zNext */
-  private crossing(g: number, bound: number, side: 0 | 1, span: number): number {
-    const { output: outputs, slack } = this.mode.windows;
-    const output = outputs[g] as number;
-    const inside = side === 0 ? 1 : -1;
-    let f0 = ((this.y0[g] as number) - bound) * inside;
-    if (f0 <= 0) return 0;
-    let f1 = ((this.y1[g] as number) - bound) * inside;
-    let lo = 0;
-    let hi = span;
-    const enough = ROOT_SHARE * (slack[g] as number);
-    // first guess: the quintic through value, slope and curvature at both ends; then Newton, kept inside the bracket
-    this.differentiate(this.z, output);
-    const slope0 = this.slope * inside * span;
-    const bend0 = this.curvature * inside * span * span;
-    this.differentiate(this.zNext, output);
-    let at = span * quinticRoot(f0, f1, slope0, this.slope * inside * span, bend0, this.curvature * inside * span * span);
-    for (let k = 0; k < 60; k++) {
-      if (!(at > lo && at < hi)) at = k < 6 ? lo + ((hi - lo) * f0) / (f0 - f1) : (lo + hi) / 2;
-      this.advance(this.zNext, this.z, at);
-      const f = (this.valueOf(this.zNext, output) - bound) * inside;
-      if (Math.abs(f) <= enough) return at;
-      if (f > 0) {
-        lo = at;
-        f0 = f;
-      } else {
-        hi = at;
-        f1 = f;
-      }
-      if (hi - lo <= EVENT_TIME) break;
-      this.differentiate(this.zNext, output);
-      at = k < 12 ? at - f / (this.slope * inside) : (lo + hi) / 2;
-    }
-    this.advance(this.zNext, this.z, hi);
-    return hi;
+  /** zNext = coordinates moved by a time that need not be on the ladder */
+  private moveBy(time: number, from: Float64Array): void {
+    const { kernels, decay, rotation } = this.mode.linear;
+    kernels.factorsAfter(moved, decay, rotation, time);
+    kernels.move(this.zNext, from, moved, 0);
+  }
+
+  /** bounds of every watched guard at this moment, for steps of this level */
+  private takeBounds(level: number): void {
+    const { kernels, bends, ranges, terms, outputRows } = this.mode.linear;
+    kernels.bound(this.z, bends, ranges, level * terms, outputRows, this.watched, this.rows, this.watchedCount);
   }
 
   /**
@@ -332,14 +211,11 @@ export class ModeWalk {
    * trial steps. With `force` the first step is one shortest step whatever the guards say: how the caller breaks a standstill.
    */
   walk(end: number, stepBudget: number, force = false): WalkOutcome {
-    const { linear, restOutput, windows } = this.mode;
-    const { coordinates, terms, factors, outputRows, outputStride } = linear;
-    const { output: outputs, lower: lowers, upper: uppers, slack: slacks } = windows;
-    const { reals } = linear.modal;
-    const { y0, y1, watched, suspects, watchedCount, bend, range } = this;
+    const { kernels, factors, coordinates, outputRows, grows } = this.mode.linear;
+    const { watched, rows, watchedCount } = this;
     let forced = force;
     let level = forced ? 0 : this.level;
-    /** level at which the guards' bounds were last taken, and whether that was at the present moment */
+    /** level for which the guards' bounds were last taken, and whether that was at the present moment */
     let boundsLevel = this.level;
     let boundsFresh = true;
     for (let budget = stepBudget; budget > 0; budget--) {
@@ -350,90 +226,38 @@ export class ModeWalk {
         return 'reached';
       }
       this.steps++;
-      const { z, zNext } = this;
       const h = this.shortest * (1 << level);
-      const square = h * h;
-      const f = level * coordinates;
-      for (let k = 0; k < reals; k++) zNext[k] = (z[k] as number) * (factors[f + k] as number);
-      for (let k = reals; k < coordinates; k += 2) {
-        const re = factors[f + k] as number;
-        const im = factors[f + k + 1] as number;
-        const a = z[k] as number;
-        const b = z[k + 1] as number;
-        zNext[k] = re * a - im * b;
-        zNext[k + 1] = re * b + im * a;
-      }
-      if (this.growing) {
+      kernels.step(this.z, this.zNext, factors, level * coordinates, outputRows, watched, rows, watchedCount);
+      if (grows) {
         // what grows outgrows its bounds
-        this.measure();
-        for (let w = 0; w < watchedCount; w++) this.takeBounds(watched[w] as number, outputs[watched[w] as number] as number, level);
+        this.takeBounds(level);
         boundsFresh = true;
         boundsLevel = level;
       }
-      // doubtful: might leave and return within the step; suspect: certainly leaves, once
-      let doubtful = false;
-      let suspectCount = 0;
-      // square of the factor by which the step could have been longer, over all guards
-      let reserve = 1e9;
-      for (let w = 0; w < watchedCount; w++) {
-        const g = watched[w] as number;
-        const output = outputs[g] as number;
-        let y = restOutput[output] as number;
-        let at = output * outputStride;
-        for (let k = 0; k < reals; k++, at++) y += (outputRows[at] as number) * (zNext[k] as number);
-        for (let t = reals, k = reals; t < terms; t++, k += 2, at += 3) {
-          y += (outputRows[at] as number) * (zNext[k] as number) + (outputRows[at + 1] as number) * (zNext[k + 1] as number);
-        }
-        y1[g] = y;
-        const before = y0[g] as number;
-        const lower = lowers[g] as number;
-        const upper = uppers[g] as number;
-        let doubt = 0;
-        for (;;) {
-          const stray = (bend[g] as number) * square;
-          const fast = range[g] as number;
-          doubt = this.doubtOf(before, y, lower, upper, slacks[g] as number, stray, fast);
-          const d = y - before;
-          const bySlope = d / (4 * stray);
-          const room = Math.min(Math.min(before, y) - lower, upper - Math.max(before, y)) - fast;
-          const own = Math.max(room / stray, bySlope * bySlope);
-          if (doubt !== DOUBTFUL || (boundsFresh && boundsLevel <= level)) {
-            if (own < reserve) reserve = own;
-            break;
-          }
-          // the bounds may only be out of date
-          if (!boundsFresh) {
-            this.measure();
-            boundsFresh = true;
-          }
-          boundsLevel = level;
-          for (let v = 0; v < watchedCount; v++) {
-            const other = watched[v] as number;
-            this.takeBounds(other, outputs[other] as number, level);
-          }
-        }
-        if (doubt === CLEAR) continue;
-        if (y < lower || y > upper) suspects[suspectCount++] = g;
-        if (doubt === DOUBTFUL) doubtful = true;
+      let certain = this.certify(h * h);
+      if (!certain && !(boundsFresh && boundsLevel <= level)) {
+        // the bounds may only be out of date
+        this.takeBounds(level);
+        boundsFresh = true;
+        boundsLevel = level;
+        certain = this.certify(h * h);
       }
       if (forced) {
-        suspectCount = 0;
-        doubtful = false;
+        this.suspectCount = 0;
+        certain = true;
         forced = false;
         this.uncertified++;
       }
-      if (doubtful && level > 0) {
-        level--;
-        while (level > 0 && reserve < 0.25) {
-          reserve *= 4;
-          level--;
+      if (!certain) {
+        if (level > 0) {
+          level = Math.max(0, level - 1 - powersOfFour(0.25 / this.reserve));
+          continue;
         }
-        continue;
+        this.uncertified++;
       }
-      if (doubtful) this.uncertified++;
-      if (suspectCount > 0) {
+      if (this.suspectCount > 0) {
         this.level = level;
-        const earliest = this.firstCrossing(suspectCount, h);
+        const earliest = this.firstCrossing(level, h);
         if (earliest >= remaining) {
           this.settleAt(end);
           return 'reached';
@@ -456,78 +280,121 @@ export class ModeWalk {
       this.elapsed += h;
       this.takeNext();
       boundsFresh = false;
-      for (let w = 0; w < watchedCount; w++) {
-        const g = watched[w] as number;
-        y0[g] = y1[g] as number;
-      }
-      if (level < LEVELS - 1) {
-        level++;
-        while (level < LEVELS - 1 && reserve >= 16) {
-          reserve /= 4;
-          level++;
-        }
-      }
+      for (let w = 0, at = 0; w < watchedCount; w++, at += WATCHED_STRIDE) watched[at + BEFORE] = watched[at + AFTER] as number;
+      level = Math.min(LEVELS - 1, level + 1 + powersOfFour(this.reserve / 4));
     }
     return 'out-of-steps';
   }
 
-  /** the certificate: CLEAR stays inside, CROSSING certainly leaves and only once, DOUBTFUL neither is certain */
-  private doubtOf(before: number, y: number, lower: number, upper: number, slack: number, stray: number, fast: number): number {
-    const d = y - before;
-    // a guard that starts on its bound (within rounding) may start a hair outside, as long as it moves in
-    const low = before <= lower + slack && d >= 0 ? lower - slack : lower;
-    const high = before >= upper - slack && d <= 0 ? upper + slack : upper;
-    const least = Math.min(before, y);
-    const most = Math.max(before, y);
-    if (Math.abs(d) >= 4 * stray) {
-      if (least - fast >= low && most + fast <= high) return CLEAR;
-      return (y < lower || y > upper) && fast <= slack ? CROSSING : DOUBTFUL;
+  /** The certificate for a step whose length squared is `square`: false where some guard may leave its window and come back. */
+  private certify(square: number): boolean {
+    const { watched, watchedCount, suspects } = this;
+    let certain = true;
+    let suspectCount = 0;
+    let reserve = MOST_RESERVE;
+    for (let w = 0, at = 0; w < watchedCount; w++, at += WATCHED_STRIDE) {
+      const before = watched[at + BEFORE] as number;
+      const after = watched[at + AFTER] as number;
+      const lower = watched[at + LOWER] as number;
+      const upper = watched[at + UPPER] as number;
+      const slack = watched[at + SLACK] as number;
+      const stray = (watched[at + BEND] as number) * square;
+      const fast = watched[at + RANGE] as number;
+      const d = after - before;
+      // a guard that starts on its bound (within rounding) may start a hair outside, as long as it moves in
+      const low = d >= 0 && before <= lower + slack ? lower - slack : lower;
+      const high = d <= 0 && before >= upper - slack ? upper + slack : upper;
+      const least = d < 0 ? after : before;
+      const most = d < 0 ? before : after;
+      const perStray = 1 / stray;
+      const bySlope = 0.25 * d * perStray;
+      const room = Math.min(least - lower, upper - most) - fast;
+      const own = Math.max(room * perStray, bySlope * bySlope);
+      if (own < reserve) reserve = own;
+      if (Math.abs(d) >= 4 * stray) {
+        if (least - fast >= low && most + fast <= high) continue;
+        if (after < lower || after > upper) {
+          suspects[suspectCount++] = w;
+          if (fast <= slack) continue;
+        }
+      } else {
+        const middle = 0.5 * (before + after);
+        const bulge = stray * (1 + bySlope * bySlope) + fast;
+        if (middle - bulge >= low && middle + bulge <= high) continue;
+        if (after < lower || after > upper) suspects[suspectCount++] = w;
+      }
+      certain = false;
     }
-    const middle = (before + y) / 2;
-    const bulge = stray + (d * d) / (16 * stray) + fast;
-    return middle - bulge >= low && middle + bulge <= high ? CLEAR : DOUBTFUL;
+    this.suspectCount = suspectCount;
+    this.reserve = reserve;
+    return certain;
   }
 
   /** earliest crossing among the suspects within the step h that was just tried; leaves the coordinates there in zNext */
-  private firstCrossing(suspectCount: number, h: number): number {
-    const { lower: lowers, upper: uppers } = this.mode.windows;
+  private firstCrossing(level: number, h: number): number {
+    const { watched, suspects, suspectCount } = this;
     let earliest = Number.POSITIVE_INFINITY;
     let last = 0;
     for (let k = 0; k < suspectCount; k++) {
-      const g = this.suspects[k] as number;
-      const side: 0 | 1 = (this.y1[g] as number) < (lowers[g] as number) ? 0 : 1;
-      if (k > 0) this.advance(this.zNext, this.z, h);
-      const at = this.crossing(g, (side === 0 ? lowers[g] : uppers[g]) as number, side, h);
+      const w = suspects[k] as number;
+      const lower = watched[w * WATCHED_STRIDE + LOWER] as number;
+      const side: 0 | 1 = (watched[w * WATCHED_STRIDE + AFTER] as number) < lower ? 0 : 1;
+      const bound = side === 0 ? lower : (watched[w * WATCHED_STRIDE + UPPER] as number);
+      const at = this.crossing(w, bound, side === 0 ? 1 : -1, level, h);
       if (at >= earliest) continue;
       earliest = at;
       last = k;
-      this.crossedGuard = g;
+      this.crossedGuard = this.guards[w] as number;
       this.crossedSide = side;
     }
-    if (last < suspectCount - 1) this.advance(this.zNext, this.z, earliest);
+    if (last < suspectCount - 1) this.moveBy(earliest, this.z);
     return earliest;
   }
-}
 
-/** where between 0 and 1 the quintic with these values, slopes and curvatures at 0 and 1 passes zero, having fallen from f0 > 0 to f1 */
-function quinticRoot(f0: number, f1: number, slope0: number, slope1: number, bend0: number, bend1: number): number {
-  const rise = f1 - f0 - slope0 - bend0 / 2;
-  const turn = slope1 - slope0 - bend0;
-  const bend = bend1 - bend0;
-  const c3 = 10 * rise - 4 * turn + bend / 2;
-  const c4 = -15 * rise + 7 * turn - bend;
-  const c5 = 6 * rise - 3 * turn + bend / 2;
-  let lo = 0;
-  let hi = 1;
-  let u = f0 / (f0 - f1);
-  for (let k = 0; k < 8; k++) {
-    const value = f0 + u * (slope0 + u * (bend0 / 2 + u * (c3 + u * (c4 + u * c5))));
-    if (value > 0) lo = u;
-    else hi = u;
-    const next = u - value / (slope0 + u * (bend0 + u * (3 * c3 + u * (4 * c4 + u * 5 * c5))));
-    const kept = next > lo && next < hi ? next : (lo + hi) / 2;
-    if (Math.abs(kept - u) < 1e-9) return kept;
-    u = kept;
+  /** Time (0, span] after the present coordinates at which a guard that is monotone there passes the bound, `inside` being 1 where the
+   * window is above it; leaves the coordinates there in zNext. */
+  private crossing(w: number, bound: number, inside: 1 | -1, level: number, span: number): number {
+    const { watched, z } = this;
+    const { kernels, coordinates, decay, rotation, factors, outputRows } = this.mode.linear;
+    const record = w * WATCHED_STRIDE;
+    let f0 = ((watched[record + BEFORE] as number) - bound) * inside;
+    if (f0 <= 0) return 0;
+    let f1 = ((watched[record + AFTER] as number) - bound) * inside;
+    const offset = (watched[record + REST] as number) - bound;
+    const enough = ROOT_SHARE * (watched[record + SLACK] as number);
+    // first guess: the quintic through value, slope and curvature at both ends; then Newton, kept inside the bracket
+    kernels.takeApart(parts, slopes, z, decay, rotation, outputRows, this.rows[w] as number);
+    const once = inside * span;
+    const twice = once * span;
+    ends[0] = f0;
+    ends[1] = f1;
+    ends[2] = (slopes[0] as number) * once;
+    ends[4] = (slopes[1] as number) * twice;
+    kernels.bendAfter(slopes, parts, factors, level * coordinates);
+    ends[3] = (slopes[0] as number) * once;
+    ends[5] = (slopes[1] as number) * twice;
+    let at = span * quinticRoot();
+    let lo = 0;
+    let hi = span;
+    for (let k = 0; k < 60; k++) {
+      if (!(at > lo && at < hi)) at = k < 6 ? lo + ((hi - lo) * f0) / (f0 - f1) : (lo + hi) / 2;
+      kernels.probe(slopes, moved, parts, decay, rotation, at);
+      const f = ((slopes[0] as number) + offset) * inside;
+      if (Math.abs(f) <= enough) {
+        kernels.move(this.zNext, z, moved, 0);
+        return at;
+      }
+      if (f > 0) {
+        lo = at;
+        f0 = f;
+      } else {
+        hi = at;
+        f1 = f;
+      }
+      if (hi - lo <= EVENT_TIME) break;
+      at = k < 12 ? at - f / ((slopes[1] as number) * inside) : (lo + hi) / 2;
+    }
+    this.moveBy(hi, z);
+    return hi;
   }
-  return u;
 }

@@ -4,6 +4,7 @@
  * with the same number of firings. A circuit whose polarities differ can only repeat after an even number of half-cycles.
  */
 import type { Network } from '../circuit/network.ts';
+import { numbers } from '../numbers.ts';
 import { LONGEST_PERIOD, REPEAT_FLOOR, REPEAT_TOLERANCE } from '../tolerances.ts';
 import type { HalfCycle } from './half-cycle.ts';
 
@@ -19,9 +20,9 @@ export class RepeatWatch {
 
   constructor(network: Network) {
     const n = network.states;
-    this.states = Array.from({ length: DEPTH }, () => new Float64Array(n));
-    this.floors = new Float64Array(n);
-    this.mirror = new Float64Array(n).fill(-1);
+    this.states = Array.from({ length: DEPTH }, () => numbers(n));
+    this.floors = numbers(n);
+    this.mirror = numbers(n).fill(-1);
     const inductors = new Set(network.inductors.map((l) => l.state));
     for (let k = 0; k < n; k++) {
       // a current is weighed as if the mains drove it through 1 kOhm

@@ -25,6 +25,10 @@ interface Dip extends Span {
 
 const SIGNS = [1, -1] as const;
 
+/** scratch: the segment that is being sampled */
+const times: number[] = [];
+const currents: number[] = [];
+
 export class MarginWatch implements TriacListener {
   private readonly dimmer: Dimmer;
   private readonly halfPeriod: number;
@@ -138,11 +142,11 @@ export class MarginWatch implements TriacListener {
         highest = Number.POSITIVE_INFINITY;
         continue;
       }
-      const current = segment.reader(OUTPUT.triacCurrent);
-      const times = segment.sampleTimes(DIP_SAMPLES);
+      segment.sampleTimes(DIP_SAMPLES, times);
+      segment.sample(OUTPUT.triacCurrent, times, currents);
       for (let k = 0; k < times.length; k++) {
         const s = times[k] as number;
-        const amperes = current(s);
+        const amperes = currents[k] as number;
         const sign = amperes >= 0 ? 1 : -1;
         const limit = sign === 1 ? holdingCurrent.positive : holdingCurrent.negative;
         const ratio = Math.abs(amperes) / limit;

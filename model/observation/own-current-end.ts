@@ -51,32 +51,52 @@ export class OwnCurrentEnd implements OpeningListener {
     }
     const { ideal } = this;
     const sign = ideal.index % 2 === 0 ? 1 : -1;
-    const currents = this.ownCurrent(sign);
-    const least = OWN_CURRENT_SHARE * triacKnee(ideal.dimmer);
+    const after = this.runOn();
     const opened = (last / 180) * ideal.halfPeriod;
-    const end = currents.findLast((c) => c.current > least)?.time ?? opened;
+    const end = lastAbove(after, sign, OWN_CURRENT_SHARE * triacKnee(ideal.dimmer), this.step()) ?? opened;
     const earlyUntil = end - (this.dropOutAngle / 180) * ideal.halfPeriod;
     if (earlyUntil <= opened) return { count: refired, earlyUntil: Math.max(0, earlyUntil), lacking: null };
     const limit = sign === 1 ? ideal.dimmer.holdingCurrent.positive : ideal.dimmer.holdingCurrent.negative;
     // the triac opens the turn-off time after its current fell below
-    const then = currents.find((c) => c.time >= earlyUntil - ideal.dimmer.turnOffTime)?.current ?? 0;
+    const then = currentFrom(after, sign, earlyUntil - ideal.dimmer.turnOffTime, this.step());
     return { count: refired + 1, earlyUntil, lacking: then / limit };
   }
 
-  /** runs on from the opening with the switch closed: the current in the mains' direction, sampled to the end of the half-cycle */
-  private ownCurrent(sign: 1 | -1): { readonly time: number; readonly current: number }[] {
-    const { ideal } = this;
-    const step = (OWN_CURRENT_STEP / 180) * ideal.halfPeriod;
-    const currents: { time: number; current: number }[] = [];
-    ideal.segmentListener = {
+  private step(): number {
+    return (OWN_CURRENT_STEP / 180) * this.ideal.halfPeriod;
+  }
+
+  /** runs on from the opening with the switch closed to the end of the half-cycle */
+  private runOn(): Segment[] {
+    const segments: Segment[] = [];
+    this.ideal.segmentListener = {
       segment(mode, coordinates, start, duration, halfCycle) {
-        const current = new Segment(mode, coordinates, start, duration, halfCycle).reader(OUTPUT.triacCurrent);
-        for (let at = Math.ceil(start / step) * step; at < start + duration; at += step) {
-          currents.push({ time: at, current: sign * current(at - start) });
-        }
+        segments.push(new Segment(mode, coordinates, start, duration, halfCycle));
       },
     };
-    ideal.finishHalfCycle();
-    return currents;
+    this.ideal.finishHalfCycle();
+    return segments;
   }
+}
+
+/** the last of the moments `step` apart at which the current in the mains' direction is above `least`, s; undefined where there is none */
+function lastAbove(segments: readonly Segment[], sign: 1 | -1, least: number, step: number): number | undefined {
+  for (let k = segments.length - 1; k >= 0; k--) {
+    const segment = segments[k] as Segment;
+    if (segment.largest(OUTPUT.triacCurrent, sign, least) <= least) continue;
+    const { start, duration } = segment;
+    for (let n = Math.ceil((start + duration) / step) - 1; n * step >= start; n--) {
+      if (sign * segment.value(OUTPUT.triacCurrent, n * step - start) > least) return n * step;
+    }
+  }
+  return undefined;
+}
+
+/** current in the mains' direction at the first of those moments from a time on, A; 0 after the last */
+function currentFrom(segments: readonly Segment[], sign: 1 | -1, time: number, step: number): number {
+  const first = segments[0];
+  if (first === undefined) return 0;
+  const at = Math.ceil(Math.max(time, first.start) / step) * step;
+  const segment = segments.find(({ start, duration }) => at >= start && at < start + duration);
+  return segment === undefined ? 0 : sign * segment.value(OUTPUT.triacCurrent, at - segment.start);
 }

@@ -105,7 +105,8 @@ export class Audit {
   private build(mode: Mode): AuditedMode {
     const { circuit, pairing } = this;
     const { dimmer } = pairing;
-    const { linear, configuration, restState, flips } = mode;
+    const { linear, configuration, restState } = mode;
+    const { flips } = mode.mapped;
     const n = linear.states;
     // columns: states, mains, one
     const [MAINS, ONE] = [n, n + 1];
