@@ -282,6 +282,8 @@ interface RemedyOutcome {
   readonly power: number;
   /** parts to buy and fit */
   readonly parts: number;
+  /** the assumed value that would undo it within its usual range, so that the pairing with it is undetermined; null where none does */
+  readonly hingesOn: ValueWouldSettle | null;
   /** one or two plain sentences: what to do and what it costs */
   readonly detail: string;
 }

@@ -2,6 +2,7 @@
 import { z } from 'zod';
 import { gradeField, lowestDialField } from './grade.ts';
 import { circuitField } from './lamp-counts.ts';
+import { valueWouldSettle } from './would-settle.ts';
 
 const KINDS = ['low-end-trim', 'added-resistor', 'bypass', 'more-lamps'] as const;
 
@@ -10,6 +11,11 @@ const outcome = {
   lowestDial_pct: lowestDialField,
   power_W: z.number().describe('What it adds at most: heat, or further lamps.'),
   parts: z.int().describe('Parts to buy and fit.'),
+  hingesOn: valueWouldSettle
+    .nullable()
+    .describe(
+      'The assumed value that would undo it within its usual range: with this remedy the pairing is undetermined until it is known.',
+    ),
   detail: z.string().describe('What to do and what it costs.'),
 };
 const heat = {

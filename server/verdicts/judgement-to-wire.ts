@@ -1,12 +1,10 @@
 /** Converts what the model says from SI to the wire's units and field names, and puts a whole verdict together. */
-import type { CornerResult, DialRow, PerPolarity, VariantGrade, Waveforms, WouldSettle } from '../../model/index.ts';
+import type { CornerResult, DialRow, PerPolarity, VariantGrade, Waveforms } from '../../model/index.ts';
 import type { JudgedPairing } from '../schemas/pairing.ts';
 import type { Evidence, Verdict } from '../schemas/verdict.ts';
 import type { WaveformsAnswer } from '../schemas/verdict-calls.ts';
-import type { WouldSettleAnswer } from '../schemas/would-settle.ts';
 import type { AskedJudgement, FoundLamp } from '../simulation/asked-circuit.ts';
 import { candidateName } from '../simulation/possible-circuits.ts';
-import { assumedOnWire } from './assumed-values.ts';
 import { CAUTIONS } from './cautions.ts';
 import { withFitAssumptions } from './fit-assumptions.ts';
 import { fitToWire } from './lamp-to-wire.ts';
@@ -14,6 +12,7 @@ import { MODEL_ASSUMPTIONS } from './model-assumptions.ts';
 import type { Assumption } from './pairing-completion.ts';
 import { lampCountsToWire, remediesToWire } from './remedies-to-wire.ts';
 import { percentOrNull, shown, shownOrNull } from './shown-figures.ts';
+import { wouldSettleToWire } from './would-settle-to-wire.ts';
 
 /** `assumed`: wire paths of the values that were filled in */
 export function toWire(judgement: AskedJudgement, assumed: readonly string[]): Evidence {
@@ -39,7 +38,7 @@ export function toWire(judgement: AskedJudgement, assumed: readonly string[]): E
     lampClasses: foundLamps.flatMap(classToWire),
     fits: foundLamps.flatMap((lamp) => (lamp.known === 'record' ? [{ path: lampPath(lamp), ...fitToWire(lamp) }] : [])),
     lampCounts: lampCounts === null ? null : lampCountsToWire(lampCounts),
-    remedies: remedies === null ? null : remediesToWire(remedies),
+    remedies: remedies === null ? null : remediesToWire(remedies, assumed),
     counters: { halfCycles, steps, events, modesBuilt, stops, sparedStops },
   };
 }
@@ -79,25 +78,6 @@ function classToWire(lamp: FoundLamp): Evidence['lampClasses'] {
     powerFactor: shown(powerFactor),
   }));
   return [{ path: lampPath(lamp), class: lampClass, spans, ask, candidates: told }];
-}
-
-function wouldSettleToWire(found: WouldSettle, assumed: readonly string[]): WouldSettleAnswer {
-  if (found.kind === 'circuit') return { kind: found.kind, ask: found.ask, detail: found.detail };
-  const { what, threshold, gradeBelow, gradeAbove, corner, measure, detail, alsoOpen } = found;
-  const { path, unit } = assumedOnWire(found.path, assumed) ?? { path: found.path, unit: 1 };
-  return {
-    kind: found.kind,
-    path,
-    what,
-    assumed: shown(found.assumed / unit),
-    threshold: { low: shown(threshold.low / unit), high: shown(threshold.high / unit) },
-    gradeBelow,
-    gradeAbove,
-    corner,
-    measure,
-    detail,
-    alsoOpen: alsoOpen.map((open) => assumedOnWire(open, assumed)?.path ?? open),
-  };
 }
 
 function rowToWire(row: DialRow): Evidence['dial'][number] {

@@ -5,6 +5,7 @@ import type { RemediesAnswer } from '../schemas/remedy.ts';
 import type { RequirementAnswer } from '../schemas/requirement.ts';
 import type { AskedJudgement, OfOneCircuit } from '../simulation/asked-circuit.ts';
 import { shown, shownOrNull } from './shown-figures.ts';
+import { valueToWire } from './would-settle-to-wire.ts';
 
 export function lampCountsToWire(judged: OfOneCircuit<LampCounts> & { readonly group: number }): LampCountsAnswer {
   const { group, circuit, counts, smallest, largest, unbroken, below, above, summary } = judged;
@@ -21,13 +22,26 @@ export function lampCountsToWire(judged: OfOneCircuit<LampCounts> & { readonly g
   };
 }
 
-export function remediesToWire({ circuit, grade, remedies, tried, summary }: OfOneCircuit<Remedies>): RemediesAnswer {
-  return { circuit, grade, found: remedies.map(remedyToWire), tried: tried.map(({ kind, candidates }) => ({ kind, candidates })), summary };
+/** `assumed`: wire paths of the values that were filled in */
+export function remediesToWire(
+  { circuit, grade, remedies, tried, summary }: OfOneCircuit<Remedies>,
+  assumed: readonly string[],
+): RemediesAnswer {
+  return {
+    circuit,
+    grade,
+    found: remedies.map((remedy) => remedyToWire(remedy, assumed)),
+    tried: tried.map(({ kind, candidates }) => ({ kind, candidates })),
+    summary,
+  };
 }
 
-function remedyToWire(remedy: Remedy): RemediesAnswer['found'][number] {
+function remedyToWire(remedy: Remedy, assumed: readonly string[]): RemediesAnswer['found'][number] {
   const { grade, lowestDial, power, parts, detail } = remedy;
-  const outcome = { grade, lowestDial_pct: lowestDial, power_W: shown(power), parts, detail };
+  // absent in a verdict that was recorded before remedies were asked this
+  const settles = remedy.hingesOn ?? null;
+  const hingesOn = settles === null ? null : valueToWire(settles, assumed);
+  const outcome = { grade, lowestDial_pct: lowestDial, power_W: shown(power), parts, hingesOn, detail };
   switch (remedy.kind) {
     case 'low-end-trim':
       return { kind: remedy.kind, ...outcome, position_pct: remedy.position };

@@ -4,7 +4,7 @@ import { cornersOf } from '../../model/judgement/corners.ts';
 import { EffortTally } from '../../model/judgement/effort.ts';
 import { addedLoadHeat } from '../../model/judgement/remedies/added-load-heat.ts';
 import { both, firedAt, idealDimmer, pairing, resistor, stiff } from '../support/model-pairings.ts';
-import { ALL_CORNERS, currentAt, dimmer, emulators, NOMINAL, resistiveLamp, ringing } from './circuits.ts';
+import { ALL_CORNERS, currentAt, dimmer, emulators, NOMINAL, OHMS, PULSE_ANGLE, resistiveLamp, ringing } from './circuits.ts';
 
 function remediesOf(any: Pairing): Remedies {
   const outcome = findRemedies(any, ALL_CORNERS);
@@ -74,6 +74,28 @@ describe('remedies', () => {
     expect(drawn(22e3)).toBeLessThan(1.2 * latching);
   });
 
+  it('say on which assumed value they hinge, with the threshold of the closed form', () => {
+    const latching = currentAt(30, 0.9) / 1.2 / 0.8;
+    const sick = resistiveLamp(30, 90, { latchingCurrent: both(latching) });
+    const curedIf = (low: number, high: number) => {
+      const assumed = [{ path: 'dimmer.drive.firingAngleFull', range: { low, high } }];
+      const outcome = findRemedies(sick, { ...ALL_CORNERS, assumed });
+      const found = outcome.ok ? outcome.value.remedies.find((r) => r.kind === 'added-resistor') : undefined;
+      if (found?.kind !== 'added-resistor') throw new Error('no resistor found');
+      return found;
+    };
+    const open = curedIf(20, 40);
+    expect([open.resistance, open.grade]).toEqual([20e3, 'suitable']);
+    // 0.9 Vp sin(alpha) (1/R + 1/20 kOhm) reaches the latching current in the cold from this angle on, less the pulse
+    const from = (Math.asin(0.5 / 0.8 / (1 + OHMS / 20e3)) * 180) / Math.PI - PULSE_ANGLE;
+    const { threshold, gradeBelow, gradeAbove } = open.hingesOn ?? { threshold: { low: 0, high: 0 } };
+    expect(threshold.low).toBeLessThan(from + 0.01);
+    expect(threshold.high).toBeGreaterThan(from - 0.01);
+    expect([gradeBelow, gradeAbove]).toEqual(['unsuitable', 'suitable']);
+    expect(open.detail).toContain('It hinges on the firing angle at full dial, which was assumed (30 deg)');
+    expect(curedIf(29.8, 40).hingesOn).toBeNull();
+  });
+
   it('come with the watts to buy: at least twice the heat', () => {
     const resistors = remediesOf(holdsTooLittle).remedies.filter((r) => r.kind === 'added-resistor' || r.kind === 'bypass');
     expect(resistors.length).toBeGreaterThan(0);
@@ -89,6 +111,23 @@ describe('remedies', () => {
     const { grade, remedies, tried, summary } = remediesOf(emulators(4, dimmer(40, 22)));
     expect([grade, remedies, tried]).toEqual(['suitable', [], []]);
     expect(summary).toContain('needs no remedy');
+  });
+
+  it('are not said to be needless without the assumption that this rests on', () => {
+    const suits = resistiveLamp(40, 90, { latchingCurrent: both((currentAt(30, 0.9) / 1.2) * 1.0001) });
+    const assumed = [{ path: 'dimmer.drive.firingAngleFull', range: { low: 20, high: 60 } }];
+    const outcome = findRemedies(suits, { ...ALL_CORNERS, assumed });
+    expect(outcome.ok && outcome.value.summary).toMatch(
+      /^It needs no remedy with the values as they were assumed: .* It hinges on the firing angle/,
+    );
+  });
+
+  it('replace the added load that is there, and say so', () => {
+    const loaded: Pairing = { ...holdsTooLittle, addedLoad: { kind: 'resistor', resistance: 220e3 } };
+    const { remedies } = remediesOf(loaded);
+    const loads = remedies.filter((r) => r.kind === 'added-resistor' || r.kind === 'bypass');
+    expect(loads.map((r) => r.kind).sort()).toEqual(['added-resistor', 'bypass']);
+    for (const { detail } of loads) expect(detail).toContain('in place of the load that is there now');
   });
 
   it('say so where none is found', () => {

@@ -142,4 +142,17 @@ describe('remedies that were asked for', () => {
     });
     expect(cured.grade).toBe(resistor.grade);
   });
+
+  it('say on what they hinge, as the pairing with them does when it is asked about', async () => {
+    const lamp = { ratedPower_W: 6, load: { kind: 'reservoir', capacitance_uF: 4.7, power_W: 6 } };
+    const { remedies } = await judged(pairing(lamp, { ...BRIEF, remedies: true }, 2));
+    const resistor = remedies.found.find(({ kind }: Loose) => kind === 'added-resistor');
+    expect(resistor.hingesOn).toMatchObject({ path: expect.stringMatching(/_[A-Za-z]+$/), gradeBelow: expect.any(String) });
+    const cured = await judged({
+      ...pairing(lamp, BRIEF, 2),
+      addedLoad: { kind: 'resistor', resistance_kOhm: resistor.resistance_kOhm },
+    });
+    expect([cured.grade, cured.wouldSettle]).toEqual(['undetermined', resistor.hingesOn]);
+    expect(resistor.detail).toContain(cured.wouldSettle.detail);
+  });
 });

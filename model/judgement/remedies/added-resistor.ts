@@ -8,7 +8,7 @@ import { cornersOf } from '../corners.ts';
 import { LEAST_ADDED_POWER, MOST_ADDED_POWER, POWER_MARGIN, POWER_RATINGS } from '../judgement-figures.ts';
 import { E12, E24, preferredValues } from '../preferred-values.ts';
 import { addedLoadHeat } from './added-load-heat.ts';
-import { type Patient, stillNeedsTrim, type Trial } from './candidate.ts';
+import { outcomeOf, type Patient, type Trial } from './candidate.ts';
 import type { Search } from './search.ts';
 
 /** of the coarse ladder every third value is tried: a factor of about 1.8 */
@@ -23,6 +23,9 @@ export function ratingFor(power: number): number | null {
   return POWER_RATINGS.find((rating) => rating >= POWER_MARGIN * power) ?? null;
 }
 
+/** the added load that a pairing has is left out where another is tried */
+export const insteadOf = ({ pairing }: Patient): string => (pairing.addedLoad === null ? '' : ', in place of the load that is there now');
+
 const figure = (value: number, digits = 3): string => String(Number(value.toPrecision(digits)));
 const ohms = (value: number): string => (value < 1000 ? `${figure(value)} Ohm` : `${figure(value / 1000)} kOhm`);
 
@@ -33,17 +36,18 @@ function describe(patient: Patient, resistance: number, trial: Trial): Remedy | 
   const heat = addedLoadHeat(patient.pairing, load, highCorner(patient), patient.options, patient.effort);
   const ratedPower = ratingFor(heat.power);
   if (ratedPower === null) return null;
-  const instead = patient.pairing.addedLoad === null ? '' : ', in place of the load that is there now';
   return {
     kind: 'added-resistor',
     resistance,
     hottestAt: heat.position,
     ratedPower,
-    grade: trial.grade,
-    lowestDial: trial.lowestDial,
     power: heat.power,
     parts: 1,
-    detail: `Connect ${ohms(resistance)} across the lamps${instead}. It turns up to ${figure(heat.power)} W to heat: buy at least ${figure(ratedPower)} W, made for mains voltage, and mount it where it may run hot.${stillNeedsTrim(trial)}`,
+    ...outcomeOf(
+      patient,
+      trial,
+      `Connect ${ohms(resistance)} across the lamps${insteadOf(patient)}. It turns up to ${figure(heat.power)} W to heat: buy at least ${figure(ratedPower)} W, made for mains voltage, and mount it where it may run hot.`,
+    ),
   };
 }
 

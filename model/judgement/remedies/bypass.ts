@@ -3,8 +3,8 @@ import type { AddedLoad } from '../../pairing.ts';
 import type { Remedy } from '../../verdict.ts';
 import { BYPASS_CAPACITANCES, BYPASS_RESISTANCES, CAPACITOR_CLASSES } from '../judgement-figures.ts';
 import { addedLoadHeat } from './added-load-heat.ts';
-import { highCorner, ratingFor } from './added-resistor.ts';
-import { type Patient, stillNeedsTrim, type Trial } from './candidate.ts';
+import { highCorner, insteadOf, ratingFor } from './added-resistor.ts';
+import { outcomeOf, type Patient, type Trial } from './candidate.ts';
 import type { Search } from './search.ts';
 
 const figure = (value: number): string => String(Number(value.toPrecision(3)));
@@ -25,11 +25,13 @@ function describe(patient: Patient, load: AddedLoad & { kind: 'resistor-capacito
     ratedPower,
     capacitorClass,
     peakVoltage: heat.peakVoltage,
-    grade: trial.grade,
-    lowestDial: trial.lowestDial,
     power: heat.power,
     parts: 2,
-    detail: `Connect ${figure(load.resistance)} Ohm in series with ${figure(load.capacitance * 1e9)} nF across the lamps: ${kind}, and a pulse-proof resistor of at least ${figure(ratedPower)} W (it turns up to ${figure(heat.power)} W to heat).${stillNeedsTrim(trial)}`,
+    ...outcomeOf(
+      patient,
+      trial,
+      `Connect ${figure(load.resistance)} Ohm in series with ${figure(load.capacitance * 1e9)} nF across the lamps${insteadOf(patient)}: ${kind}, and a pulse-proof resistor of at least ${figure(ratedPower)} W (it turns up to ${figure(heat.power)} W to heat).`,
+    ),
   };
 }
 

@@ -1,6 +1,10 @@
-/** Judges a changed pairing at every corner, cheaply where it is no better than the pairing it is to cure. */
+/**
+ * Judges a changed pairing at every corner, cheaply where it is no better than the pairing it is to cure, and says of a cure whether it
+ * hinges on a value that was only assumed.
+ */
 import type { Pairing } from '../../pairing.ts';
-import type { CornerName, Grade, JudgeOptions } from '../../verdict.ts';
+import type { CornerName, Grade, JudgeOptions, ValueWouldSettle } from '../../verdict.ts';
+import { wouldSettle } from '../assumed/would-settle.ts';
 import { failsOnTheWayUp, topPositions } from '../dial-trial.ts';
 import type { EffortTally } from '../effort.ts';
 import { isWorse, type OverCorners, overCorners } from '../over-corners.ts';
@@ -9,6 +13,9 @@ export interface Trial {
   readonly grade: Grade;
   readonly lowestDial: number | null;
   readonly over: OverCorners;
+  /** what was judged */
+  readonly pairing: Pairing;
+  readonly options: JudgeOptions;
 }
 
 /** What is to be cured, and how its cures are tried. */
@@ -39,10 +46,22 @@ export class Patient {
     const over = overCorners(changed, options, effort, { goal, first: hardest });
     this.hardest = over.decisive.corner.name;
     if (!isWorse(base.grade, over.grade) || over.grade === 'undetermined') return null;
-    return { grade: over.grade, lowestDial: over.lowestDial, over };
+    return { grade: over.grade, lowestDial: over.lowestDial, over, pairing: changed, options };
+  }
+
+  /** the assumed value that would undo the cure within its usual range; null where none does */
+  hingesOn({ pairing, options, over }: Trial): ValueWouldSettle | null {
+    return wouldSettle(pairing, options, over, this.effort);
   }
 }
 
+/** what every remedy says of its trial, whatever its kind */
+export function outcomeOf(patient: Patient, trial: Trial, does: string) {
+  const hingesOn = patient.hingesOn(trial);
+  const open = hingesOn === null ? '' : ` ${hingesOn.detail}`;
+  return { grade: trial.grade, lowestDial: trial.lowestDial, hingesOn, detail: `${does}${stillNeedsTrim(trial)}${open}` };
+}
+
 /** the sentence part that a conditional cure needs */
-export const stillNeedsTrim = ({ lowestDial }: Pick<Trial, 'lowestDial'>): string =>
+const stillNeedsTrim = ({ lowestDial }: Pick<Trial, 'lowestDial'>): string =>
   lowestDial === null ? '' : ` The low-end trim must also keep the dial at ${lowestDial} % or above.`;

@@ -6,6 +6,7 @@ import type { Outcome } from '../../failures.ts';
 import type { Pairing } from '../../pairing.ts';
 import { checkOptions, checkPairing } from '../../pairing-check.ts';
 import type { JudgeOptions, Remedies, Remedy } from '../../verdict.ts';
+import { wouldSettle } from '../assumed/would-settle.ts';
 import { EffortTally } from '../effort.ts';
 import { checkJudgeExtras } from '../options-check.ts';
 import { addedResistor } from './added-resistor.ts';
@@ -31,6 +32,13 @@ function summaryOf(remedies: readonly Remedy[], tried: Remedies['tried']): strin
   return `No remedy was found: ${kinds.join(', ')} did not make it better (${tried.reduce((sum, t) => sum + t.candidates, 0)} candidates simulated).`;
 }
 
+function needsNone({ base, pairing, options, effort }: Patient): string {
+  const open = wouldSettle(pairing, options, base, effort);
+  return open === null
+    ? 'It needs no remedy: suitable at every corner.'
+    : `It needs no remedy with the values as they were assumed: suitable at every corner. ${open.detail}`;
+}
+
 /** candidates of one kind together */
 function triedOf(searches: readonly Search[]): Remedies['tried'] {
   const kinds = [...new Set(searches.map((s) => s.kind))];
@@ -48,9 +56,7 @@ export function findRemedies(pairing: Pairing, options: JudgeOptions): Outcome<R
   const patient = new Patient(pairing, { ...options, corners: 'all' }, effort);
   const { grade } = patient.base;
   const given = { grade, remedies: [], tried: [] };
-  if (grade === 'suitable') {
-    return { ok: true, value: { ...given, summary: 'It needs no remedy: suitable at every corner.', counters: effort.total } };
-  }
+  if (grade === 'suitable') return { ok: true, value: { ...given, summary: needsNone(patient), counters: effort.total } };
   const searches = [lowEndTrim(patient), addedResistor(patient), bypass(patient), ...moreLamps(patient)];
   const remedies = searches
     .map((s) => s.remedy)

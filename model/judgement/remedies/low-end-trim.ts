@@ -1,7 +1,7 @@
 /** Raises the low end of the dial until what is left of it is steady: simulated anew from dark at that setting. */
 import { LEAST_STEADY_RANGE } from '../../tolerances.ts';
 import type { Remedy } from '../../verdict.ts';
-import type { Patient } from './candidate.ts';
+import { outcomeOf, type Patient } from './candidate.ts';
 import type { Search } from './search.ts';
 
 export function lowEndTrim(patient: Patient): Search {
@@ -20,11 +20,13 @@ export function lowEndTrim(patient: Patient): Search {
     const remedy: Remedy = {
       kind: 'low-end-trim',
       position,
-      grade: 'suitable',
-      lowestDial: null,
       power: 0,
       parts: 0,
-      detail: `Set the dimmer's low-end trim so that the dial does not go below ${position} %: what is left of it is steady at every corner.`,
+      ...outcomeOf(
+        patient,
+        trial,
+        `Set the dimmer's low-end trim so that the dial does not go below ${position} %: what is left of it is steady at every corner.`,
+      ),
     };
     return { kind: 'low-end-trim', candidates, remedy };
   }

@@ -3,7 +3,7 @@ import type { DialRow, Remedy } from '../../verdict.ts';
 import { MOST_ADDED_LAMPS } from '../judgement-figures.ts';
 import { withCount } from '../lamp-count.ts';
 import type { OverCorners } from '../over-corners.ts';
-import { type Patient, stillNeedsTrim, type Trial } from './candidate.ts';
+import { outcomeOf, type Patient, type Trial } from './candidate.ts';
 import type { Search } from './search.ts';
 
 /** W into all lamps where that is most, at the nominal corner; null where that corner was not judged */
@@ -32,11 +32,13 @@ export function moreLamps(patient: Patient): Search[] {
         kind: 'more-lamps',
         group,
         added,
-        grade: trial.grade,
-        lowestDial: trial.lowestDial,
         power,
         parts: added,
-        detail: `Add ${added === 1 ? 'one more lamp' : `${added} more lamps`}${which} to the circuit, ${lampGroup.count + added} in all.${stillNeedsTrim(trial)}`,
+        ...outcomeOf(
+          patient,
+          trial,
+          `Add ${added === 1 ? 'one more lamp' : `${added} more lamps`}${which} to the circuit, ${lampGroup.count + added} in all.`,
+        ),
       };
     }
     return { kind: 'more-lamps', candidates, remedy: best };
