@@ -4,7 +4,8 @@
  * against few, in turns too. Processor time stands beside both: it tells more where other work shares the machine. The records are made
  * in a temporary folder and deleted.
  *
- *   npm run bench:catalogue [-- --rows 1000000 --few 10000 --rounds 15 --seconds 2 --requests 1000 --keep FOLDER]
+ *   npm run bench:catalogue [-- --parts throughput,latency --rows 1000000 --few 10000 --rounds 15 --seconds 2 --requests 1000
+ *     --keep FOLDER]
  */
 import { spawn } from 'node:child_process';
 import { existsSync, mkdtempSync, rmSync, statSync } from 'node:fs';
@@ -21,6 +22,7 @@ import { type ServiceProcess, startService } from './service-process.ts';
 
 const { values } = parseArgs({
   options: {
+    parts: { type: 'string', default: 'throughput,latency' },
     rows: { type: 'string', default: '1000000' },
     few: { type: 'string', default: '10000' },
     rounds: { type: 'string', default: '15' },
@@ -36,6 +38,7 @@ const [rows, few, rounds, seconds, requests] = [values.rows, values.few, values.
   number,
   number,
 ];
+const parts = values.parts.split(',');
 
 const folder = values.keep ?? mkdtempSync(join(tmpdir(), 'holdfast-bench-'));
 const services: ServiceProcess[] = [];
@@ -51,8 +54,8 @@ try {
   services.push(atFew);
   const atMany = await startService(many);
   services.push(atMany);
-  await compareThroughput(atMany);
-  await compareLatency([atFew, atMany]);
+  if (parts.includes('throughput')) await compareThroughput(atMany);
+  if (parts.includes('latency')) await compareLatency([atFew, atMany]);
 } finally {
   for (const service of services) await service.stop();
   if (values.keep === undefined) rmSync(folder, { recursive: true, force: true });

@@ -2,7 +2,7 @@
  * Measures screenings: pairings an hour against a bare loop, over Redis and with two workers; kills at random moments; memory over what is
  * stored already; verdicts and badges meanwhile; and how long a whole night's list takes.
  *
- *   npm run bench:screening [-- --parts throughput,kills,memory,latency,night --rounds 3 --lamps 8 --dimmers 5 --kills 50 --stored 1000000
+ *   npm run bench:screening [-- --parts throughput,kills,memory,latency,night --rounds 5 --lamps 6 --dimmers 5 --kills 50 --stored 1000000
  *     --requests 1000 --sample 60]
  */
 import { spawnSync } from 'node:child_process';
@@ -18,8 +18,8 @@ const whole = (fallback: string) => ({ type: 'string', default: fallback }) as c
 const { values } = parseArgs({
   options: {
     parts: whole('throughput,kills,memory,latency,night'),
-    rounds: whole('3'),
-    lamps: whole('8'),
+    rounds: whole('5'),
+    lamps: whole('6'),
     dimmers: whole('5'),
     kills: whole('50'),
     stored: whole('1000000'),
@@ -51,7 +51,7 @@ async function killAtRandom(kills: number): Promise<void> {
   const lines = killed.csv.trimEnd().split('\r\n').slice(1);
   const named = new Set(lines.map((line) => line.split(',').slice(0, 3).join(',')));
   console.log(
-    `  killed ${killed.kills} times; ${pairings - named.size} lost, ${lines.length - named.size + (verdicts - pairings)} doubled`,
+    `  killed ${killed.kills} times${killed.kills < kills ? ', after which it was done' : ''}; ${pairings - named.size} lost, ${lines.length - named.size + (verdicts - pairings)} doubled`,
   );
   console.log(`  counts: ${JSON.stringify(counts)}`);
   const isSame = killed.csv === undisturbed.csv;

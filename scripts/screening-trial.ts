@@ -46,6 +46,8 @@ export async function runTrial({ lamps, dimmers, kills, seed, variables = {}, al
     await fillCatalogue(service.address, { lamps, dimmers });
     const id = await ask(service.address);
     let killed = 0;
+    // pairings that were judged beyond all targets, while nobody looked: so many more will be before each further kill
+    let overrun = 0;
     for (let target = 0; ; ) {
       const { state, counts } = await read(service.address, id);
       if (state === 'finished') break;
@@ -60,8 +62,11 @@ export async function runTrial({ lamps, dimmers, kills, seed, variables = {}, al
         }
         killed += 1;
         onKill?.(killed, counts);
+        overrun += counts.done - target;
         // Spread over what is left, so that each kill meets it at work.
-        target = counts.done + (random() * counts.toGo) / (kills - killed + 1);
+        const left = kills - killed;
+        const room = Math.max(0, counts.toGo - (left * overrun) / killed);
+        target = counts.done + (random() * room) / (left + 1);
       }
       await new Promise((resolve) => setTimeout(resolve, LOOK));
     }
