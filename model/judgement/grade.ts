@@ -5,6 +5,7 @@ import type { Condition, DialRow, Grade, PopOn, Reason } from '../verdict.ts';
 import { ratingReasons } from './ratings.ts';
 import { dialReasons } from './reasons.ts';
 import { byPosition, popOn, steadyFrom, steadyWhereLit } from './steady-range.ts';
+import { undecidedHint } from './undecided-hint.ts';
 
 export interface CornerGrade {
   readonly grade: Grade;
@@ -38,7 +39,9 @@ export function lowestDialCondition(position: number): Condition {
 export function gradeDial(pairing: Pairing, dial: readonly DialRow[]): CornerGrade {
   const pop = popOn(dial);
   const ratings = ratingReasons(pairing, dial);
-  const reasons = [...ratings, ...dialReasons(dial, pop)];
+  const hint = undecidedHint(pairing);
+  const told = dialReasons(dial, pop).map((r) => (r.code === 'undecided' ? { ...r, detail: `${r.detail}${hint}` } : r));
+  const reasons = [...ratings, ...told];
   const graded = (grade: Grade, conditions: readonly Condition[] = []): CornerGrade => ({ grade, conditions, reasons, popOn: pop });
   if (ratings.length > 0) return graded('unsuitable');
   if (steadyWhereLit(dial)) return graded('suitable');

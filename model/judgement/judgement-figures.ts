@@ -18,6 +18,12 @@ export const RANKING_HALVINGS = 3;
 /** values, nearest first, for which a flip that a few positions show is confirmed at every corner, before none is said to settle it */
 export const SURE_TRIES = 3;
 
+// --- undecided pairings ---------------------------------------------------------------------------------------------------------
+
+/** F, the smallest capacitor that is put across a lamp's input; with less it switches to and fro within microseconds where its curve falls.
+ * Larger would give the hint where the capacitor is not to blame. */
+export const LEAST_FILM_CAPACITOR = 1e-9;
+
 // --- lamp counts ----------------------------------------------------------------------------------------------------------------
 
 /** counts judged in one call: each takes up to four sweeps */

@@ -27,7 +27,10 @@ export function summarize(pairing: Pairing, dial: readonly DialRow[], judged: Co
   if (lowest !== undefined) {
     return `${who} ${runs} steadily on this dimmer from ${lowest.position} % of the dial up, not below.`;
   }
-  if (judged.grade === 'undetermined') return `Whether ${who.toLowerCase()} ${runs} steadily on this dimmer could not be decided.`;
+  if (judged.grade === 'undetermined') {
+    const why = judged.reasons.find((r) => r.code === 'undecided')?.detail ?? '';
+    return `Whether ${who.toLowerCase()} ${runs} steadily on this dimmer could not be decided. ${why}`.trim();
+  }
   if (dial.every((r) => r.state === 'dark')) return `${who} ${many ? 'stay' : 'stays'} dark on this dimmer at every dial position.`;
   const refiring = dial.filter((r) => r.firings.max >= 2);
   const busiest = Math.max(0, ...refiring.map((r) => r.firings.max));

@@ -72,7 +72,27 @@ describe('the grade', () => {
   test('is undetermined where full dial could not be decided', () => {
     const g = graded(dial((p) => (p === 100 ? dialRow(p, { state: 'undecided' }) : dialRow(p))));
     expect(g.grade).toBe('undetermined');
-    expect(g.summary).toBe('Whether 4 lamps run steadily on this dimmer could not be decided.');
+    expect(g.summary).toBe(`Whether 4 lamps run steadily on this dimmer could not be decided. ${g.reasons[0]?.detail}`);
+    expect(g.reasons[0]?.detail).toMatch(/^Too much switching to follow .* rather than a wrong one\.$/);
+  });
+
+  test('that could not be decided asks for the input capacitor where a curve falls and the lamp was given none', () => {
+    const points = [
+      { voltage: 40, current: 0 },
+      { voltage: 60, current: 0.13 },
+      { voltage: 325, current: 0.025 },
+    ];
+    const falling = emulator(8, mains230);
+    const withCapacitor = (capacitance: number, load = { kind: 'iv-table' as const, points }) =>
+      pairing(mains230, everydayDimmer(), { ...falling, load, input: { ...falling.input, capacitance } }, 3);
+    const undecided = dial((p) => dialRow(p, { state: 'undecided' }));
+    const hint = /The lamps draw less current as their voltage rises.* give their input capacitance/;
+    expect(graded(undecided, withCapacitor(0)).summary).toMatch(hint);
+    expect(graded(undecided, withCapacitor(0)).reasons[0]?.detail).toMatch(hint);
+    expect(graded(undecided, withCapacitor(47e-9)).summary).not.toMatch(hint);
+    expect(graded(undecided, withCapacitor(0, { kind: 'iv-table', points: points.slice(0, 2) })).summary).not.toMatch(hint);
+    const mixed = { ...withCapacitor(0), lamps: [{ count: 1, lamp: filament(40, mains230) }, ...withCapacitor(0).lamps] };
+    expect(graded(undecided, mixed).summary).toContain('The lamps of group 2 draw less');
   });
 
   test('needs no decision below a steady range', () => {
