@@ -21,6 +21,7 @@ export const NOTHING_STATED: StatedColumns = {
 const QUANTITIES = ['time', 'voltage', 'current'] as const;
 const NUMBER = /^[+-]?(\d+([.,]\d*)?|[.,]\d+)(e[+-]?\d+)?$/i;
 const MOST_HEADER_ROWS = 2;
+const COMMA_HINT = 'Where the decimal mark is a comma, semicolons or tabs must separate the fields.';
 
 /** the field separator that the text's first lines use: tab before semicolon before comma, which may be a decimal comma */
 export function separatorOf(text: string): '\t' | ';' | ',' {
@@ -101,6 +102,10 @@ export function readScopeColumns(rows: readonly Row[], stated: StatedColumns = N
   const samples = rows.slice(headers);
   if (samples.length === 0) return unreadable('The record holds no rows of numbers.', null, null);
   const width = (samples[0] as Row).length;
+  const named = Math.max(0, ...rows.slice(0, headers).map((row) => row.length));
+  if (headers > 0 && (samples[0] as Row).slice(named).some((field) => field.trim() !== '')) {
+    return unreadable(`Row ${headers + 1} has ${width} fields where the header has ${named}. ${COMMA_HINT}`, headers + 1, null);
+  }
   const headings = headingsOf(rows.slice(0, headers), width);
   const places = placesOf(headings, stated);
   if (!places.ok) return places;
@@ -117,7 +122,11 @@ export function readScopeColumns(rows: readonly Row[], stated: StatedColumns = N
       const field = row[place];
       const number = headers + k + 1;
       if (row.length !== width)
-        return unreadable(`Row ${number} has ${row.length} fields where the first row of numbers has ${width}.`, number, null);
+        return unreadable(
+          `Row ${number} has ${row.length} fields where the first row of numbers has ${width}. ${COMMA_HINT}`,
+          number,
+          null,
+        );
       const value = numberOf(field as string);
       if (!Number.isFinite(value)) {
         const shown = (field as string).trim().slice(0, 30);

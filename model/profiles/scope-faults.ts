@@ -32,18 +32,33 @@ export function timeFault({ time, voltage, current, firstRow }: ScopeRecord): Sc
       return { kind: 'unreadable-record', detail: `Row ${firstRow + k}: the ${column} is not a finite number.`, row: firstRow + k, column };
     }
   }
-  if (n < 2 || (time[n - 1] as number) - (time[0] as number) < 1 / FREQUENCY_RANGE[1] - Number.EPSILON) return shortRecord(time);
+  if (n < 2) return shortRecord(time);
   for (let k = 1; k < n; k++) {
     if ((time[k] as number) > (time[k - 1] as number)) continue;
+    const instead = (['voltage', 'current'] as const).find((column) => unevenAt({ voltage, current }[column]) === null);
+    if (instead !== undefined) {
+      const detail = `Time and ${instead} look exchanged: the ${instead} column rises evenly from row to row, the time column does not.`;
+      return { kind: 'columns-swapped', detail };
+    }
     const detail = `Row ${firstRow + k}: the time does not rise above that of the row before it (${figures(time[k - 1] as number)} s).`;
     return { kind: 'time-not-rising', detail, row: firstRow + k };
   }
-  const step = ((time[n - 1] as number) - (time[0] as number)) / (n - 1);
+  if ((time[n - 1] as number) - (time[0] as number) < 1 / FREQUENCY_RANGE[1] - Number.EPSILON) return shortRecord(time);
+  const uneven = unevenAt(time);
+  if (uneven === null) return null;
+  const { row, off, step } = uneven;
+  const detail = `Row ${firstRow + row}: the time is not even: it lies ${figures(off)} steps of ${figures(step)} s off, as where samples are missing.`;
+  return { kind: 'time-not-even', detail, row: firstRow + row };
+}
+
+/** the first of a column's values that does not lie on a rising, even grid from its first to its last; null where all do */
+function unevenAt(values: ArrayLike<number>): { readonly row: number; readonly off: number; readonly step: number } | null {
+  const n = values.length;
+  const step = ((values[n - 1] as number) - (values[0] as number)) / (n - 1);
+  if (!(step > 0)) return { row: 0, off: 0, step };
   for (let k = 1; k < n; k++) {
-    const off = ((time[k] as number) - (time[0] as number)) / step - k;
-    if (Math.abs(off) <= TIME_JITTER) continue;
-    const detail = `Row ${firstRow + k}: the time is not even: it lies ${figures(Math.abs(off))} steps of ${figures(step)} s off, as where samples are missing.`;
-    return { kind: 'time-not-even', detail, row: firstRow + k };
+    const off = Math.abs(((values[k] as number) - (values[0] as number)) / step - k);
+    if (off > TIME_JITTER) return { row: k, off, step };
   }
   return null;
 }

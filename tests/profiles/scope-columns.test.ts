@@ -47,6 +47,14 @@ describe('the columns of a scope record', () => {
     ]);
   });
 
+  test('may be followed by a comma that ends each row', () => {
+    const rows = [
+      ['time_s', 'voltage_V', 'current_A'],
+      ['5', '230', '1', ''],
+    ];
+    expect(columns(rows)).toEqual([[5], [230], [1]]);
+  });
+
   test('are found by name in any order, between others', () => {
     const rows = [
       ['current_A', 'trigger', 'time_ms', 'voltage_V'],
@@ -85,6 +93,15 @@ describe('the columns of a scope record', () => {
     ['an empty field', [...numbers, ['0.002', '', '1']], stating(si), 'Row 3: the voltage is empty'],
     ['thousands separators', [...numbers, ['0.002', '1.234,5', '1']], stating(si), 'Row 3: the voltage is no number'],
     ['a short row', [...numbers, ['0.002', '1']], stating(si), 'Row 3 has 2 fields'],
+    [
+      'decimal commas among separating ones',
+      [
+        ['time_s', 'voltage_V', 'current_A'],
+        ['0', '0001', '3', '5', '0', '1'],
+      ],
+      NOTHING_STATED,
+      'Row 2 has 6 fields where the header has 3. Where the decimal mark is a comma, semicolons or tabs must separate',
+    ],
     ['no unit', numbers, stating({ time: 's', voltage: 'V' }), 'The unit of the current column is not known'],
     ['a unit of another quantity', numbers, stating({ ...si, current: 'V' }), 'cannot be in V'],
     [

@@ -104,6 +104,8 @@ describe('a record is refused', () => {
       'columns-swapped',
       'exchanged',
     ],
+    ['with time and voltage exchanged', { ...record, time: record.voltage, voltage: record.time }, 'columns-swapped', 'Time and voltage'],
+    ['with time and current exchanged', { ...record, time: record.current, current: record.time }, 'columns-swapped', 'Time and current'],
     [
       'with a current in A where mA was meant',
       { ...record, current: times(record.current, 1000) },
@@ -131,6 +133,7 @@ describe('a record is refused', () => {
       'not a sine',
     ],
     ['whose time stands still', { ...record, time: changed(record.time, 100, record.time[99] as number) }, 'time-not-rising', 'Row 102'],
+    ['whose time falls from row to row', { ...record, time: times(record.time, -1) }, 'time-not-rising', 'Row 3'],
     ['whose time runs back', { ...record, time: changed(record.time, 100, -1) }, 'time-not-rising', 'Row 102'],
     [
       'with samples missing',
