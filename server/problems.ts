@@ -56,7 +56,7 @@ export const PROBLEMS = {
   'profile-not-fitted': {
     status: 422,
     title: 'The record cannot be fitted to a lamp',
-    when: 'a phase table or scope record is valid, but no lamp of the model draws such a current; `residual_pct` says how far the best one is off',
+    when: 'a phase table or scope record is valid, but no lamp of the model draws such a current, or a phase table’s power is not the rated one; `residual_pct` says how far the best fit is off',
   },
   'scope-record-unusable': {
     status: 422,

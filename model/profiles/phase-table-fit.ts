@@ -7,6 +7,7 @@ import type { Lamp, LampInput } from '../pairing.ts';
 import { checkPhaseTable, type PhaseTable, pointWeights, tableMeans } from './phase-table.ts';
 import { type ProfileOutcome, refused } from './profile-failures.ts';
 import { FEWEST_ARC_POINTS, FITTED_DIGITS, LEAST_TROUGH_SHARE, RESIDUAL_LIMIT } from './profile-tolerances.ts';
+import { tablePowerFault } from './recorded-power.ts';
 import { conductionArc, fitReservoir, isReservoirArc } from './reservoir-fit.ts';
 import { residualReason } from './residual-reason.ts';
 import { fitStatic } from './static-fit.ts';
@@ -126,6 +127,8 @@ export function fitPhaseTable(table: PhaseTable, ground: FitGround): ProfileOutc
   }
   if (issues.length > 0) return refused({ kind: 'invalid-profile', detail: 'The phase table cannot be fitted as given.', issues });
   const recorded = tableMeans(table);
+  const powerless = tablePowerFault(recorded.power, ground.ratedPower);
+  if (powerless !== null) return refused(powerless);
   const arc = conductionArc(table);
   if (arc.points < FEWEST_ARC_POINTS) {
     const detail = `Only ${arc.points} points of a half-cycle carry current, ${FEWEST_ARC_POINTS} are needed: record more points, or the shape between them is unknown.`;

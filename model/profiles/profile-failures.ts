@@ -20,6 +20,8 @@ export type ProfileFailure =
   | { readonly kind: 'residual-too-large'; readonly detail: string; readonly residual: number; readonly limit: number }
   /** too few points carry current to tell how it rises and falls */
   | { readonly kind: 'arc-not-resolved'; readonly detail: string; readonly points: number }
+  /** the power that a phase table comes to is not that of the lamp; W */
+  | { readonly kind: 'table-power'; readonly detail: string; readonly power: number }
   | ScopeFailure;
 
 export type ScopeFailure =

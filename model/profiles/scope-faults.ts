@@ -6,14 +6,12 @@ import {
   DISTORTION_LIMIT,
   FEWEST_SAMPLES_A_PERIOD,
   FREQUENCY_RANGE,
-  LAMP_POWER,
-  POWER_SPREAD,
   RESIDUAL_LIMIT,
   SINE_LIKE,
   TIME_JITTER,
-  UNIT_SPREAD,
   VOLTAGE_RANGE,
 } from './profile-tolerances.ts';
+import { powerFault } from './recorded-power.ts';
 import type { ScopeRecord } from './scope-record.ts';
 
 const figures = (value: number): string => String(Number(value.toPrecision(3)));
@@ -110,29 +108,6 @@ export function periodFault(samples: number, step: number, { frequency }: Fundam
   if (perPeriod >= 0.995 * FEWEST_SAMPLES_A_PERIOD) return null;
   const detail = `${figures(perPeriod)} samples a period (${samples} in all) are too few: ${FEWEST_SAMPLES_A_PERIOD} are needed to show how the current rises.`;
   return { kind: 'too-few-samples', detail };
-}
-
-function powerFault(power: number, ratedPower: number | null): ScopeFailure | null {
-  if (ratedPower === null) {
-    if (within(power, LAMP_POWER)) return null;
-    const detail = `The record comes to ${figures(power)} W, which is no lamp's: check whether the current is in A or in mA, and the probe's factor.`;
-    return { kind: 'wrong-units', detail, factor: null };
-  }
-  const factor = power / ratedPower;
-  const said = `The record comes to ${figures(power)} W where ${figures(ratedPower)} W are rated`;
-  for (const [unit, mistaken] of [
-    [1000, 'amperes where milliamperes were meant'],
-    [0.001, 'milliamperes where amperes were meant'],
-  ] as const) {
-    if (!within(factor / unit, [1 / UNIT_SPREAD, UNIT_SPREAD])) continue;
-    return { kind: 'wrong-units', detail: `${said}, ${figures(factor)} times as much: the current is probably in ${mistaken}.`, factor };
-  }
-  if (within(factor, [1 / POWER_SPREAD, POWER_SPREAD])) return null;
-  return {
-    kind: 'power-disagrees',
-    detail: `${said}, ${figures(factor)} times as much: check the probe's factor, and that it is this lamp.`,
-    factor,
-  };
 }
 
 /** What only shows once the periods are averaged: a voltage that is no sine, a power that cannot be, too much noise. */

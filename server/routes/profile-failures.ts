@@ -21,6 +21,7 @@ export function sendProfileProblem(reply: FastifyReply, refused: Refused): Fasti
       return sendProblem(reply, 'profile-not-fitted', detail, { ...extras, members });
     }
     case 'arc-not-resolved':
+    case 'table-power':
       return sendProblem(reply, 'profile-not-fitted', detail, extras);
     default: {
       const row = 'row' in failure && failure.row !== null ? { row: failure.row } : {};

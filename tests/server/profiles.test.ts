@@ -73,7 +73,7 @@ describe('POST /v1/profiles', () => {
       ),
       'wrong-units',
     ],
-    ['a time that stands still', record(changed(([, v = '', i = '']) => ['1', v, i])), 'no-full-period'],
+    ['a time that stands still', record(changed(([, v = '', i = '']) => ['1', v, i])), 'time-not-rising'],
     ['a text that is no number', record(KITCHEN.replace('\n0.5,', '\nhalf,')), 'unreadable-record'],
     ['a header without units', record(KITCHEN.replace('time_ms,voltage_V,current_mA', 'time,voltage,current')), 'unreadable-record'],
     ['a quote that is not closed', record(`${KITCHEN}"1,2,3`), 'unreadable-record'],
@@ -128,6 +128,21 @@ describe('POST /v1/profiles', () => {
     expect(status).toBe(422);
     expect(body).toMatchObject({ type: 'urn:holdfast:problem:profile-not-fitted', limit_pct: 15 });
     expect(body.residual_pct).toBeGreaterThan(15);
+  });
+
+  it.each([
+    [
+      'currents in amperes where milliamperes are asked for',
+      1e-3,
+      /0\.00\d+ W where 8 W are rated: its currents are probably in amperes, and it takes milliamperes/,
+    ],
+    ['currents of another lamp', 5, /where 8 W are rated, 5\.\d* times as much/],
+    ['currents of the wrong sign', -1, /runs against the voltage, .* change its sign/],
+  ])('refuses a phase table with %s', async (_, factor, says) => {
+    const points = EXAMPLE_PROFILE.points.map(({ phase_deg, current_mA }) => ({ phase_deg, current_mA: current_mA * factor }));
+    const { status, body } = await postProfile({ ...EXAMPLE_PROFILE, points });
+    expect([status, body.type]).toEqual([422, 'urn:holdfast:problem:profile-not-fitted']);
+    expect(body.detail).toMatch(says);
   });
 
   it('refuses a bad body by its places', async () => {
