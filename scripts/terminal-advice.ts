@@ -19,8 +19,9 @@ export function settlingLines(found: Verdict['wouldSettle']): string[] {
 }
 
 /** Neighbouring counts of one outcome share a line. */
-export function countLines(judged: Verdict['lampCounts']): string[] {
+export function countLines({ lampCounts: judged, wouldSettle }: Pick<Verdict, 'lampCounts' | 'wouldSettle'>): string[] {
   if (judged === null) return [];
+  const assuming = wouldSettle?.kind === 'value' ? wrap(`With ${wouldSettle.what} as it was assumed.`, '  ') : [];
   const runs: { from: number; to: number; words: string }[] = [];
   for (const { count, grade, lowestDial_pct, detail } of judged.counts) {
     const words = lowestDial_pct === null ? `${grade}. ${detail}` : `${grade} from ${lowestDial_pct} %.`;
@@ -31,6 +32,7 @@ export function countLines(judged: Verdict['lampCounts']): string[] {
   return [
     ...wrap(judged.summary, '  '),
     ...circuitLines(judged.circuit),
+    ...assuming,
     ...runs.flatMap(({ from, to, words }) => wrap(words, `  ${(from === to ? `${from}` : `${from}-${to}`).padStart('500-500'.length)}  `)),
   ];
 }

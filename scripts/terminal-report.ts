@@ -21,11 +21,11 @@ export function terminalReport(verdict: Verdict, paint: Paint, requirement: Requ
   const sections = [
     [paint(verdict.grade.toUpperCase(), 'bold', GRADE_COLOURS[verdict.grade]), ...wrap(verdict.summary)],
     pairingLines(verdict.pairing),
-    [...dialStrip(verdict.dial, paint), ...figureLines(verdict.dial), ...edgeLines(verdict.dial)],
+    [...dialStrip(verdict.dial, paint), ...figureLines(verdict.dial), ...edgeLines(verdict.dial), ...circuitLines(verdict)],
     titled('What must be seen to', itemLines(verdict.conditions.map(({ detail }) => detail)), paint),
     titled('What would settle it', settlingLines(verdict.wouldSettle), paint),
     titled('Remedies', remedyLines(verdict.remedies), paint),
-    titled(countTitle(verdict), countLines(verdict.lampCounts), paint),
+    titled(countTitle(verdict), countLines(verdict), paint),
     titled('What dimmer would do', requirementLines(requirement), paint),
     titled('Why', reasonLines(verdict.reasons), paint),
     titled('Corners', cornerLines(verdict), paint),
@@ -90,6 +90,12 @@ function edgeLines(dial: Verdict['dial']): string[] {
   const least = Math.min(...margins.filter((margin) => margin !== null));
   const text = `Near the edge at ${positions.join(', ')} %: a part ${round(least)} % different would do something else there.`;
   return wrap(text, '  ');
+}
+
+/** Of several possible circuits the dial is one's. */
+function circuitLines({ variants }: Verdict): string[] {
+  const one = variants.find(({ shown }) => shown);
+  return variants.length < 2 || one === undefined ? [] : wrap(`The lamps here have the circuit that does worst: ${one.name}.`, '  ');
 }
 
 function countTitle({ lampCounts, pairing }: Verdict): string {

@@ -58,6 +58,8 @@ function gradeCount(pairing: Pairing, count: number, options: JudgeOptions, effo
 
 const lamps = (count: number): string => (count === 1 ? 'one lamp' : `${count} lamps`);
 
+const span = (from: number, to: number): string => (from === to ? lamps(from) : `${from} to ${lamps(to)}`);
+
 function summaryOf(
   grades: readonly CountGrade[],
   workable: readonly CountGrade[],
@@ -68,13 +70,11 @@ function summaryOf(
   const [smallest, largest] = [workable[0], workable[workable.length - 1]];
   if (first === undefined || last === undefined) return 'No count was asked for.';
   if (smallest === undefined || largest === undefined) {
-    return `None of ${lamps(first.count)} to ${lamps(last.count)} runs steadily: ${[...new Set(grades.map((g) => g.cause))]
-      .map((c) => (c === null ? '' : CAUSE_WORDS[c]))
-      .join('; ')}.`;
+    const causes = [...new Set(grades.map((g) => g.cause))].map((c) => (c === null ? '' : CAUSE_WORDS[c]));
+    return `Not steady with ${span(first.count, last.count)}: ${causes.join('; ')}.`;
   }
   const gaps = grades.filter((g) => g.count > smallest.count && g.count < largest.count && !isWorkable(g.grade)).map((g) => g.count);
-  const range = smallest === largest ? lamps(smallest.count) : `${smallest.count} to ${lamps(largest.count)}`;
-  const parts = [`Steady with ${range}${gaps.length === 0 ? '' : `, but not with ${gaps.join(', ')}`}.`];
+  const parts = [`Steady with ${span(smallest.count, largest.count)}${gaps.length === 0 ? '' : `, but not with ${gaps.join(', ')}`}.`];
   if (below !== null) parts.push(`With fewer, ${CAUSE_WORDS[below]}.`);
   if (above !== null) parts.push(`With more, ${CAUSE_WORDS[above]}.`);
   return parts.join(' ');

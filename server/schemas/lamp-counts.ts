@@ -34,6 +34,9 @@ export const lampCounts = z
     above: stopCause.nullable(),
     summary: z.string(),
   })
-  .meta({ id: 'LampCounts', description: 'How many lamps work, each count simulated at every corner.' });
+  .meta({
+    id: 'LampCounts',
+    description: 'How many lamps work, each count simulated at every corner, with what was assumed taken as it stands.',
+  });
 
 export type LampCountsAnswer = z.output<typeof lampCounts>;

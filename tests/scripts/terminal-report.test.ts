@@ -133,6 +133,22 @@ describe('the report for a terminal', () => {
     for (const { path } of verdict.assumptions) expect(words).toContain(path.slice(path.lastIndexOf('.') + 1));
   });
 
+  it('says beside the dial whose circuit it is where the lamps may have several, and beside counts what was assumed', async () => {
+    const several = await judged('dining-room');
+    const shown = several.variants.find((variant) => variant.shown)?.name;
+    const words = (verdict: Verdict) => terminalReport(verdict, plain).replace(/\s+/g, ' ');
+    expect(words(several)).toContain(`The lamps here have the circuit that does worst: ${shown}.`);
+    const study = await judged('study', (asked) => ({
+      ...asked,
+      options: { lampCount: { from: 2, to: 2 }, dialPositions_pct: [0, 20, 40, 60, 80, 100] },
+    }));
+    expect(study.wouldSettle?.kind).toBe('value');
+    expect(words(study)).toContain("With the lamp's input capacitor as it was assumed.");
+    const bedroom = words(await judged('bedroom'));
+    expect(bedroom).not.toContain('as it was assumed');
+    expect(bedroom).not.toContain('does worst');
+  });
+
   it('is in colour only in a terminal that is not dumb, and never where NO_COLOR is set', () => {
     expect(wantsColour(true, {})).toBe(true);
     expect(wantsColour(true, { NO_COLOR: '' })).toBe(true);
