@@ -19,8 +19,8 @@ import {
   timed,
 } from './circuits.ts';
 
-/** Run against the program itself whenever it is installed, besides their frozen results. */
-export const firstCases: readonly Case[] = [
+/** one or five lamps of every load kind, every drive */
+const firstCases: readonly Case[] = [
   {
     name: 'a 60 W filament lamp at 230 V, half dial',
     dial: 50,

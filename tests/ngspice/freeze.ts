@@ -11,7 +11,7 @@ import { type FrozenCase, fingerprint, readReference, referenceFile } from './re
 import { ngspiceVersion, runNgspice } from './run.ts';
 
 /** half-cycles, the next length where a run has not settled into a pattern; of the longest the first `settle` are not averaged */
-const lengths = [24, 48, 180];
+const lengths = [24, 48, 240];
 const settle = 40;
 
 async function freeze(case_: Case): Promise<FrozenCase> {
