@@ -301,9 +301,6 @@ export class ModeWalk {
       const stray = (watched[at + BEND] as number) * square;
       const fast = watched[at + RANGE] as number;
       const d = after - before;
-      // a guard that starts on its bound (within rounding) may start a hair outside, as long as it moves in
-      const low = d >= 0 && before <= lower + slack ? lower - slack : lower;
-      const high = d <= 0 && before >= upper - slack ? upper + slack : upper;
       const least = d < 0 ? after : before;
       const most = d < 0 ? before : after;
       const perStray = 1 / stray;
@@ -311,6 +308,11 @@ export class ModeWalk {
       const room = Math.min(least - lower, upper - most) - fast;
       const own = Math.max(room * perStray, bySlope * bySlope);
       if (own < reserve) reserve = own;
+      // whatever the slope, y strays no further than this below its least and above its most
+      if (room >= stray) continue;
+      // a guard that starts on its bound (within rounding) may start a hair outside, as long as it moves in
+      const low = d >= 0 && before <= lower + slack ? lower - slack : lower;
+      const high = d <= 0 && before >= upper - slack ? upper + slack : upper;
       if (Math.abs(d) >= 4 * stray) {
         if (least - fast >= low && most + fast <= high) continue;
         if (after < lower || after > upper) {
