@@ -1,6 +1,6 @@
 /**
- * Measures the engine: half-cycles per second on one core for each load kind, its steps and events, what building the modes of a new
- * dial position costs, how a sweep grows with lamp groups, and, alternately in the same call, what ngspice makes of the same circuits.
+ * Measures the engine: half-cycles per second on one core for each load kind, its steps and events, the arithmetic of its steps alone, what
+ * building the modes of a new dial position costs, how a sweep grows with lamp groups, and, alternately in the same call, what ngspice makes of the same circuits.
  * Every figure is the median of several runs with its least and most.
  *
  *   npm run bench:engine [-- --runs 5] [--no-ngspice] [--grid]
@@ -8,15 +8,14 @@
  * --grid adds a two-way sweep of 21 positions of every circuit of the reference grid. Run it on an otherwise idle machine.
  */
 import { parseArgs } from 'node:util';
-import type { Configuration } from '../model/circuit/configuration.ts';
-import { linearKey } from '../model/circuit/configuration.ts';
-import { closeModeSystem, openModeSystem } from '../model/circuit/mode-system.ts';
 import { layNetwork } from '../model/circuit/network.ts';
+import { ConfigurationMap } from '../model/engine/configuration-map.ts';
 import { DimmerRun } from '../model/engine/dimmer-run.ts';
-import { linearMode } from '../model/engine/linear-mode.ts';
+import { WATCHED_STRIDE } from '../model/engine/kernels.ts';
+import { LEVELS } from '../model/engine/linear-mode.ts';
+import { type Mode, ModeShelf } from '../model/engine/mode.ts';
 import type { Pairing } from '../model/index.ts';
 import { sweepDial } from '../model/observation/dial-sweep.ts';
-import { LADDER_LEVELS } from '../model/tolerances.ts';
 import { cases } from '../tests/ngspice/cases.ts';
 import { ngspiceVersion, runNgspice } from '../tests/ngspice/run.ts';
 import { type BenchCircuit, benchCircuits, groupedPairing } from './bench-circuits.ts';
@@ -28,6 +27,10 @@ const POSITIONS = Array.from({ length: 21 }, (_, k) => 5 * k);
 const TIMED = 4000;
 const WARM_UP = 2000;
 const NGSPICE_HALF_CYCLES = 8;
+/** modes built per timed run; steps per mode, and guards read in each, where only the arithmetic is timed */
+const REBUILT = 4000;
+const STEPPED = 200_000;
+const GUARDS = 3;
 
 const { values } = parseArgs({
   options: {
@@ -86,20 +89,49 @@ async function timeNgspice(pairing: Pairing): Promise<{ readonly perSecond: numb
   return { perSecond: (NGSPICE_HALF_CYCLES * (DIALS.length - givenUp.length) * 1000) / ms, givenUp };
 }
 
-/** microseconds to build one mode anew at another timing resistance, over the configurations that the circuit passes through */
-function timeRebuild(pairing: Pairing): { readonly perMode: number; readonly modes: number } {
-  const network = layNetwork(pairing);
-  const met = new Map<string, Configuration>();
-  const run = new DimmerRun(network, pairing.dimmer);
-  run.segmentListener = { segment: (mode) => void met.set(linearKey(mode.configuration), mode.configuration) };
-  run.setDial(60);
+/** the modes that a circuit passes through at half dial */
+function metModes(pairing: Pairing, run: DimmerRun): Mode[] {
+  const met = new Set<Mode>();
+  run.segmentListener = { segment: (mode) => void met.add(mode) };
+  run.setDial(pairing.dimmer.drive.kind === 'diac' ? 60 : 50);
   for (let k = 0; k < 20; k++) run.finishHalfCycle();
-  const open = [...met.values()].map((c) => openModeSystem(network, pairing.dimmer, c));
-  const shortest = run.halfPeriod / 2 ** LADDER_LEVELS;
-  const repeats = Math.ceil(400 / open.length);
+  run.segmentListener = null;
+  return [...met];
+}
+
+/** microseconds to build what a new dial position needs, per linear mode: its decomposition, its mirrored forms, the ways between them */
+function timeRebuild(pairing: Pairing): number {
+  const network = layNetwork(pairing);
+  const met = metModes(pairing, new DimmerRun(network, pairing.dimmer));
+  const map = new ConfigurationMap(network, pairing.dimmer);
+  const repeats = Math.ceil(REBUILT / met.length);
+  let built = 0;
   const began = performance.now();
-  for (let k = 0; k < repeats; k++) for (const system of open) linearMode(closeModeSystem(system, 50e3 + k), network.omega, shortest);
-  return { perMode: ((performance.now() - began) * 1000) / (repeats * open.length), modes: open.length };
+  for (let k = 0; k < repeats; k++) {
+    const shelf = new ModeShelf(network, map, 50e3 + k);
+    for (const { configuration, passages } of met) {
+      const mode = shelf.mode(configuration);
+      for (let way = 0; way < passages.length; way++) if (passages[way] !== undefined) shelf.passage(mode, way);
+    }
+    built += shelf.built;
+  }
+  return ((performance.now() - began) * 1000) / built;
+}
+
+/** nanoseconds of one step's arithmetic alone, over those modes: coordinates moved on, GUARDS outputs read */
+function timeArithmetic(pairing: Pairing): number {
+  const met = metModes(pairing, new DimmerRun(layNetwork(pairing), pairing.dimmer));
+  const watched = new Float64Array(GUARDS * WATCHED_STRIDE);
+  const began = performance.now();
+  for (const { linear } of met) {
+    const rows = Int32Array.from({ length: GUARDS }, (_, k) => k * linear.outputStride);
+    const z = new Float64Array(linear.coordinates).fill(0.5);
+    const next = new Float64Array(linear.coordinates);
+    for (let k = 0; k < STEPPED; k++) {
+      linear.kernels.step(z, next, linear.factors, (k % LEVELS) * linear.coordinates, linear.outputRows, watched, rows, GUARDS);
+    }
+  }
+  return ((performance.now() - began) * 1e6) / (met.length * STEPPED);
 }
 
 function timeSweep(pairing: Pairing): { readonly ms: number; readonly modesBuilt: number; readonly halfCycles: number } {
@@ -125,12 +157,15 @@ async function benchCircuit(circuit: BenchCircuit, withNgspice: boolean): Promis
   const rebuild = Array.from({ length: runs }, () => timeRebuild(circuit.pairing));
   const rate = spreadOf(engine.map((e) => e.perSecond));
   const sweep = spreadOf(sweeps.map((s) => s.ms));
-  const perMode = spreadOf(rebuild.map((b) => b.perMode));
+  const perMode = spreadOf(rebuild);
   const share = (perMode.median * (sweeps[0]?.modesBuilt ?? 0)) / 1000 / sweep.median;
+  const arithmetic = spreadOf(Array.from({ length: runs }, () => timeArithmetic(circuit.pairing)));
+  const floor = 1e9 / (arithmetic.median * (engine[0]?.steps ?? 1));
   console.log(`${circuit.kind}: ${circuit.name}`);
   console.log(
     `  engine     ${told(rate)} half-cycles/s, ${figure(engine[0]?.steps ?? 0)} steps and ${figure(engine[0]?.events ?? 0)} events each`,
   );
+  console.log(`  arithmetic ${told(arithmetic)} ns a step: ${figure(floor)} half-cycles/s if it were all`);
   console.log(`  sweep      ${told(sweep)} ms for 21 positions up and down, ${sweeps[0]?.halfCycles} half-cycles`);
   console.log(`  new modes  ${told(perMode)} us each, ${sweeps[0]?.modesBuilt} in the sweep: ${figure(100 * share)} % of it`);
   const reference = ngspice.length === 0 ? null : spreadOf(ngspice);
