@@ -8,7 +8,7 @@ import type { Pairing } from '../pairing.ts';
 import { checkOptions, checkPairing } from '../pairing-check.ts';
 import type { CornerInputs, CornerName, JudgeOptions, Requirement, RequirementPoint } from '../verdict.ts';
 import { cornersOf } from './corners.ts';
-import { failsOnTheWayUp, trialPositions } from './dial-trial.ts';
+import { failsOnTheWayUp } from './dial-trial.ts';
 import { EffortTally } from './effort.ts';
 import {
   DESCENT_RATIO,
@@ -64,9 +64,10 @@ class Ray {
   }
 
   /** whether the way up at one corner is without fault; what fails here fails for sure */
-  looksFine(latching: number, name: CornerName, positions = this.options.dialPositions): boolean {
-    const fails = failsOnTheWayUp(this.at(latching), this.corner(name, latching), this.options, positions, this.effort, 'suitable');
-    if (fails && positions === this.options.dialPositions) this.failing = { at: latching, corner: name };
+  looksFine(latching: number, name: CornerName): boolean {
+    const { dialPositions } = this.options;
+    const fails = failsOnTheWayUp(this.at(latching), this.corner(name, latching), this.options, dialPositions, this.effort, 'suitable');
+    if (fails) this.failing = { at: latching, corner: name };
     return !fails;
   }
 
@@ -115,8 +116,8 @@ class Ray {
   point(latching: number): RequirementPoint {
     const { failing, ratio, options, effort } = this;
     const half = Math.max(LEAST_LATCHING, latching * PROBE_BELOW);
-    const probe = new Ray(this.pairing, ratio, options, effort);
-    const smallerDoes = probe.looksFine(half, failing?.corner ?? 'nominal', trialPositions(options.dialPositions));
+    // by every corner, up and down: what an upset at one place spares, another may not
+    const smallerDoes = new Ray(this.pairing, ratio, options, effort).does(half, failing?.corner);
     const point = { latchingCurrent: latching, holdingCurrent: latching * ratio, smallerDoes };
     if (failing === null) return { ...point, failsAt: null, decidedBy: null, cause: null };
     return {

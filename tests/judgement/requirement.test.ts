@@ -1,6 +1,6 @@
 import { describe, expect, it } from 'vitest';
 import { type JudgeOptions, judgePairing, type Pairing, type Requirement, requirementBoundary } from '../../model/index.ts';
-import { both, mains230, pairing, reservoirLamp } from '../support/model-pairings.ts';
+import { both, diacDrive, emulator, mains230, pairing, reservoirLamp } from '../support/model-pairings.ts';
 import { ALL_CORNERS, currentAt, dimmer, emulators, NOMINAL, OHMS, PEAK, PULSE_ANGLE, resistiveLamp } from './circuits.ts';
 
 function boundaryOf(pairing: Pairing, options: JudgeOptions): Requirement {
@@ -60,15 +60,16 @@ describe('the requirement boundary', () => {
   const coarse = { ...ALL_CORNERS, dialPositions: [0, 25, 50, 75, 100] };
   const lamps = emulators(2, dimmer(50, 30));
 
-  it('has a suitable pairing at every point and none a hundredth beyond, by the ordinary judgement', () => {
+  it('has a suitable pairing at every point, none a hundredth beyond, and one at half of it just where that is said, by the ordinary judgement', () => {
     const { points } = boundaryOf(lamps, coarse);
     const gradeAt = (latching: number, holding: number) => {
       const there = { ...lamps, dimmer: { ...lamps.dimmer, latchingCurrent: both(latching), holdingCurrent: both(holding) } };
       const outcome = judgePairing(there, coarse);
       return outcome.ok ? outcome.value.grade : 'refused';
     };
-    for (const { latchingCurrent, holdingCurrent, failsAt } of points.filter((_, k) => k % 3 === 0)) {
+    for (const { latchingCurrent, holdingCurrent, failsAt, smallerDoes } of points.filter((_, k) => k % 3 === 0)) {
       expect(gradeAt(latchingCurrent, holdingCurrent)).toBe('suitable');
+      expect(smallerDoes).toBe(gradeAt(latchingCurrent / 2, holdingCurrent / 2) === 'suitable');
       expect(failsAt).toBeLessThanOrEqual(1.01);
       expect(gradeAt(latchingCurrent * (failsAt ?? 1), holdingCurrent * (failsAt ?? 1))).not.toBe('suitable');
     }
@@ -90,6 +91,17 @@ describe('the requirement boundary', () => {
     expect(largest(boundaryOf(lamps, coarse))).toEqual({ atOnce: true, denied: false });
     // fired from the crest on it latches up to 0.996 Vp/R and holds up to 0.52 Vp/R; no ratio that is looked at has both
     expect(largest(boundaryOf(resistiveLamp(85, 90), NOMINAL))).toEqual({ atOnce: false, denied: true });
+  });
+
+  it('says where half of the currents do not do, also where only the way down of the dial and one corner show it', () => {
+    const points = [0, 60, 325].map((voltage) => ({ voltage, current: voltage < 300 ? 0 : 0.052 }));
+    const kneed = { ...emulator(8, mains230), load: { kind: 'iv-table' as const, points } };
+    const lit = pairing(mains230, dimmer(50, 30, { drive: diacDrive({ fixedResistance: 22e3 }) }), kneed, 2);
+    // dark on the way up to 20 %; at low mains the lamps wander at 5 % on the way down, with small currents as with large ones
+    const boundary = boundaryOf(lit, { ...ALL_CORNERS, dialPositions: [0, 5, 10, 15, 20, 100] });
+    expect(boundary.points.length).toBeGreaterThanOrEqual(12);
+    expect(boundary.points.map((p) => p.smallerDoes)).toContain(false);
+    expect(boundary.summary).toContain('a smaller current is not always better here');
   });
 
   it('says so where no currents do', () => {
