@@ -83,6 +83,8 @@ export interface Kernels {
   readonly bendAfter: (at: Numbers, parts: Numbers, factors: Numbers, f: number) => void;
   /** value (less its constant part) and slope of the output taken apart after a time, into at[0] and at[1]; the factors into `moved` */
   readonly probe: (at: Numbers, moved: Numbers, parts: Numbers, decay: Numbers, rotation: Numbers, time: number) => void;
+  /** the same a very short time after, or before, the time that `moved` belongs to */
+  readonly nudge: (at: Numbers, moved: Numbers, parts: Numbers, decay: Numbers, rotation: Numbers, by: number) => void;
   /** value (less its constant part) of the output taken apart, after a time */
   readonly valueAfter: (parts: Numbers, decay: Numbers, rotation: Numbers, time: number) => number;
   /** into = from moved by factors from `f` on */
@@ -92,6 +94,9 @@ export interface Kernels {
   /** into = matrix * (z, 1), the mains' pair as it is, and the same into `start` */
   readonly pass: (z: Numbers, into: Numbers, start: Numbers, matrix: Numbers) => void;
 }
+
+/** of the mains' angle: below it the first terms of sine and cosine are exact to rounding. Nearly every visit is that short */
+const SMALL_ANGLE = 0.02;
 
 /** a sum as a balanced tree: its parts do not wait for one another */
 function sum(parts: readonly string[]): string {
@@ -134,11 +139,22 @@ function writtenOut(reals: number, pairs: number): string {
   const terms = [...real, ...pair.map(({ term }) => term)];
   const factors = (into: string): string =>
     each(real, (k) => `${into}[${k}] = Math.exp(decay[${k}] * time);`) +
-    each(
-      pair,
-      ({ p, term, re, im }) => `{
+    each(pair, ({ p, term, re, im }) =>
+      p === pairs - 1
+        ? `{
       const angle = rotation[${term}] * time;
-      const size = ${p === pairs - 1 ? '1' : `Math.exp(decay[${term}] * time)`};
+      if (angle < ${SMALL_ANGLE}) {
+        const square = angle * angle;
+        ${into}[${re}] = 1 - square * (1 / 2 - square * (1 / 24 - square / 720));
+        ${into}[${im}] = angle * (1 - square * (1 / 6 - square * (1 / 120 - square / 5040)));
+      } else {
+        ${into}[${re}] = Math.cos(angle);
+        ${into}[${im}] = Math.sin(angle);
+      }
+    }`
+        : `{
+      const angle = rotation[${term}] * time;
+      const size = Math.exp(decay[${term}] * time);
       ${into}[${re}] = size * Math.cos(angle);
       ${into}[${im}] = size * Math.sin(angle);
     }`,
@@ -244,6 +260,28 @@ return {
   },
   probe(at, moved, parts, decay, rotation, time) {
     ${factors('moved')}
+    at[0] = ${weighed(0, (k) => `moved[${k}]`)};
+    at[1] = ${weighed(slopeFrom, (k) => `moved[${k}]`)};
+  },
+  nudge(at, moved, parts, decay, rotation, by) {
+    ${each(
+      real,
+      (k) => `{
+      const x = decay[${k}] * by;
+      moved[${k}] *= 1 + x * (1 + x * (1 / 2 + x * (1 / 6 + x / 24)));
+    }`,
+    )}
+    ${each(
+      pair,
+      ({ term, re, im }) => `{
+      const x = decay[${term}] * by, y = rotation[${term}] * by, square = y * y;
+      const size = 1 + x * (1 + x * (1 / 2 + x * (1 / 6 + x / 24)));
+      const cos = size * (1 - square * (1 / 2 - square / 24)), sin = size * y * (1 - square * (1 / 6 - square / 120));
+      const a = moved[${re}], b = moved[${im}];
+      moved[${re}] = cos * a - sin * b;
+      moved[${im}] = cos * b + sin * a;
+    }`,
+    )}
     at[0] = ${weighed(0, (k) => `moved[${k}]`)};
     at[1] = ${weighed(slopeFrom, (k) => `moved[${k}]`)};
   },

@@ -21,6 +21,8 @@ export type WalkOutcome = 'reached' | 'crossed' | 'out-of-steps';
 /** most coordinates that a mode can have: twelve groups with every optional part stay below */
 const MOST_COORDINATES = 160;
 
+/** share of a step over which the factors that count turn and decay so little that four terms of their series are exact to rounding */
+const NUDGE = 1e-4;
 /** reserve of a step that nothing bounds: more than the ladder is long */
 const MOST_RESERVE = 1e9;
 
@@ -378,9 +380,14 @@ export class ModeWalk {
     let at = span * quinticRoot();
     let lo = 0;
     let hi = span;
+    // where the factors in `moved` belong
+    let probed = Number.POSITIVE_INFINITY;
+    const near = NUDGE * span;
     for (let k = 0; k < 60; k++) {
       if (!(at > lo && at < hi)) at = k < 6 ? lo + ((hi - lo) * f0) / (f0 - f1) : (lo + hi) / 2;
-      kernels.probe(slopes, moved, parts, decay, rotation, at);
+      if (Math.abs(at - probed) < near) kernels.nudge(slopes, moved, parts, decay, rotation, at - probed);
+      else kernels.probe(slopes, moved, parts, decay, rotation, at);
+      probed = at;
       const f = ((slopes[0] as number) + offset) * inside;
       if (Math.abs(f) <= enough) {
         kernels.move(this.zNext, z, moved, 0);
