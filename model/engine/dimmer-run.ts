@@ -359,13 +359,16 @@ export class DimmerRun {
 
   // --- guards ----------------------------------------------------------------------------------------------------------------
 
-  private triacGuard = -1;
-
+  /** Sets the windows of the diac and the triac, unless the mode was last left with the same ones. */
   private setGuards(): void {
-    const groups = this.mode.mapped.guards.length;
-    const afterDiac = this.watchDiac(groups);
-    this.triacGuard = afterDiac;
-    this.walk.guardCount = this.watchTriac(afterDiac);
+    const { mode } = this;
+    const logic = (this.latched ? 1 : 0) + (this.below ? 2 : 0) + (this.gated ? 4 : 0);
+    if (mode.watchedUnder !== logic) {
+      mode.triacGuard = this.watchDiac(mode.mapped.guards.length);
+      mode.guardCount = this.watchTriac(mode.triacGuard);
+      mode.watchedUnder = logic;
+    }
+    this.walk.guardCount = mode.guardCount;
   }
 
   private crossed(): void {
@@ -373,7 +376,7 @@ export class DimmerRun {
     const g = this.walk.crossedGuard;
     const side = this.walk.crossedSide;
     if (g < this.mode.mapped.guards.length) this.change(this.shelf.passage(this.mode, wayByGuard(g, side)));
-    else if (g === this.triacGuard) this.triacCrossed(side);
+    else if (g === this.mode.triacGuard) this.triacCrossed(side);
     else this.diacCrossed(side);
   }
 

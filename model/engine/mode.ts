@@ -30,6 +30,11 @@ export interface Mode {
   readonly windows: Windows;
   /** the ways out, by ConfigurationMap's numbers, filled in as they are taken */
   readonly passages: (Passage | undefined)[];
+  /** how many windows are watched, which of them is the triac's, and under which state of the triac's and the diac's logic they were last
+   * set (DimmerRun's number for it) */
+  guardCount: number;
+  triacGuard: number;
+  watchedUnder: number;
   /** level at which the previous visit's first step was accepted: where the next visit starts trying */
   startLevel: number;
 }
@@ -134,6 +139,9 @@ export class ModeShelf {
       restOutput: signedSum(linear.constantOutputs, mapped.signs, linear.outputs),
       windows,
       passages: new Array(mapped.ways.length).fill(undefined),
+      guardCount: guards.length,
+      triacGuard: -1,
+      watchedUnder: -1,
       startLevel: FIRST_LEVEL,
     };
     for (let g = 0; g < guards.length; g++) {
