@@ -1,6 +1,6 @@
 /**
  * The discrete state of everything that switches, and where each part's window of validity lies: the guards that tell when a part
- * moves to its neighbouring state. The triac's and the diac's logic (gate, latch, hold) is not here but in engine/triac.ts; this file
+ * moves to its neighbouring state. The triac's and the diac's logic (gate, latch, hold) is not here but in engine/dimmer-run.ts; this file
  * only knows their electrical region.
  */
 import { BRIDGE_DROP } from '../tolerances.ts';

@@ -17,17 +17,10 @@ import { triacKnee } from '../circuit/mode-system.ts';
 import type { Network } from '../circuit/network.ts';
 import { numbers } from '../numbers.ts';
 import type { Dimmer, PerPolarity } from '../pairing.ts';
-import {
-  CARRY_OVER_ANGLE,
-  DIAC_STUCK_SHARE,
-  EVENT_BUDGET,
-  EVENT_TIME,
-  INSTANT_BUDGET,
-  LADDER_LEVELS,
-  STANDSTILL,
-  STEP_BUDGET,
-} from '../tolerances.ts';
+import { DIAC_STUCK_SHARE, EVENT_BUDGET, EVENT_TIME, INSTANT_BUDGET, LADDER_LEVELS, STANDSTILL, STEP_BUDGET } from '../tolerances.ts';
+import { Conduction } from './conduction.ts';
 import { ConfigurationMap, SWITCH, type Switching, wayByGuard, wayBySwitching } from './configuration-map.ts';
+import { gateTimesOf } from './gate-times.ts';
 import { emptyHalfCycle, type HalfCycle } from './half-cycle.ts';
 import { type Mode, ModeShelf, OTHER_GUARDS, type Passage, watchOutput } from './mode.ts';
 import { ModeWalk } from './mode-walk.ts';
@@ -85,8 +78,7 @@ export class DimmerRun {
   private pulseLatched = false;
   private pulseGated = false;
   private diacSince = 0;
-  private conductionRecord: HalfCycle | null = null;
-  private conductionSince = 0;
+  private readonly conduction = new Conduction();
 
   constructor(network: Network, dimmer: Dimmer, parent?: DimmerRun) {
     this.network = network;
@@ -155,7 +147,7 @@ export class DimmerRun {
     this.latched = true;
     this.below = false;
     this.belowDeadline = Number.POSITIVE_INFINITY;
-    this.conductionRecord = null;
+    this.conduction.forget();
   }
 
   /** enters the present mode at the present time, the mains' phase computed afresh */
@@ -192,9 +184,7 @@ export class DimmerRun {
   // --- triac -----------------------------------------------------------------------------------------------------------------
 
   private fire(): void {
-    this.record.firings.push(this.angle());
-    this.conductionRecord = this.record;
-    this.conductionSince = this.time;
+    this.conduction.begin(this.record, this.angle());
     this.latched = false;
     this.below = false;
     this.belowDeadline = Number.POSITIVE_INFINITY;
@@ -203,14 +193,7 @@ export class DimmerRun {
 
   private open(): void {
     this.openingListener?.opening(this);
-    const began = this.conductionRecord;
-    if (began !== null) {
-      const late = (this.record.index - began.index) * 180;
-      const end = this.angle() + late;
-      began.ends.push(end);
-      began.conduction += end - (this.conductionSince / this.halfPeriod) * 180;
-      this.conductionRecord = null;
-    }
+    this.conduction.end(this.record, this.angle());
     this.latched = false;
     this.below = false;
     this.belowDeadline = Number.POSITIVE_INFINITY;
@@ -391,52 +374,16 @@ export class DimmerRun {
     return false;
   }
 
-  // --- timed drive -----------------------------------------------------------------------------------------------------------
-
-  /** times at which the gate switches in a half-cycle: on, off, on, off, ...; nothing for a diac drive */
-  private gateTimes(): number[] {
-    const { drive } = this.dimmer;
-    if (drive.kind !== 'timed') return [];
-    const angle = drive.firingAngleLow + ((drive.firingAngleFull - drive.firingAngleLow) * this.dial) / 100;
-    const first = (angle / 180) * this.halfPeriod;
-    if (drive.pulses === 'held') return [first, this.halfPeriod];
-    const times: number[] = [];
-    for (let at = first; at < this.halfPeriod; at += drive.pulseSpacing) {
-      times.push(at, Math.min(at + drive.gatePulse, this.halfPeriod));
-      if (drive.pulses === 'single') break;
-    }
-    return times;
-  }
-
   // --- half-cycle ------------------------------------------------------------------------------------------------------------
-
-  /** a conduction that goes on far into the next half-cycle without a firing (a current too steep to turn off) is that one's own too */
-  private takeCarriedOver(from: HalfCycle, record: HalfCycle): void {
-    if (this.conductionRecord === from) {
-      from.ends.push(180);
-      from.conduction += 180 - (this.conductionSince / this.halfPeriod) * 180;
-      this.conductionRecord = record;
-      this.conductionSince = 0;
-      record.firings.push(0);
-      return;
-    }
-    const end = (from.ends[from.ends.length - 1] as number) - 180;
-    if (end <= CARRY_OVER_ANGLE) return;
-    from.ends[from.ends.length - 1] = 180;
-    from.conduction -= end;
-    record.firings.push(0);
-    record.ends.push(end);
-    record.conduction += end;
-  }
 
   /** Runs on to the end of the half-cycle. "undecided": a budget ran out; the run cannot go on. */
   finishHalfCycle(): { readonly outcome: 'done' | 'undecided'; readonly record: HalfCycle } {
     const record = emptyHalfCycle(this.index);
     this.record = record;
-    const gateTimes = this.gateTimes();
+    const gateTimes = gateTimesOf(this.dimmer.drive, this.dial, this.halfPeriod);
     let nextGate = 0;
     while (nextGate < gateTimes.length && (gateTimes[nextGate] as number) < this.time) nextGate++;
-    const carried = this.conductionRecord;
+    const carried = this.conduction.record;
     const eventsBefore = this.events;
     const stepsBefore = this.walk.steps;
     let standing = 0;
@@ -468,7 +415,7 @@ export class DimmerRun {
     }
     this.tellSegment();
     this.walk.leave(this.x);
-    if (carried !== null && record.firings.length === 0) this.takeCarriedOver(carried, record);
+    if (carried !== null && record.firings.length === 0) this.conduction.carryOver(carried, record);
     if (this.mode.configuration.diac && this.halfPeriod - this.diacSince > DIAC_STUCK_SHARE * this.halfPeriod) record.diacStuck = true;
     this.time = 0;
     this.index++;
