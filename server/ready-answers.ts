@@ -35,29 +35,38 @@ interface Ready {
   readonly headers: readonly string[];
   readonly headersOf304: readonly string[];
   readonly holds: () => boolean;
+  /** asked for since it was kept, or since it was last spared */
+  isAskedFor: boolean;
 }
 
-/** bytes in all; the answer that was not asked for longest goes first */
+/** bytes in all; beyond, what was not asked for goes, the oldest first, and what was asked for is spared once */
 const MOST_BYTES = 96 * 1024 * 1024;
 /** bytes that an answer weighs beyond its own, about */
 const OVERHEAD = 2_000;
 
 export function readyAnswers(mostBytes = MOST_BYTES): ReadyAnswers {
-  // In the order of last use: a Map iterates in the order of insertion.
+  // In the order of keeping and sparing: a Map iterates in the order of insertion. An answer is only marked when it is given: moving it to
+  // the end each time cost a tenth of giving it.
   const kept = new Map<string, Ready>();
   let weight = 0;
   const drop = (url: string, { bytes }: Ready): void => {
     kept.delete(url);
     weight -= bytes.length + OVERHEAD;
   };
+  const put = (url: string, ready: Ready): void => {
+    kept.set(url, ready);
+    weight += ready.bytes.length + OVERHEAD;
+  };
   const keep = (url: string, ready: Ready): void => {
     const before = kept.get(url);
     if (before !== undefined) drop(url, before);
-    kept.set(url, ready);
-    weight += ready.bytes.length + OVERHEAD;
+    put(url, ready);
     for (const [oldest, old] of kept) {
       if (weight <= mostBytes) break;
       drop(oldest, old);
+      if (!old.isAskedFor) continue;
+      old.isAskedFor = false;
+      put(oldest, old);
     }
   };
 
@@ -70,7 +79,7 @@ export function readyAnswers(mostBytes = MOST_BYTES): ReadyAnswers {
       const all = headersIn(reply);
       const headers = [...all.flat(), 'content-type', type, 'content-length', String(bytes.length)];
       const headersOf304 = all.filter(([name]) => NEEDED_WITH_304.has(name)).flat();
-      keep(request.raw.url ?? '', { route, bytes, tag, headers, headersOf304, holds });
+      keep(request.raw.url ?? '', { route, bytes, tag, headers, headersOf304, holds, isAskedFor: false });
       if (matchesTag(request.headers['if-none-match'], tag)) reply.code(304).send();
       else reply.type(type).send(bytes);
     },
@@ -82,8 +91,7 @@ export function readyAnswers(mostBytes = MOST_BYTES): ReadyAnswers {
         drop(url, ready);
         return undefined;
       }
-      kept.delete(url);
-      kept.set(url, ready);
+      ready.isAskedFor = true;
       const { route, bytes, tag, headers, headersOf304 } = ready;
       const isKnown = matchesTag(request.headers['if-none-match'], tag);
       const status = isKnown ? 304 : 200;

@@ -7,6 +7,11 @@ export async function addSecurityHeaders(app: App): Promise<void> {
     contentSecurityPolicy: { useDefaults: false, directives: { defaultSrc: ["'none'"], frameAncestors: ["'none'"] } },
     // Transport security belongs to whatever terminates TLS before the service.
     hsts: false,
+    // For browsers of more than ten years ago; a ready answer is mostly headers.
+    xDownloadOptions: false,
+    xDnsPrefetchControl: false,
+    xPermittedCrossDomainPolicies: false,
+    xXssProtection: false,
   });
 }
 

@@ -40,7 +40,7 @@ export interface ScreeningRun {
 /** ms after which known outcomes are written even where the batch is small */
 const WRITE_AT_LEAST = 1_000;
 /** outcomes of a batch: some milliseconds of writing */
-const BATCH = 128;
+const BATCH = 64;
 /** ms between tries where the disk is full or the queue away */
 const RETRY = 3_000;
 
@@ -200,6 +200,8 @@ export function startScreeningRun(deps: ScreeningDependencies, row: ScreeningRow
             })
             .finally(chunksUnderWay.leave);
         }
+        // Looking a page up and writing it down are a stretch of work each.
+        await breathe();
         if (recording.waiting() >= BATCH) await settle();
       }
       await breathe();
