@@ -34,6 +34,8 @@ const RETRY_AT_LEAST = 1;
 const RETRY_AT_MOST = 60;
 /** s; the dearest pairings take some ten seconds, and the model's own budgets end every simulation: only a bug or a swamped machine overruns it */
 export const BACKGROUND_DEADLINE_S = 600;
+/** ms between looks for tasks that no thread is there for, and before another thread is tried for them */
+const REVIVAL = 1_000;
 /** MiB of heap: a simulation needs some ten; one that runs away loses its thread and not the process */
 const THREAD_HEAP = 1024;
 
@@ -52,6 +54,13 @@ export function startSimulationPool({ threads, queueLimit, backgroundDeadline_s,
   pool.on('error', () => undefined);
   // The pool's own queue stays empty: a task is handed over when a thread is free for it.
   const lanes = threadLanes(threads);
+  // After a thread that could not even be started, for want of memory or while the code was being replaced, the pool starts none until it
+  // is asked for something more; what waits by then would wait for ever.
+  const revival = setInterval(() => {
+    if (pool.queueSize === 0 || pool.threads.length > 0) return;
+    pool.run({ kind: 'nothing' } satisfies SimulationTask, { signal: AbortSignal.timeout(REVIVAL) }).catch(() => undefined);
+  }, REVIVAL);
+  revival.unref();
 
   const run = async <T>(task: SimulationTask): Promise<Simulated<T>> => {
     if (lanes.waiting('interactive') >= queueLimit) return { ok: false, failure: { kind: 'queue-full', retryAfter_s: retryAfter() } };
@@ -90,10 +99,12 @@ export function startSimulationPool({ threads, queueLimit, backgroundDeadline_s,
     load: () => ({ threads: pool.threads.length, waiting: lanes.waiting('interactive'), completed: pool.completed }),
     close: async () => {
       await lanes.idle();
+      clearInterval(revival);
       await pool.close();
     },
     destroy: async () => {
       destroyed = true;
+      clearInterval(revival);
       lanes.close();
       await pool.destroy();
     },

@@ -16,6 +16,8 @@ export default function runTask(task: SimulationTask): unknown {
       return requirementBoundary(task.pairing, task.options);
     case 'profile':
       return fitProfile(task.question);
+    case 'nothing':
+      return undefined;
   }
 }
 

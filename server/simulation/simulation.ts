@@ -61,4 +61,6 @@ export type SimulationTask =
       readonly place: WaveformPlace;
     }
   | { readonly kind: 'requirement'; readonly pairing: Pairing; readonly options: JudgeOptions }
-  | { readonly kind: 'profile'; readonly question: ProfileQuestion };
+  | { readonly kind: 'profile'; readonly question: ProfileQuestion }
+  /** only starts a thread */
+  | { readonly kind: 'nothing' };

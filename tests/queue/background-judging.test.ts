@@ -1,3 +1,4 @@
+import { existsSync, rmSync, writeFileSync } from 'node:fs';
 import { join } from 'node:path';
 import { describe, expect, it, onTestFinished } from 'vitest';
 import { askedPairing } from '../../server/schemas/pairing.ts';
@@ -48,6 +49,23 @@ describe('a background judgement', () => {
     });
     const { pairing, options } = at(50);
     expect(await pool.judge(pairing, options)).toMatchObject({ ok: true });
+  });
+
+  it('waits while no thread can be started, and is judged once one can', async () => {
+    const pool = losingPool();
+    const { pairing, options } = at(50);
+    expect(await pool.judgeInBackground(pairing, options)).toMatchObject({ ok: true });
+    const trace = process.env.LOSING_THREAD_TRACE ?? '';
+    writeFileSync(`${trace}-no-start`, '');
+    const lost = at(LOSSES.diesOnce);
+    let ended = false;
+    const judged = pool.judgeInBackground(lost.pairing, lost.options).finally(() => {
+      ended = true;
+    });
+    await expect.poll(() => existsSync(`${trace}-tried`), { timeout: 60_000 }).toBe(true);
+    expect(ended).toBe(false);
+    rmSync(`${trace}-no-start`);
+    expect(await judged).toMatchObject({ ok: true });
   });
 
   it('waits behind every interactive question, also those that were asked after it', async () => {

@@ -9,6 +9,13 @@ import runTask from '../../server/simulation/simulation-thread.ts';
 /** Hz of the mains, or ohms of the lamp */
 export const LOSSES = { diesAlways: 61, hangsAlways: 62, throwsAlways: 63, diesOnce: 64 } as const;
 
+// While a file beside the trace says so, no thread can be started.
+const trace = process.env.LOSING_THREAD_TRACE;
+if (trace !== undefined && existsSync(`${trace}-no-start`)) {
+  writeFileSync(`${trace}-tried`, '');
+  process.exit(9);
+}
+
 export default function runOrLose(task: SimulationTask): unknown {
   const marks = marksOf(task);
   if (marks.includes(LOSSES.diesAlways)) process.exit(7);
@@ -18,7 +25,6 @@ export default function runOrLose(task: SimulationTask): unknown {
     for (;;);
   }
   if (marks.includes(LOSSES.diesOnce)) {
-    const trace = process.env.LOSING_THREAD_TRACE;
     if (trace === undefined) throw new Error('LOSING_THREAD_TRACE names the file of what has died before.');
     if (!existsSync(trace)) {
       writeFileSync(trace, '');
