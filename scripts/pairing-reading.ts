@@ -1,9 +1,10 @@
 /**
  * Reads a pairing from a file or from standard input, or says what is wrong with it: where, and what would be right. It judges nothing.
  */
+import { jsonFaultWords } from '../server/json/json-fault.ts';
+import { repeatedFields } from '../server/json/repeated-fields.ts';
 import { type AskedPairing, askedPairing } from '../server/schemas/pairing.ts';
-import { parseWire } from '../server/schemas/wire-parsing.ts';
-import { findJsonFault } from './json-fault.ts';
+import { type Issue, parseWire } from '../server/schemas/wire-parsing.ts';
 import { readText } from './text-reading.ts';
 
 export type PairingReading =
@@ -16,17 +17,22 @@ export function readPairing(source: string): PairingReading {
   if (!file.ok) return file;
   const { name, text } = file;
   try {
-    return readValue(name, JSON.parse(text));
+    const value: unknown = JSON.parse(text);
+    const repeated = repeatedFields(text);
+    return repeated.length > 0 ? refused(name, repeated) : readValue(name, value);
   } catch (error) {
     if (!(error instanceof SyntaxError)) throw error;
-    return complain(`${name} is not JSON`, whereItBreaks(text, error));
+    return complain(`${name} is not JSON`, jsonFaultWords(text) ?? error.message);
   }
 }
 
 function readValue(name: string, value: unknown): PairingReading {
   const parsed = parseWire(askedPairing, value);
   if (parsed.ok) return { ok: true, pairing: parsed.value };
-  const { issues } = parsed;
+  return refused(name, parsed.issues);
+}
+
+function refused(name: string, issues: readonly Issue[]): PairingReading {
   return complain(
     `${name} is not a pairing that can be judged: ${issues.length === 1 ? 'one thing is' : `${issues.length} things are`} wrong`,
     ...issues.map(({ path, message }) => `${path === '' ? 'the pairing' : path} ${message}`),
@@ -35,10 +41,4 @@ function readValue(name: string, value: unknown): PairingReading {
 
 function complain(...complaint: string[]): PairingReading {
   return { ok: false, complaint };
-}
-
-function whereItBreaks(text: string, error: SyntaxError): string {
-  const fault = findJsonFault(text);
-  if (fault === null) return error.message;
-  return `line ${fault.line}, column ${fault.column}: expected ${fault.expected}; found ${fault.found}`;
 }

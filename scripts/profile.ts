@@ -3,11 +3,11 @@
  * server. Ends with 0 where a lamp was fitted, and with 2 where none could be.
  */
 import { parseArgs } from 'node:util';
+import { jsonFaultWords } from '../server/json/json-fault.ts';
 import { profileQuestion, profileToWire } from '../server/profiles/profile-question.ts';
 import { type Profile, profileRequest } from '../server/schemas/profile.ts';
 import { parseWire } from '../server/schemas/wire-parsing.ts';
 import { fitProfile } from '../server/simulation/profile-fitting.ts';
-import { findJsonFault } from './json-fault.ts';
 import { fitWords, round } from './terminal-lamps.ts';
 import { wrap } from './terminal-text.ts';
 import { readText } from './text-reading.ts';
@@ -102,9 +102,7 @@ function requestOf(text: string, values: Values): Request {
     return { ok: true, request: { kind: 'phase-table', ...(JSON.parse(text) as object), ...ofColumns, ...stated } };
   } catch (error) {
     if (!(error instanceof SyntaxError)) throw error;
-    const fault = findJsonFault(text);
-    if (fault === null) return { ok: false, message: error.message };
-    return { ok: false, message: `line ${fault.line}, column ${fault.column}: expected ${fault.expected}; found ${fault.found}` };
+    return { ok: false, message: jsonFaultWords(text) ?? error.message };
   }
 }
 

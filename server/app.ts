@@ -9,6 +9,7 @@ import type { Stores } from '../db/stores.ts';
 import type { ImportLimits } from './imports/import-limits.ts';
 import { createMetrics } from './metrics.ts';
 import { documentCalls } from './plugins/call-documents.ts';
+import { readJsonBodies } from './plugins/json-bodies.ts';
 import { countRequests } from './plugins/request-counting.ts';
 import { identifyRequests, newRequestId } from './plugins/request-ids.ts';
 import { validateBySchema } from './plugins/schema-validation.ts';
@@ -81,9 +82,8 @@ export async function buildApp(dependencies: AppDependencies): Promise<App> {
   app.setNotFoundHandler((request, reply) =>
     sendProblem(reply, 'no-such-call', `There is no ${request.method} at this path. /docs lists the calls.`),
   );
-  // Fastify reads text/plain by itself; every body here is JSON.
-  app.removeContentTypeParser('text/plain');
 
+  readJsonBodies(app);
   identifyRequests(app);
   refuseWhileStopping(app);
   const count = countRequests(app, metrics);

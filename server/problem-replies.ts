@@ -12,6 +12,15 @@ export class RequestInvalid extends Error {
   }
 }
 
+/** Raised where a body is read: it cannot be, for the reason in `message`. */
+export class BodyRefused extends Error {
+  readonly problem: ProblemCode;
+  constructor(problem: ProblemCode, message: string) {
+    super(message);
+    this.problem = problem;
+  }
+}
+
 interface Extras {
   readonly issues?: readonly Issue[];
   readonly retryAfter_s?: number;
@@ -29,25 +38,25 @@ export function sendProblem(reply: FastifyReply, code: ProblemCode, detail: stri
 const CODES_OF_FASTIFY: { readonly [code: string]: readonly [ProblemCode, string] } = {
   FST_ERR_CTP_INVALID_MEDIA_TYPE: ['unsupported-media-type', 'Send the body as application/json.'],
   FST_ERR_CTP_INVALID_CONTENT_LENGTH: ['malformed-http', 'The body is not as long as Content-Length says.'],
-  FST_ERR_CTP_EMPTY_JSON_BODY: ['malformed-json', 'The body is empty: send a JSON object.'],
-  FST_ERR_CTP_INVALID_JSON_BODY: ['malformed-json', 'The body cannot be read as JSON.'],
   FST_ERR_BAD_URL: ['malformed-http', 'The URL cannot be decoded.'],
 };
 
-export function replyToError(error: FastifyError | RequestInvalid, request: FastifyRequest, reply: FastifyReply): FastifyReply {
+export function replyToError(
+  error: FastifyError | RequestInvalid | BodyRefused,
+  request: FastifyRequest,
+  reply: FastifyReply,
+): FastifyReply {
   if (error instanceof RequestInvalid) {
     const count = error.issues.length;
     const detail = count === 1 ? 'One thing is wrong with it.' : `${count} things are wrong with it.`;
     return sendProblem(reply, 'invalid-request', detail, { issues: error.issues });
   }
+  if (error instanceof BodyRefused) return sendProblem(reply, error.problem, error.message);
   if (error.code === 'FST_ERR_CTP_BODY_TOO_LARGE') {
     return sendProblem(reply, 'body-too-large', `Send at most ${request.routeOptions.bodyLimit.toLocaleString('en')} bytes.`);
   }
   const [code, detail] = CODES_OF_FASTIFY[error.code] ?? [];
   if (code !== undefined && detail !== undefined) return sendProblem(reply, code, detail);
-  if (error instanceof SyntaxError && error.statusCode === 400) {
-    return sendProblem(reply, 'malformed-json', 'The body cannot be read as JSON.');
-  }
   if (error.statusCode !== undefined && error.statusCode >= 400 && error.statusCode < 500) {
     request.log.warn({ err: error }, 'request refused');
     return sendProblem(reply, 'malformed-http', 'The request cannot be read.');

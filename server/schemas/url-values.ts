@@ -15,11 +15,14 @@ export function numberText(from: number, to: number, description: string, whole 
     .meta({ type: whole ? 'integer' : 'number', minimum: from, maximum: to, description });
 }
 
+const DATE_OR_MOMENT = z.union([z.iso.date(), z.iso.datetime({ offset: true })]);
+
 /** A date, taken as its first moment, or a moment, as ms since 1970. Both in UTC unless an offset says otherwise. */
 export function momentText(description: string) {
   const error = 'must be a date like 2026-03-02 or a moment like 2026-03-02T08:00:00Z, given once';
   return z
-    .union([z.iso.date(), z.iso.datetime({ offset: true })], { error })
+    .string({ error })
+    .refine((text) => DATE_OR_MOMENT.safeParse(text).success, { error })
     .transform((text) => Date.parse(text))
     .meta({ type: 'string', format: 'date-time', description });
 }

@@ -17,7 +17,12 @@ type ZodIssue = z.core.$ZodIssue;
 export function parseWire<S extends z.ZodType>(schema: S, data: unknown): Parsed<z.output<S>> {
   const result = schema.safeParse(data, { error: messageOf, reportInput: true });
   if (result.success) return { ok: true, value: result.data };
-  return { ok: false, issues: result.error.issues.flatMap((issue) => flatten(issue, [])) };
+  return { ok: false, issues: onceEach(result.error.issues.flatMap((issue) => flatten(issue, []))) };
+}
+
+/** Two checks of one field may say the same. */
+function onceEach(issues: readonly Issue[]): readonly Issue[] {
+  return [...new Map(issues.map((issue) => [JSON.stringify([issue.path, issue.message]), issue])).values()];
 }
 
 export function wirePath(path: Path): string {
@@ -60,16 +65,19 @@ function flattenUnion(issue: Extract<ZodIssue, { code: 'invalid_union' }>, path:
   return [{ path: wirePath(path), message: issue.input === undefined ? `is missing: it ${message}` : message }];
 }
 
-/** how far the input is from a branch: infinite by another type, then by each foreign field and by missing ones, then by wrong values */
+/** how far the input is from a branch: infinite by another type, then by its own fields, foreign or missing, then by what is wrong inside them */
 function distanceOf(issues: readonly ZodIssue[]): number {
   let distance = 0;
   let misses = false;
+  let wrong = 0;
   for (const issue of issues) {
     if (issue.code === 'invalid_type' && issue.path.length === 0) return Number.POSITIVE_INFINITY;
-    if (issue.code === 'unrecognized_keys') distance += 10 * issue.keys.length;
-    else if (issue.code === 'invalid_type' && issue.input === undefined) misses = true;
-    else distance += 1;
+    if (issue.code === 'unrecognized_keys' && issue.path.length === 0) distance += issue.keys.length;
+    else if (issue.code === 'invalid_type' && issue.input === undefined && issue.path.length === 1) misses = true;
+    else wrong += 1;
   }
+  // Below 1: however long a list of points is, and however much is wrong in it, its branch is the one that has a place for it.
+  distance += wrong / (1 + wrong);
   // However many are missing: what is empty is no nearer to the branch that needs least.
-  return misses ? distance + 10 : distance;
+  return misses ? distance + 1 : distance;
 }

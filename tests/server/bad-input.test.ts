@@ -1,3 +1,4 @@
+import { gzipSync } from 'node:zlib';
 import { describe, expect, it } from 'vitest';
 import { testApp } from '../support/server-app.ts';
 import { fakeSimulation } from '../support/server-fake-simulation.ts';
@@ -78,7 +79,7 @@ describe('a bad question', () => {
     ['empty', '', 400, 'malformed-json'],
     ['holding NaN', '{"mains": NaN}', 400, 'malformed-json'],
     ['nested beyond reason', '['.repeat(400_000), 400, 'malformed-json'],
-    ['reaching for the prototype', '{"__proto__": {"x": 1}}', 400, 'malformed-json'],
+    ['reaching for the prototype', '{"__proto__": {"x": 1}}', 400, 'invalid-request'],
     ['a list', '[]', 400, 'invalid-request'],
     ['a string', '"pairing"', 400, 'invalid-request'],
     ['null', 'null', 400, 'invalid-request'],
@@ -88,6 +89,60 @@ describe('a bad question', () => {
     const answer = await post(body);
     expect([answer.statusCode, answer.json().type]).toEqual([status, `urn:holdfast:problem:${code}`]);
     expect(verdicts.count()).toBe(0);
+  });
+
+  it('is told at which place its body stops being JSON, and what would be right there', async () => {
+    const { post } = await testApp();
+    const answer = await post('{"mains": {"voltage_V": NaN}}');
+    expect(answer.json().detail).toBe(
+      'The body cannot be read as JSON. It breaks at line 1, column 25: expected a value: an object, a list, a "text", a number, true, false or null; found "NaN}}".',
+    );
+  });
+
+  it('whose field is given twice is refused with its path, rather than judged by the later one', async () => {
+    const { post, verdicts } = await testApp();
+    const text = JSON.stringify(examplePairing());
+    const answer = await post(text.replace(/"count":\d+/, '$&,"coun\\u0074":9').replace('"voltage_V":230', '$&,"voltage_V":120'));
+    expect(answer.statusCode).toBe(400);
+    expect(answer.json().issues.map(({ path }: Issue) => path)).toEqual(['mains.voltage_V', 'lamps[0].count']);
+    expect(verdicts.count()).toBe(0);
+  });
+
+  it('in another encoding than UTF-8 is refused, and no replacement characters are kept', async () => {
+    const { app } = await testApp();
+    const payload = Buffer.from('{"name": "Caf\u00e9", "dimmer": {"latchingCurrent_mA": 50, "holdingCurrent_mA": 30}}', 'latin1');
+    const headers = { 'content-type': 'application/json; charset=iso-8859-1' };
+    const answer = await app.inject({ method: 'PUT', url: '/v1/dimmers/cafe', headers, payload });
+    expect([answer.statusCode, answer.json().type]).toEqual([400, 'urn:holdfast:problem:malformed-json']);
+    expect(answer.json().detail).toMatch(/UTF-8/);
+    expect((await app.inject('/v1/dimmers/cafe')).statusCode).toBe(404);
+  });
+
+  it('sent compressed is refused with 415 that says so', async () => {
+    const { app } = await testApp();
+    const payload = gzipSync(JSON.stringify(examplePairing()));
+    const headers = { 'content-type': 'application/json', 'content-encoding': 'gzip' };
+    const answer = await app.inject({ method: 'POST', url: '/v1/verdicts', headers, payload });
+    expect([answer.statusCode, answer.json().detail]).toEqual([415, 'Send the body as application/json, not compressed.']);
+  });
+
+  it('whose table is unsorted throughout is told of its points, and not of a field that is right', async () => {
+    const { post } = await testApp();
+    const pairing = examplePairing();
+    pairing.lamps[0].lamp.load.points = Array.from({ length: 40 }, (_, index) => ({ voltage_V: 325 - index, current_mA: 40 }));
+    const { issues } = (await post(pairing)).json() as { issues: Issue[] };
+    expect(issues).toHaveLength(39);
+    for (const { path, message } of issues) {
+      expect(path).toMatch(/^lamps\[0\]\.lamp\.load\.points\[\d+\]\.voltage_V$/);
+      expect(message).toMatch(/must be above the one before it/);
+    }
+  });
+
+  it('is told once of a count that is both no whole number and too large', async () => {
+    const { post } = await testApp();
+    const pairing = examplePairing();
+    pairing.lamps[0].count = 1e308;
+    expect((await post(pairing)).json().issues).toEqual([{ path: 'lamps[0].count', message: 'must be a whole number from 1 to 500' }]);
   });
 
   it.each(['text/plain', 'application/x-www-form-urlencoded', 'application/xml', 'nonsense'])(
@@ -178,6 +233,24 @@ describe('a bad address', () => {
     const answer = await get(url);
     expect([answer.statusCode, answer.json().type]).toEqual([400, 'urn:holdfast:problem:invalid-request']);
     expect(answer.json().issues.map((issue: Issue) => issue.path)).toEqual([path]);
+  });
+
+  it('with a moment that is none is told what one looks like', async () => {
+    const { get } = await testApp();
+    const message = 'must be a date like 2026-03-02 or a moment like 2026-03-02T08:00:00Z, given once';
+    for (const wrong of ['yesterday', '2026-02-30T00:00:00Z', '2026-03-02&createdFrom=2026-03-03']) {
+      const answer = await get(`/v1/verdicts?createdFrom=${wrong}`);
+      expect(answer.json().issues).toEqual([{ path: 'createdFrom', message }]);
+    }
+  });
+
+  it.each([
+    ['DELETE', '/v1/lamps/none', 'entry-not-found'],
+    ['DELETE', '/v1/verdicts', 'no-such-call'],
+  ] as const)('%s %s that states a type and has no body is not asked for one', async (method, url, code) => {
+    const { app } = await testApp();
+    const answer = await app.inject({ method, url, headers: { 'content-type': 'application/json' } });
+    expect(answer.json().type).toBe(`urn:holdfast:problem:${code}`);
   });
 
   it.each([

@@ -25,9 +25,15 @@ const EXPECTED: { readonly [awaited in Awaited]: string } = {
   'name or }': 'a field name in double quotes, or }',
   colon: 'a colon after the field name',
   'comma or end': 'a comma, or the bracket that closes this',
-  nothing: 'the end of the file',
+  nothing: 'the end of the text',
 };
 const OPEN_TEXT = 'a text closed by a double quote on the same line, with only JSON\'s \\ escapes (\\" \\\\ \\n and so on)';
+
+/** The same in words; null where the text is JSON after all. */
+export function jsonFaultWords(text: string): string | null {
+  const fault = findJsonFault(text);
+  return fault === null ? null : `line ${fault.line}, column ${fault.column}: expected ${fault.expected}; found ${fault.found}`;
+}
 
 export function findJsonFault(text: string): JsonFault | null {
   const open: ('{' | '[')[] = [];
@@ -103,7 +109,7 @@ function faultAt(text: string, at: number, awaited: Awaited): JsonFault {
 }
 
 function foundAt(text: string, at: number): string {
-  if (at >= text.length) return 'the end of the file';
+  if (at >= text.length) return 'the end of the text';
   const rest = /^[^\n\r]{1,24}/.exec(text.slice(at))?.[0] ?? '';
   return JSON.stringify(rest.trimEnd());
 }

@@ -1,6 +1,6 @@
 import fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
-import { findJsonFault } from '../../scripts/json-fault.ts';
+import { findJsonFault } from '../../server/json/json-fault.ts';
 
 const isJson = (text: string): boolean => {
   try {
@@ -18,9 +18,9 @@ describe('finding where a text stops being JSON', () => {
     ['{\n  "a": 1\n  "b": 2\n}', 3, 3, /a comma/, String.raw`"\"b\": 2"`],
     ['{"a" 1}', 1, 6, /a colon/, '"1}"'],
     ["{'a': 1}", 1, 2, /double quotes/, `"'a': 1}"`],
-    ['{"a": 1', 1, 8, /bracket that closes/, 'the end of the file'],
+    ['{"a": 1', 1, 8, /bracket that closes/, 'the end of the text'],
     ['{"a": "b\n}', 1, 7, /closed by a double quote/, String.raw`"\"b"`],
-    ['{"a": 1} // lamp', 1, 10, /end of the file/, '"// lamp"'],
+    ['{"a": 1} // lamp', 1, 10, /end of the text/, '"// lamp"'],
     ['{"a": 1]', 1, 8, /bracket that closes/, '"]"'],
     ['{"a": 01}', 1, 7, /a value/, '"01}"'],
     ['{"a": 2,5}', 1, 9, /field name/, '"5}"'],
