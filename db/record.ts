@@ -16,8 +16,7 @@ export const RESTORING_ID = 0x52455354;
 
 /** Opens the file (creating it and its folder), brings its schema up to date, and refuses a schema newer than this code. */
 export function openRecord(file: string, now: () => Date): RecordDatabase {
-  mkdirSync(dirname(file), { recursive: true });
-  const record = new Database(file);
+  const record = openFile(file);
   try {
     // Before the first pragma, so that a file of something else is not turned into one with a write-ahead log.
     refuseOtherContents(record);
@@ -28,9 +27,23 @@ export function openRecord(file: string, now: () => Date): RecordDatabase {
     migrate(record, now);
   } catch (error) {
     record.close();
-    throw error;
+    throw error instanceof Database.SqliteError ? cannotOpen(file, error) : error;
   }
   return record;
+}
+
+function openFile(file: string): RecordDatabase {
+  try {
+    mkdirSync(dirname(file), { recursive: true });
+    return new Database(file);
+  } catch (error) {
+    throw cannotOpen(file, error);
+  }
+}
+
+/** SQLite and the system say what is wrong, and not always with which file. */
+function cannotOpen(file: string, cause: unknown): Error {
+  return new Error(`The record ${file} cannot be opened: ${cause instanceof Error ? cause.message : cause}.`, { cause });
 }
 
 function statePragmas(record: RecordDatabase): void {

@@ -21,7 +21,7 @@ export function terminalReport(verdict: Verdict, paint: Paint, requirement: Requ
   const sections = [
     [paint(verdict.grade.toUpperCase(), 'bold', GRADE_COLOURS[verdict.grade]), ...wrap(verdict.summary)],
     pairingLines(verdict.pairing),
-    [...dialStrip(verdict.dial, paint), ...figureLines(verdict.dial), ...edgeLines(verdict.dial), ...circuitLines(verdict)],
+    [...dialStrip(verdict.dial, paint), ...figureLines(verdict.dial), ...edgeLines(verdict.dial), ...whoseLines(verdict)],
     titled('What must be seen to', itemLines(verdict.conditions.map(({ detail }) => detail)), paint),
     titled('What would settle it', settlingLines(verdict.wouldSettle), paint),
     titled('Remedies', remedyLines(verdict.remedies), paint),
@@ -81,6 +81,9 @@ function figureLines(dial: Verdict['dial']): string[] {
   return ['', ...wrap(text, '  ')];
 }
 
+/** %; a margin below this would be read as none */
+const LEAST_SHOWN = 0.01;
+
 /** Where a part a hair different would do something else, and how little that is. */
 function edgeLines(dial: Verdict['dial']): string[] {
   const near = dial.filter((row) => row.nearEdge);
@@ -88,14 +91,19 @@ function edgeLines(dial: Verdict['dial']): string[] {
   const positions = [...new Set(near.map((row) => row.position_pct))].sort((a, b) => a - b);
   const margins = near.flatMap(({ margins: { latching_pct, holding_pct, breakover_pct } }) => [latching_pct, holding_pct, breakover_pct]);
   const least = Math.min(...margins.filter((margin) => margin !== null));
-  const text = `Near the edge at ${positions.join(', ')} %: a part ${round(least)} % different would do something else there.`;
+  const part = least < LEAST_SHOWN ? 'the slightest difference in a part' : `a part ${round(least)} % different`;
+  const text = `Near the edge at ${positions.join(', ')} %: ${part} would do something else there.`;
   return wrap(text, '  ');
 }
 
-/** Of several possible circuits the dial is one's. */
-function circuitLines({ variants }: Verdict): string[] {
+/** Of several corners the dial is the nominal one's, of several possible circuits it is one's: said where another decides. */
+function whoseLines({ variants, decidedBy, pairing }: Verdict): string[] {
   const one = variants.find(({ shown }) => shown);
-  return variants.length < 2 || one === undefined ? [] : wrap(`The lamps here have the circuit that does worst: ${one.name}.`, '  ');
+  const corner = `The dial here is the one at ${pairing.mains.voltage_V} V; it is worse at ${decidedBy}, see Corners.`;
+  return [
+    ...(decidedBy === 'nominal' ? [] : wrap(corner, '  ')),
+    ...(variants.length < 2 || one === undefined ? [] : wrap(`The lamps here have the circuit that does worst: ${one.name}.`, '  ')),
+  ];
 }
 
 function countTitle({ lampCounts, pairing }: Verdict): string {

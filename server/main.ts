@@ -69,6 +69,8 @@ async function start(environment: Environment): Promise<void> {
     logger.info({ ...printable(environment), address, reference: `${address}/docs` }, 'serving');
   } catch (error) {
     logger.fatal({ err: error }, 'the service did not start');
+    // A silent log is no reason to end without a word.
+    if (environment.logLevel === 'silent') console.error(`The service did not start: ${error instanceof Error ? error.message : error}`);
     process.exitCode = 1;
     // Threads and timers may be up already.
     logger.flush();

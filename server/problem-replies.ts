@@ -2,6 +2,7 @@
 import type { FastifyBaseLogger, FastifyError, FastifyReply, FastifyRequest } from 'fastify';
 import { PROBLEMS, type ProblemCode, problemDocument } from './problems.ts';
 import type { Issue } from './schemas/wire-parsing.ts';
+import { diskTrouble } from './screenings/disk-trouble.ts';
 
 /** Raised by the validator: everything that is wrong with one part of a request. */
 export class RequestInvalid extends Error {
@@ -20,6 +21,9 @@ export class BodyRefused extends Error {
     this.problem = problem;
   }
 }
+
+/** s; somebody has to make room */
+const DISK_RETRY = 60;
 
 interface Extras {
   readonly issues?: readonly Issue[];
@@ -62,6 +66,10 @@ export function replyToError(
     return sendProblem(reply, 'malformed-http', 'The request cannot be read.');
   }
   request.log.error({ err: error }, 'request failed');
+  const trouble = diskTrouble(error);
+  if (trouble !== undefined) {
+    return sendProblem(reply, 'record-unavailable', `${trouble} Nothing of the request is kept.`, { retryAfter_s: DISK_RETRY });
+  }
   return sendProblem(reply, 'internal', 'The request could not be answered. It is logged under requestId.');
 }
 

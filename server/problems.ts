@@ -16,7 +16,11 @@ export const PROBLEMS = {
     title: 'The request is not valid',
     when: 'a field is unknown, missing, of the wrong type, out of range or at odds with another; `issues` lists every one',
   },
-  'malformed-json': { status: 400, title: 'The body is not JSON', when: 'the body is empty, cut off or not JSON' },
+  'malformed-json': {
+    status: 400,
+    title: 'The body is not JSON',
+    when: 'the body is empty, cut off, not JSON or not UTF-8; `detail` says where it breaks',
+  },
   'unreadable-list': {
     status: 400,
     title: 'The list cannot be read',
@@ -88,6 +92,11 @@ export const PROBLEMS = {
     status: 503,
     title: 'Other lists are being imported',
     when: 'as many lists as the service takes at once are on their way; `Retry-After` says when to ask again',
+  },
+  'record-unavailable': {
+    status: 503,
+    title: 'The record is not available',
+    when: 'the disk that holds the record is full or in trouble, or another process holds it; nothing of the request is kept: ask again once that is over',
   },
   'not-ready': { status: 503, title: 'The service is not ready', when: 'the record cannot be read, or the service is stopping' },
   stopping: { status: 503, title: 'The service is stopping', when: 'the request arrived on an open connection while the service stops' },

@@ -24,7 +24,7 @@ export function momentText(description: string) {
     .string({ error })
     .refine((text) => DATE_OR_MOMENT.safeParse(text).success, { error })
     .transform((text) => Date.parse(text))
-    .meta({ type: 'string', format: 'date-time', description });
+    .meta({ type: 'string', anyOf: [{ format: 'date' }, { format: 'date-time' }], description });
 }
 
 /** true or false. */

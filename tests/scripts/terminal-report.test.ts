@@ -137,6 +137,7 @@ describe('the report for a terminal', () => {
     const several = await judged('dining-room');
     const shown = several.variants.find((variant) => variant.shown)?.name;
     const words = (verdict: Verdict) => terminalReport(verdict, plain).replace(/\s+/g, ' ');
+    expect(words(several)).not.toContain('The dial here is');
     expect(words(several)).toContain(`The lamps here have the circuit that does worst: ${shown}.`);
     const study = await judged('study', (asked) => ({
       ...asked,
@@ -147,6 +148,23 @@ describe('the report for a terminal', () => {
     const bedroom = words(await judged('bedroom'));
     expect(bedroom).not.toContain('as it was assumed');
     expect(bedroom).not.toContain('does worst');
+    expect(bedroom).toContain('The dial here is the one at 230 V; it is worse at low-mains-cold, see Corners.');
+  });
+
+  it('never says that a part may differ by 0 %', async () => {
+    const verdict = await judged('bedroom');
+    const [row] = verdict.dial;
+    if (row === undefined) throw new Error('the bedroom has a dial');
+    const near = (least: number): string => {
+      const margins = { latching_pct: least, holding_pct: 5, breakover_pct: null };
+      return terminalReport({ ...verdict, dial: [{ ...row, nearEdge: true, margins: { ...row.margins, ...margins } }] }, plain).replace(
+        /\s+/g,
+        ' ',
+      );
+    };
+    expect(near(0)).toContain('Near the edge at 0 %: the slightest difference in a part would do something else there.');
+    expect(near(0.0004)).toContain('the slightest difference');
+    expect(near(0.42)).toContain('a part 0.42 % different would');
   });
 
   it('is in colour only in a terminal that is not dumb, and never where NO_COLOR is set', () => {

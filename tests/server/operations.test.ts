@@ -1,7 +1,10 @@
 import { connect } from 'node:net';
 import { describe, expect, it } from 'vitest';
+import type { App } from '../../server/app.ts';
 import { PROBLEMS, problemDocument } from '../../server/problems.ts';
 import { listenOnAnyPort, testApp } from '../support/server-app.ts';
+import { fakeSimulation } from '../support/server-fake-simulation.ts';
+import { examplePairing } from '../support/server-pairings.ts';
 
 describe('health', () => {
   it('is ready while the record can be read, and not otherwise', async () => {
@@ -14,6 +17,34 @@ describe('health', () => {
     expect((await get('/health/live')).statusCode).toBe(200);
   });
 });
+
+describe('a full disk', () => {
+  it('is told to whoever asks for something to be kept, and what is in the record is answered all the same', async () => {
+    const { app, record, get, verdicts, post } = await testApp({ simulation: fakeSimulation() });
+    const { id } = (await post(examplePairing())).json();
+    record.pragma(`max_page_count = ${record.pragma('page_count', { simple: true })}`);
+    // more than the free space that any page may still have
+    const name = (number: number) => `${number} `.repeat(50).slice(0, 190).trim();
+    let answer = await putLamp(app, 'lamp-0', name(0));
+    for (let number = 1; answer.statusCode === 201 && number < 1000; number += 1)
+      answer = await putLamp(app, `lamp-${number}`, name(number));
+    expect([answer.statusCode, answer.headers['retry-after'], answer.json()]).toEqual([
+      503,
+      '60',
+      expect.objectContaining({
+        type: 'urn:holdfast:problem:record-unavailable',
+        detail: 'The disk that holds the record is full. Nothing of the request is kept.',
+      }),
+    ]);
+    expect((await get(`/v1/verdicts/${id}`)).statusCode).toBe(200);
+    expect(verdicts.count()).toBe(1);
+  });
+});
+
+function putLamp(app: App, id: string, name: string) {
+  const payload = { name, lamp: { ratedPower_W: 8, load: { kind: 'resistive' } } };
+  return app.inject({ method: 'PUT', url: `/v1/lamps/${id}`, payload });
+}
 
 describe('request ids', () => {
   it('are taken from the caller where they are harmless, and appear in answer, problem and log', async () => {

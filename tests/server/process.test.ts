@@ -1,6 +1,6 @@
 import { type ChildProcess, spawn } from 'node:child_process';
 import { once } from 'node:events';
-import { existsSync, readdirSync } from 'node:fs';
+import { existsSync, readdirSync, writeFileSync } from 'node:fs';
 import { join } from 'node:path';
 import { describe, expect, it, onTestFinished } from 'vitest';
 import { closeRecord, openRecord } from '../../db/record.ts';
@@ -88,6 +88,17 @@ describe('the process', () => {
     expect(service.output()).toMatch(/HOLDFAST_PORT must be a whole number from 0 to 65535/);
     expect(service.output()).toMatch(/HOLDFAST_LOG_LEVEL must be one of/);
     expect(existsSync(folder)).toBe(false);
+  });
+
+  it('says which file is no record, and does so with a silent log as well', async () => {
+    const folder = temporaryFolder();
+    const file = join(folder, 'holdfast.sqlite');
+    writeFileSync(file, 'x'.repeat(5000));
+    for (const HOLDFAST_LOG_LEVEL of ['info', 'silent']) {
+      const service = start({ HOLDFAST_DATA: folder, HOLDFAST_LOG_LEVEL });
+      expect(await service.exit).toBe(1);
+      expect(service.output()).toContain(`The record ${file} cannot be opened: file is not a database.`);
+    }
   });
 
   it('does not start on a record that a newer version has changed', async () => {
