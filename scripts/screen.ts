@@ -20,7 +20,7 @@ import type { Screenings } from '../server/screenings/screenings.ts';
 import { startSimulationPool } from '../server/simulation/simulation-pool.ts';
 import { readScreenArguments, SCREEN_USAGE, type ScreenArguments } from './screen-arguments.ts';
 import { type Complaint, takeList } from './screening-list.ts';
-import { durationOf, screeningProgress } from './screening-progress.ts';
+import { durationOf, screeningProgress, untilNextLook } from './screening-progress.ts';
 import { wrap } from './terminal-text.ts';
 
 const GIVEN_UP = 1;
@@ -137,10 +137,7 @@ async function follow(screenings: Screenings, id: string): Promise<ScreeningAnsw
         summarize(screening, (Date.now() - began) / 1000);
         return screening;
       }
-      await new Promise((resolve) => {
-        const timer = setTimeout(resolve, LOOK);
-        stop.signal.addEventListener('abort', () => resolve(clearTimeout(timer)), { once: true });
-      });
+      await untilNextLook(LOOK, stop.signal);
       if (!stop.signal.aborted) continue;
       await screenings.stop();
       const { counts } = await look(screenings, id);

@@ -1,4 +1,5 @@
 /** Shows how far a screening is: a bar that is drawn again in place in a terminal, a line now and then where the output goes elsewhere. */
+import { setTimeout } from 'node:timers/promises';
 import cliProgress from 'cli-progress';
 import type { ScreeningAnswer } from '../server/schemas/screening.ts';
 
@@ -10,6 +11,15 @@ export interface ScreeningProgress {
 
 /** ms between lines where the output is no terminal */
 const LINE_EVERY = 10_000;
+
+/** Waits, or until the signal says to stop. Nothing stays behind on the signal: a night has a hundred thousand looks. */
+export async function untilNextLook(ms: number, signal: AbortSignal): Promise<void> {
+  try {
+    await setTimeout(ms, undefined, { signal });
+  } catch (error) {
+    if (!signal.aborted) throw error;
+  }
+}
 
 export function screeningProgress(stream: NodeJS.WriteStream): ScreeningProgress {
   const bar = new cliProgress.SingleBar({

@@ -42,7 +42,9 @@ describe('the README’s screenings', () => {
     expect(askedScreening.safeParse({ ...asked, ...JSON.parse(`{${later}}`) }).success).toBe(true);
 
     const { app } = await testApp();
-    for (const [, kind, file = ''] of section.matchAll(/--(lamps|dimmers) (\S+)/g)) {
+    const imports = [...section.matchAll(/\/v1\/imports\/(lamps|dimmers) -H 'content-type: text\/csv' --data-binary @(\S+)$/gm)];
+    expect(imports).toHaveLength(2);
+    for (const [, kind, file = ''] of imports) {
       await importList(app, readFileSync(ROOT + file), { kind: kind as 'lamps' | 'dimmers' });
     }
     const answer = await app.inject({ method: 'POST', url: '/v1/screenings', payload: asked });

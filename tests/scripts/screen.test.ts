@@ -1,10 +1,10 @@
 import { type ChildProcess, spawn } from 'node:child_process';
-import { once } from 'node:events';
+import { getEventListeners, once } from 'node:events';
 import { existsSync, readdirSync, readFileSync, writeFileSync } from 'node:fs';
 import { join } from 'node:path';
 import Database from 'better-sqlite3';
 import { describe, expect, it, onTestFinished } from 'vitest';
-import { durationOf, standingOf } from '../../scripts/screening-progress.ts';
+import { durationOf, standingOf, untilNextLook } from '../../scripts/screening-progress.ts';
 import { temporaryFolder } from '../support/server-temporary-record.ts';
 
 const ROOT = new URL('../..', import.meta.url).pathname;
@@ -176,6 +176,18 @@ describe('npm run screen', () => {
       expect(output).toContain(complaint);
     }
     expect((await start('--help').ended).code).toBe(0);
+  });
+});
+
+describe('the wait between two looks', () => {
+  it('leaves nothing on the signal, and ends at once where it is told to stop', async () => {
+    const stop = new AbortController();
+    for (let look = 0; look < 3; look += 1) await untilNextLook(1, stop.signal);
+    expect(getEventListeners(stop.signal, 'abort')).toHaveLength(0);
+    const waiting = untilNextLook(2 ** 30, stop.signal);
+    stop.abort();
+    await waiting;
+    await untilNextLook(2 ** 30, stop.signal);
   });
 });
 
