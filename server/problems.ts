@@ -19,7 +19,7 @@ export const PROBLEMS = {
   'malformed-json': {
     status: 400,
     title: 'The body is not JSON',
-    when: 'the body is empty, cut off, not JSON or not UTF-8; `detail` says where it breaks',
+    when: 'the body is empty, cut off, not JSON, not UTF-8 or nested too deep; `detail` says where it breaks',
   },
   'unreadable-list': {
     status: 400,

@@ -5,8 +5,12 @@
 import type { FastifyRequest } from 'fastify';
 import type { App } from '../app.ts';
 import { jsonFaultWords } from '../json/json-fault.ts';
+import { nestsDeeperThan } from '../json/nesting.ts';
 import { repeatedFields } from '../json/repeated-fields.ts';
 import { BodyRefused, RequestInvalid } from '../problem-replies.ts';
+
+/** levels; several times what any body of a call has */
+const DEEPEST = 64;
 
 export function readJsonBodies(app: App): void {
   // Fastify reads text/plain by itself as well.
@@ -24,6 +28,7 @@ function read(text: string, isWanted: boolean): unknown {
     if (!isWanted) return undefined;
     throw new BodyRefused('malformed-json', 'The body is empty: send a JSON object.');
   }
+  if (nestsDeeperThan(DEEPEST, text)) throw new BodyRefused('malformed-json', `The body nests more than ${DEEPEST} levels deep.`);
   const value = parse(text);
   const repeated = repeatedFields(text);
   if (repeated.length > 0) throw new RequestInvalid(repeated);

@@ -79,6 +79,7 @@ describe('a bad question', () => {
     ['empty', '', 400, 'malformed-json'],
     ['holding NaN', '{"mains": NaN}', 400, 'malformed-json'],
     ['nested beyond reason', '['.repeat(400_000), 400, 'malformed-json'],
+    ['nested beyond reason, and JSON', `${'['.repeat(400_000)}${']'.repeat(400_000)}`, 400, 'malformed-json'],
     ['reaching for the prototype', '{"__proto__": {"x": 1}}', 400, 'invalid-request'],
     ['a list', '[]', 400, 'invalid-request'],
     ['a string', '"pairing"', 400, 'invalid-request'],
