@@ -4,7 +4,7 @@
  */
 import type { ImportLimits } from './import-limits.ts';
 import { ListRefused } from './list-refused.ts';
-import type { ListRow } from './list-row.ts';
+import { type ListRow, rowOfJson } from './list-row.ts';
 
 export async function* jsonArrayRows(text: AsyncIterable<string>, limits: ImportLimits): AsyncGenerator<ListRow> {
   const cut = arrayCutter();
@@ -13,7 +13,7 @@ export async function* jsonArrayRows(text: AsyncIterable<string>, limits: Import
     for (const element of cut.elements(piece)) {
       row += 1;
       refuseTooLong(element.length, row, limits);
-      yield { row, value: parsed(element, row) };
+      yield parsed(element, row);
     }
     refuseTooLong(cut.heldLength(), row + 1, limits);
   }
@@ -24,9 +24,9 @@ function refuseTooLong(length: number, row: number, { rowLength }: ImportLimits)
   if (length > rowLength) throw new ListRefused('list-too-large', `Element ${row} is longer than ${rowLength} characters.`);
 }
 
-function parsed(element: string, row: number): unknown {
+function parsed(element: string, row: number): ListRow {
   try {
-    return JSON.parse(element);
+    return rowOfJson(element, row);
   } catch (error) {
     if (!(error instanceof SyntaxError)) throw error;
     throw broken(row, 'an element is not JSON');

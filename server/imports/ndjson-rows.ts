@@ -1,7 +1,7 @@
 /** Reads NDJSON: one value a line. A line that is not JSON is that row's fault alone, since the next line begins anew. */
 import type { ImportLimits } from './import-limits.ts';
 import { ListRefused } from './list-refused.ts';
-import type { ListRow } from './list-row.ts';
+import { type ListRow, rowOfJson } from './list-row.ts';
 
 export async function* ndjsonRows(text: AsyncIterable<string>, limits: ImportLimits): AsyncGenerator<ListRow> {
   let row = 0;
@@ -13,7 +13,7 @@ export async function* ndjsonRows(text: AsyncIterable<string>, limits: ImportLim
 
 function rowOf(line: string, row: number): ListRow {
   try {
-    return { row, value: JSON.parse(line) };
+    return rowOfJson(line, row);
   } catch (error) {
     if (!(error instanceof SyntaxError)) throw error;
     return { row, issues: [{ path: '', message: 'is not JSON: each line holds one object' }], id: undefined };

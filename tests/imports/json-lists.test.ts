@@ -22,6 +22,7 @@ describe('an NDJSON list', () => {
     ],
     ['values that are no objects', '5\n"hall"\nnull\n[]\n{}', ['1 refused', '2 refused', '3 refused', '4 refused', '5 refused id lamp']],
     ['an unknown field', lamp('hall', { watts: 5 }), ['1 refused watts']],
+    ['a field that is given twice', `${lamp('hall').replace('{', '{"id":"attic",')}\n${lamp('attic')}`, ['1 refused id', '2 created']],
     ['a field that reaches for the prototype', '{"id":"hall","__proto__":{"lamp":1}}', ['1 refused lamp __proto__']],
     ['what an entry has that was read, and nobody may send', lamp('hall', { revision: 3 }), ['1 refused revision']],
     [
@@ -78,6 +79,13 @@ describe('a JSON array', () => {
     const note = 'Fädenlampe „8 W“ \\ "oben"\n💡 {[,]}';
     await importList(app, `[${lamp('hall', { note })}]`, { type: JSON_TYPE });
     expect(readEntry(entries, 'lamp', 'hall')?.note).toBe(note);
+  });
+
+  it('refuses the element that gives a field twice, and takes the others', async () => {
+    const { app } = await testApp();
+    const twice = lamp('hall').replace('"ratedPower_W":40', '$&,"ratedPower_W":4');
+    const answer = await importList(app, `[${twice},${lamp('attic')}]`, { type: JSON_TYPE });
+    expect(outcomes(answer)).toEqual(['1 refused lamp.ratedPower_W', '2 created']);
   });
 
   it.each([
