@@ -131,6 +131,11 @@ export class DimmerRun {
     for (let k = 0; k < into.length; k++) into[k] = (this.x[k] as number) * (this.mode.mapped.flips[k] as number);
   }
 
+  /** the triac has fired and not yet opened */
+  get conducting(): boolean {
+    return this.conduction.record !== null;
+  }
+
   get configuration(): Configuration {
     return this.mode.configuration;
   }

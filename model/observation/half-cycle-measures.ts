@@ -1,38 +1,28 @@
-/** Adds up what each observed half-cycle delivered, from the segments the run passed through. */
+/** What a half-cycle delivered, from the segments that it passed through. */
 import { OUTPUT } from '../circuit/configuration.ts';
-import type { SegmentListener } from '../engine/dimmer-run.ts';
-import type { Mode } from '../engine/mode.ts';
-import { Segment } from '../engine/segment.ts';
+import type { Segment } from '../engine/segment.ts';
 
 export interface Measures {
   /** integral of the line current, C */
-  charge: number;
+  readonly charge: number;
   /** integral of the squared line current, A^2 s */
-  squaredCurrent: number;
+  readonly squaredCurrent: number;
   /** largest line current, A */
-  peakCurrent: number;
+  readonly peakCurrent: number;
   /** energy into all lamps (not the added load), J */
-  lampEnergy: number;
+  readonly lampEnergy: number;
 }
 
-export class HalfCycleMeasures implements SegmentListener {
-  current: Measures = { charge: 0, squaredCurrent: 0, peakCurrent: 0, lampEnergy: 0 };
-
-  /** segments of the half-cycle, in order */
-  segments: Segment[] = [];
-
-  begin(): void {
-    this.segments = [];
-    this.current = { charge: 0, squaredCurrent: 0, peakCurrent: 0, lampEnergy: 0 };
+export function measuresOf(segments: readonly Segment[]): Measures {
+  let charge = 0;
+  let squaredCurrent = 0;
+  let lampEnergy = 0;
+  let peakCurrent = 0;
+  for (const segment of segments) {
+    charge += segment.integral(OUTPUT.lineCurrent);
+    squaredCurrent += segment.productIntegral(OUTPUT.lineCurrent, OUTPUT.lineCurrent);
+    lampEnergy += segment.productIntegral(OUTPUT.lampVoltage, OUTPUT.lampCurrent);
+    peakCurrent = segment.peak(OUTPUT.lineCurrent, peakCurrent);
   }
-
-  segment(mode: Mode, coordinates: Float64Array, start: number, duration: number, halfCycle: number): void {
-    const segment = new Segment(mode, coordinates, start, duration, halfCycle);
-    this.segments.push(segment);
-    const m = this.current;
-    m.charge += segment.integral(OUTPUT.lineCurrent);
-    m.squaredCurrent += segment.productIntegral(OUTPUT.lineCurrent, OUTPUT.lineCurrent);
-    m.lampEnergy += segment.productIntegral(OUTPUT.lampVoltage, OUTPUT.lampCurrent);
-    m.peakCurrent = segment.peak(OUTPUT.lineCurrent, m.peakCurrent);
-  }
+  return { charge, squaredCurrent, peakCurrent, lampEnergy };
 }

@@ -73,12 +73,17 @@ export class MarginWatch implements TriacListener {
       holding: this.holding(segments, early),
       breakover: record.firings.length === 0 && record.conduction === 0 ? this.breakover(segments) : null,
     };
+    this.pass();
+    return margins;
+  }
+
+  /** goes on to the next half-cycle */
+  pass(): void {
     this.gates = [];
     this.excursions = [];
     if (this.gateSince !== null) this.gateSince -= this.halfPeriod;
     // an excursion that ended in an opening leaves nothing to close
     this.belowSince = null;
-    return margins;
   }
 
   private latching(segments: readonly Segment[]): number | null {

@@ -17,7 +17,9 @@ export const dialRow = z
     silentShare: z.number().describe('Share of half-cycles without a firing, 0 to 1.'),
     repeatsAfter_halfCycles: count.nullable().describe('Length of the pattern that repeats; null where it wanders.'),
     settled_halfCycles: count.describe('Half-cycles simulated before observing.'),
-    observed_halfCycles: count.describe('Half-cycles observed.'),
+    observed_halfCycles: count.describe(
+      'Half-cycles observed. Where each is the mirror image of the one before, one was simulated and stands for both polarities.',
+    ),
     failedLatches: z.number().describe('Gate pulses a half-cycle, on average, that ended before the triac reached its latching current.'),
     earlyDropOuts: z
       .number()

@@ -127,9 +127,39 @@ describe('an observation', () => {
     expect(halfCycles.map((h) => h.record.index % 2).sort()).toEqual([0, 1]);
   });
 
+  test('lets one half-cycle stand for both polarities only where it shows what simulating the other one shows', () => {
+    for (const lamp of [filament(60, mains230), filament(15, mains230)]) {
+      const judged = pairing(mains230, everydayDimmer(), lamp);
+      const listened = new DialObserver(startRun(judged), OBSERVATION_PLAN, { segment: () => undefined });
+      const mirrored = new DialObserver(startRun(judged));
+      for (const position of [20, 50, 80, 100, 40]) {
+        const [both, one] = [listened.observe(position), mirrored.observe(position)];
+        expect(one.repeatsAfter).toBe(both.repeatsAfter);
+        const inPolarity = ({ halfCycles }: typeof both) => halfCycles.toSorted((a, b) => (a.record.index % 2) - (b.record.index % 2));
+        for (const [k, seen] of inPolarity(one).entries()) {
+          const simulated = inPolarity(both)[k] as typeof seen;
+          expect(seen.record.firings).toHaveLength(simulated.record.firings.length);
+          expect(seen.record.conduction).toBeCloseTo(simulated.record.conduction, 3);
+          expect(seen.measures.charge).toBeCloseTo(simulated.measures.charge, 8);
+          expect(seen.measures.lampEnergy).toBeCloseTo(simulated.measures.lampEnergy, 5);
+          expect(seen.earlyDropOuts).toBe(simulated.earlyDropOuts);
+        }
+      }
+      expect(mirrored.run.index).toBeLessThan(listened.run.index);
+    }
+  });
+
+  test('simulates both polarities where the dimmer treats them differently', () => {
+    const unequal = everydayDimmer({ latchingCurrent: { positive: 0.05, negative: 0.051 } });
+    const { halfCycles } = new DialObserver(startRun(pairing(mains230, unequal, filament(60, mains230)))).observe(50);
+    const [first, second] = halfCycles;
+    expect(first?.record.index).not.toBe(second?.record.index);
+    expect(first?.margins.latching).not.toBeCloseTo(second?.margins.latching ?? 0, 4);
+  });
+
   test('counts its work', () => {
     const { counters } = sweepDial(pairing(mains230, everydayDimmer(), filament(60, mains230)), [40, 60]);
-    expect(counters.halfCycles).toBeGreaterThanOrEqual(4 * 4);
+    expect(counters.halfCycles).toBeGreaterThanOrEqual(4 * 3);
     expect(counters.events).toBeGreaterThan(counters.halfCycles);
     expect(counters.steps).toBeGreaterThan(counters.events);
     expect(counters.modesBuilt).toBeGreaterThan(0);
