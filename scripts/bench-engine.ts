@@ -1,7 +1,7 @@
 /**
- * Measures the engine: half-cycles per second on one core for each load kind, its steps and events, the arithmetic of its steps alone, what
- * building the modes of a new dial position costs, how a sweep grows with lamp groups, and, alternately in the same call, what ngspice makes of the same circuits.
- * Every figure is the median of several runs with its least and most.
+ * Measures the engine: half-cycles per second on one core for each load kind, its steps and events, the arithmetic of its steps alone,
+ * what building the modes of a new dial position costs, how a sweep grows with lamp groups, and, alternately in the same call, what
+ * ngspice makes of the same circuits. Every figure is the median of several runs with its least and most.
  *
  *   npm run bench:engine [-- --runs 5] [--no-ngspice] [--grid]
  *
@@ -26,6 +26,8 @@ const POSITIONS = Array.from({ length: 21 }, (_, k) => 5 * k);
 /** half-cycles per timed run and dial position, and before timing begins: settled, and compiled */
 const TIMED = 4000;
 const WARM_UP = 2000;
+/** sweeps of every circuit before anything is timed: a new thread compiles for its first second or two */
+const WARM_SWEEPS = 6;
 const NGSPICE_HALF_CYCLES = 8;
 /** modes built per timed run; steps per mode, and guards read in each, where only the arithmetic is timed */
 const REBUILT = 4000;
@@ -185,17 +187,17 @@ function benchGroups(): void {
   }
 }
 
+/** every circuit in turn, the first round to warm up: as in a thread that has judged for a while, and not one circuit over and over */
 function benchGrid(): void {
-  const times = cases.map((c) => {
-    timeSweep(c.pairing);
-    return spreadOf(Array.from({ length: 3 }, () => timeSweep(c.pairing).ms)).median;
-  });
+  const rounds = Array.from({ length: runs + 1 }, () => cases.map((c) => timeSweep(c.pairing).ms)).slice(1);
+  const times = cases.map((_, k) => spreadOf(rounds.map((round) => round[k] as number)).median);
   console.log(`reference grid, ${cases.length} circuits: a sweep of 21 positions takes ${told(spreadOf(times))} ms`);
 }
 
 console.log(machineLine());
 const version = values['no-ngspice'] ? null : ngspiceVersion();
 if (version === null && !values['no-ngspice']) console.log('ngspice is not installed: engine alone');
+for (const { pairing } of benchCircuits()) for (let k = 0; k < WARM_SWEEPS; k++) timeSweep(pairing);
 const results: { engine: number; ratio: number | null; sweep: number }[] = [];
 for (const circuit of benchCircuits()) results.push(await benchCircuit(circuit, version !== null));
 console.log(`over ${results.length} circuits: ${told(spreadOf(results.map((r) => r.engine)))} half-cycles/s`);
