@@ -25,8 +25,9 @@ export interface PoolSize {
   readonly entry?: URL;
 }
 
-// Compiled, the entry is a .js beside this file; from source it is TypeScript, which a thread reads only through tsx.
+// Compiled, the entry is a .js beside this file; from source it is TypeScript, which a thread has to be taught to read.
 const isSource = import.meta.url.endsWith('.ts');
+const TEACH_TYPESCRIPT = ['--import', new URL('./typescript-threads.mjs', import.meta.url).href];
 const ENTRY = new URL(isSource ? './simulation-thread.ts' : './simulation-thread.js', import.meta.url);
 
 /** seconds; the longest and the shortest wait a client is told */
@@ -42,7 +43,7 @@ const THREAD_HEAP = 1024;
 export function startSimulationPool({ threads, queueLimit, backgroundDeadline_s, entry = ENTRY }: PoolSize): SimulationPool {
   const pool = new Piscina({
     filename: entry.href,
-    execArgv: isSource ? ['--import', 'tsx'] : [],
+    execArgv: isSource ? TEACH_TYPESCRIPT : [],
     minThreads: threads,
     maxThreads: threads,
     concurrentTasksPerWorker: 1,
