@@ -2,7 +2,7 @@
  * Measures screenings: pairings an hour against a bare loop, over Redis and with two workers; kills at random moments; memory over what is
  * stored already; verdicts and badges meanwhile; and how long a whole night's list takes.
  *
- *   npm run bench:screening [-- --parts throughput,kills,memory,latency,night --rounds 5 --lamps 6 --dimmers 5 --kills 50 --stored 1000000
+ *   npm run bench:screening [-- --parts throughput,kills,memory,latency,night --rounds 3 --lamps 10 --dimmers 6 --kills 50 --stored 1000000
  *     --requests 1000 --sample 60]
  */
 import { spawnSync } from 'node:child_process';
@@ -18,9 +18,9 @@ const whole = (fallback: string) => ({ type: 'string', default: fallback }) as c
 const { values } = parseArgs({
   options: {
     parts: whole('throughput,kills,memory,latency,night'),
-    rounds: whole('5'),
-    lamps: whole('6'),
-    dimmers: whole('5'),
+    rounds: whole('3'),
+    lamps: whole('10'),
+    dimmers: whole('6'),
     kills: whole('50'),
     stored: whole('1000000'),
     requests: whole('1000'),
