@@ -23,6 +23,8 @@ export interface ModalBasis {
 
 /** most states a circuit can have: twelve groups with every optional part stay below */
 export const MOST_STATES = 128;
+/** most coordinates of a mode: its states' and the mains' pair */
+export const MOST_COORDINATES = MOST_STATES + 2;
 
 /** scratch of the decomposition that is being made: the triangular matrix, what transforms it, the inverse's left half, vectors */
 const hRe = new Float64Array(MOST_STATES * MOST_STATES);

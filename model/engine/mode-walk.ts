@@ -11,15 +11,13 @@
  */
 import { numbers } from '../numbers.ts';
 import { EVENT_TIME, ROOT_SHARE } from '../tolerances.ts';
+import { MOST_COORDINATES } from './eigen.ts';
 import { AFTER, BEFORE, BEND, LOWER, RANGE, REST, SLACK, UPPER, WATCHED_STRIDE } from './kernels.ts';
 import { LEVELS } from './linear-mode.ts';
 import type { Mode, Passage } from './mode.ts';
 import { ends, quinticRoot } from './quintic-root.ts';
 
 export type WalkOutcome = 'reached' | 'crossed' | 'out-of-steps';
-
-/** most coordinates that a mode can have: twelve groups with every optional part stay below */
-const MOST_COORDINATES = 160;
 
 /** share of a step over which the factors that count turn and decay so little that four terms of their series are exact to rounding */
 const NUDGE = 1e-4;

@@ -5,11 +5,11 @@
  */
 import { copied } from '../numbers.ts';
 import { DIP_PIECES, PEAK_TIME, PEAK_TOLERANCE, RING_FADED } from '../tolerances.ts';
+import { MOST_COORDINATES, MOST_STATES } from './eigen.ts';
 import type { Mode } from './mode.ts';
 
-/** most coordinates of a mode, and most terms of an output, the constant among them */
-const MOST_COORDINATES = 160;
-const MOST_TERMS = 96;
+/** most terms of an output: one for each state, the mains' and the constant */
+const MOST_TERMS = MOST_STATES + 2;
 
 /** scratch: up to two outputs taken apart, and what multiplies their slopes and curvatures, which nobody asks for here */
 const firstParts = new Float64Array(3 * MOST_COORDINATES);

@@ -166,7 +166,8 @@ function mirrored({ record, measures, ...rest }: ObservedHalfCycle): ObservedHal
   return { record: { ...record, index: record.index + 1 }, measures: { ...measures, charge: -measures.charge }, ...rest };
 }
 
-function treatsPolaritiesAlike({ latchingCurrent, holdingCurrent, drive }: Dimmer): boolean {
+/** whether what is true of one half-cycle of the mains is true of the other, mirrored */
+export function treatsPolaritiesAlike({ latchingCurrent, holdingCurrent, drive }: Dimmer): boolean {
   const pairs = [latchingCurrent, holdingCurrent, ...(drive.kind === 'diac' ? [drive.breakover] : [])];
   return pairs.every(({ positive, negative }) => positive === negative);
 }

@@ -2,6 +2,7 @@
  * How far one run is from a settled pattern or from a wandering run's averages, against what is accepted. A pattern may stand at
  * another half-cycle than in the reference, as far as the circuit treats its polarities alike.
  */
+import { treatsPolaritiesAlike } from '../../model/observation/dial-observation.ts';
 import type { Pairing } from '../../model/pairing.ts';
 import { type Averages, averagesOf, type HalfCycle, inOwnPolarity, type Pattern } from './pattern.ts';
 
@@ -29,7 +30,7 @@ const compared = 24;
 /** Of a run whose reference wanders the first `settle` half-cycles are passed over. */
 export function compare(run: readonly HalfCycle[], reference: Pattern, pairing: Pairing, settle: number): Comparison {
   if (reference.kind === 'wanders') return onAverage(averagesOf(run.slice(settle)), reference);
-  const step = treatsPolaritiesAlike(pairing) ? 1 : 2;
+  const step = treatsPolaritiesAlike(pairing.dimmer) ? 1 : 2;
   const tried: Comparison[] = [];
   for (let shift = 0; shift < reference.halfCycles.length; shift += step)
     tried.push(atShift(run.length - compared, run, reference.halfCycles, shift));
@@ -84,9 +85,3 @@ function atShift(from: number, run: readonly HalfCycle[], pattern: readonly Half
 const relative = (own: number, expected: number) => Math.abs(own / expected - 1);
 const worst = ({ figures }: Comparison) => Math.max(...figures.map(({ deviation, allowed }) => deviation / allowed));
 const told = ({ firingAngles }: HalfCycle) => firingAngles.map((angle) => angle.toFixed(2)).join(' ');
-
-function treatsPolaritiesAlike({ dimmer }: Pairing): boolean {
-  const { latchingCurrent, holdingCurrent, drive } = dimmer;
-  const pairs = [latchingCurrent, holdingCurrent, ...(drive.kind === 'diac' ? [drive.breakover] : [])];
-  return pairs.every(({ positive, negative }) => positive === negative);
-}
