@@ -14,12 +14,14 @@ import { startDailyRescreening } from './screenings/daily-rescreening.ts';
 import { screeningService } from './screenings/screening-service.ts';
 import { runStopStages, type StopStage } from './shutdown.ts';
 import { startSimulationPool } from './simulation/simulation-pool.ts';
+import { keepTickShape } from './tick-shape.ts';
 
 /** ms for what comes after the running requests: ending threads, writing the log of the record back */
 const SHORT_STAGE = 5_000;
 /** % of what is alive by which a heap grows before it is collected; V8 by itself lets it grow several times over, which importing fills */
 const HEAP_GROWTH = 50;
 
+keepTickShape();
 // Read at each collection and not only at the start, so it may be set here, for whoever starts this file in whatever way.
 setFlagsFromString(`--heap-growing-percent=${HEAP_GROWTH}`);
 
