@@ -56,6 +56,10 @@ export const ROOT_SHARE = 0.1;
 /** relative: a guard nearer its bound than this times the quantity's scale counts as on the bound, and its slope decides */
 export const GUARD_SLACK = 1e-9;
 
+/** walks and half-cycles that are remembered: eight half-cycles of each polarity (LONGEST_PERIOD), of some thirty walks each */
+export const REMEMBERED_WALKS = 512;
+export const REMEMBERED_PATHS = 16;
+
 // --- decomposition --------------------------------------------------------------------------------------------------------------
 
 /** condition of the eigenvector matrix above which the system matrix is nudged apart (see DEFECT_NUDGES); rounding errors reach about

@@ -123,6 +123,7 @@ export class DimmerRun {
       this.shelves.set(position, shelf);
     }
     this.shelf = shelf;
+    this.walk.forget();
     this.mode = shelf.mode(previous === undefined ? restingConfiguration(this.network) : this.mode.configuration);
   }
 
@@ -372,7 +373,7 @@ export class DimmerRun {
   private settleInstant(): boolean {
     this.setGuards();
     for (let k = 0; k < INSTANT_BUDGET; k++) {
-      if (this.walk.begin() < 0) return true;
+      if (this.walk.recall(this.mode.watchedUnder) || this.walk.begin() < 0) return true;
       this.crossed();
       this.setGuards();
     }

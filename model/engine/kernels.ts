@@ -9,7 +9,7 @@
 
 /** A guard that is watched is a record of WATCHED_STRIDE numbers: its output before and after the step; its window; its output's constant
  * part; and how far the output can stray from the chord, over h^2 for the slow terms and altogether for the fast ones. */
-export const WATCHED_STRIDE = 8;
+export const WATCHED_STRIDE = 9;
 export const BEFORE = 0;
 export const AFTER = 1;
 export const LOWER = 2;
@@ -18,6 +18,7 @@ export const SLACK = 4;
 export const REST = 5;
 export const BEND = 6;
 export const RANGE = 7;
+export const SPARE = 8;
 
 /** A guard's window is a record of WINDOW_STRIDE numbers, and its output's row stands beside it. */
 export const WINDOW_STRIDE = 4;
@@ -67,7 +68,22 @@ export interface Kernels {
     rows: Int32Array,
     guards: Int32Array,
     side: Numbers,
+    spares: Numbers,
   ) => number;
+  /** whether a walk that begins at z stays so near the one that began at walks[from..] that what that one had to spare, walks[spares..] per
+   * guard, is enough */
+  readonly near: (
+    z: Numbers,
+    walks: Numbers,
+    from: number,
+    spares: number,
+    outputRows: Numbers,
+    windowRows: Int32Array,
+    guardCount: number,
+  ) => boolean;
+  /** value (less its constant part) and slope of the output taken apart, at factors kept from `f` on, into at[0] and at[1]; the factors into
+   * `moved` */
+  readonly recall: (at: Numbers, moved: Numbers, parts: Numbers, factors: Numbers, f: number) => void;
   /** Takes an output apart at z: what multiplies each factor in its value, its slope and its curvature, into `parts`; slope and curvature
    * at z into at[0] and at[1]. */
   readonly takeApart: (
@@ -192,7 +208,7 @@ return {
       watched[at + ${RANGE}] = ${sum(terms.map((t) => `h${t} * r${t}`))};
     }
   },
-  begin(z, bends, ranges, b, outputRows, windows, windowRows, guardCount, all, watched, rows, guards, side) {
+  begin(z, bends, ranges, b, outputRows, windows, windowRows, guardCount, all, watched, rows, guards, side, spares) {
     ${Array.from({ length: coordinates }, (_, k) => `const z${k} = z[${k}];`).join(' ')}
     ${sizes}
     ${curvatures}
@@ -213,7 +229,12 @@ return {
       }
       ${shares}
       const reach = ${sum(terms.map((t) => `h${t}`))};
-      if (!all && rest - reach > lower && rest + reach < upper) continue;
+      const spare = Math.min(rest - reach - lower, upper - rest - reach);
+      if (!all && spare > 0) {
+        spares[g] = spare;
+        continue;
+      }
+      spares[g] = Infinity;
       rows[count] = row;
       guards[count++] = g;
       watched[at + ${BEFORE}] = y;
@@ -226,6 +247,22 @@ return {
       at += ${WATCHED_STRIDE};
     }
     return count;
+  },
+  near(z, walks, from, spares, outputRows, windowRows, guardCount) {
+    ${each(real, (k) => `const s${k} = Math.abs(z[${k}] - walks[from + ${k}]);`)}
+    ${each(pair, ({ term, re, im }) => `const x${re} = z[${re}] - walks[from + ${re}], x${im} = z[${im}] - walks[from + ${im}];
+      const s${term} = Math.sqrt(x${re} * x${re} + x${im} * x${im});`)}
+    for (let g = 0; g < guardCount; g++) {
+      const row = windowRows[g];
+      ${shares}
+      if (!(${sum(terms.map((t) => `h${t}`))} <= walks[spares + g])) return false;
+    }
+    return true;
+  },
+  recall(at, moved, parts, factors, f) {
+    ${Array.from({ length: coordinates }, (_, k) => `const m${k} = factors[f + ${k}]; moved[${k}] = m${k};`).join(' ')}
+    at[0] = ${weighed(0, (k) => `m${k}`)};
+    at[1] = ${weighed(slopeFrom, (k) => `m${k}`)};
   },
   takeApart(parts, at, z, decay, rotation, outputRows, row) {
     ${each(

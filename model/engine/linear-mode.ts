@@ -16,7 +16,7 @@ import { type Kernels, kernelsFor } from './kernels.ts';
 
 export const LEVELS = LADDER_LEVELS + 1;
 /** largest |lambda| h that still counts as slow: there |lambda|^2 h^2 / 8 is 1, the range of a decaying coordinate */
-const SLOW_LIMIT = Math.sqrt(8);
+export const SLOW_LIMIT = Math.sqrt(8);
 
 /** what mirrored modes share */
 export interface LinearMode {
@@ -43,6 +43,9 @@ export interface LinearMode {
   /** levels x terms: curvature bound over 8 of a term of unit size where it is slow at that level, its whole range where it is fast */
   readonly bends: Float64Array;
   readonly ranges: Float64Array;
+  /** |lambda| of each term, and the largest, 1/s */
+  readonly speeds: Float64Array;
+  readonly fastest: number;
   /** some coordinate grows (a falling lamp curve) */
   readonly grows: boolean;
   readonly kernels: Kernels;
@@ -172,10 +175,14 @@ export function linearMode(system: ModeSystem, omega: number, shortest: number):
   const factors = numbers(LEVELS * coordinates);
   const bends = numbers(LEVELS * terms);
   const ranges = numbers(LEVELS * terms);
+  const speeds = numbers(terms);
+  let fastest = 0;
   for (let t = 0; t < terms; t++) {
     const d = decay[t] as number;
     const q = rotation[t] as number;
     const speed = Math.sqrt(d * d + q * q);
+    speeds[t] = speed;
+    if (speed > fastest) fastest = speed;
     const k = t < reals ? t : reals + 2 * (t - reals);
     // each level's factor is the square of the one below: rounding doubles 17 times, to 1e-11
     let re = Math.exp(d * shortest) * Math.cos(q * shortest);
@@ -210,6 +217,8 @@ export function linearMode(system: ModeSystem, omega: number, shortest: number):
     factors,
     bends,
     ranges,
+    speeds,
+    fastest,
     grows: decay.some((d) => d > 0),
     kernels: kernelsFor(reals, pairs + 1),
   };
