@@ -357,7 +357,6 @@ export class DimmerRun {
       mode.guardCount = this.watchTriac(mode.triacGuard);
       mode.watchedUnder = logic;
     }
-    this.walk.guardCount = mode.guardCount;
   }
 
   private crossed(): void {
@@ -373,7 +372,7 @@ export class DimmerRun {
   private settleInstant(): boolean {
     this.setGuards();
     for (let k = 0; k < INSTANT_BUDGET; k++) {
-      if (this.walk.recall(this.mode.watchedUnder) || this.walk.begin() < 0) return true;
+      if (this.walk.begin(this.mode.guardCount, this.mode.watchedUnder)) return true;
       this.crossed();
       this.setGuards();
     }

@@ -250,8 +250,11 @@ return {
   },
   near(z, walks, from, spares, outputRows, windowRows, guardCount) {
     ${each(real, (k) => `const s${k} = Math.abs(z[${k}] - walks[from + ${k}]);`)}
-    ${each(pair, ({ term, re, im }) => `const x${re} = z[${re}] - walks[from + ${re}], x${im} = z[${im}] - walks[from + ${im}];
-      const s${term} = Math.sqrt(x${re} * x${re} + x${im} * x${im});`)}
+    ${each(
+      pair,
+      ({ term, re, im }) => `const x${re} = z[${re}] - walks[from + ${re}], x${im} = z[${im}] - walks[from + ${im}];
+      const s${term} = Math.sqrt(x${re} * x${re} + x${im} * x${im});`,
+    )}
     for (let g = 0; g < guardCount; g++) {
       const row = windowRows[g];
       ${shares}

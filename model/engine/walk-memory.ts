@@ -9,6 +9,7 @@
  */
 import { numbers } from '../numbers.ts';
 import { REMEMBERED_PATHS, REMEMBERED_WALKS } from '../tolerances.ts';
+import type { GuardWatch } from './guard-watch.ts';
 import type { Mode } from './mode.ts';
 
 /** A walk's record. Times in s after its start: how far it was proven (-1: not at all), from when on its crossing is the only one, and
@@ -39,7 +40,7 @@ const IN_VAIN = 24;
 export class WalkMemory {
   /** the walks' records, each from `at(walk)` on: the fields below, its coordinates at its start from WALK_START on, then the factors to its
    * crossing, then per guard what it had to spare */
-  numbers = new Float64Array(0);
+  known = new Float64Array(0);
   /** where those factors and what the guards had to spare lie in a record */
   readonly factorsFrom: number;
   readonly sparesFrom: number;
@@ -170,19 +171,51 @@ export class WalkMemory {
   record(mode: Mode, logic: number, z: Float64Array): number {
     const walk = this.made++;
     const at = this.at(walk);
-    if (this.numbers.length < at + this.stride) {
-      const more = new Float64Array(Math.min(Math.max(32 * this.stride, 2 * this.numbers.length), REMEMBERED_WALKS * this.stride));
-      more.set(this.numbers);
-      this.numbers = more;
+    if (this.known.length < at + this.stride) {
+      const more = new Float64Array(Math.min(Math.max(32 * this.stride, 2 * this.known.length), REMEMBERED_WALKS * this.stride));
+      more.set(this.known);
+      this.known = more;
     }
-    this.numbers[at + WALK_PROVEN] = -1;
-    this.numbers[at + WALK_GUARD] = -1;
-    for (let k = 0, to = at + WALK_START; k < mode.linear.coordinates; k++, to++) this.numbers[to] = z[k] as number;
+    this.known[at + WALK_PROVEN] = -1;
+    this.known[at + WALK_GUARD] = -1;
+    for (let k = 0, to = at + WALK_START; k < mode.linear.coordinates; k++, to++) this.known[to] = z[k] as number;
     const slot = walk % REMEMBERED_WALKS;
     this.modes[slot] = mode;
     this.logics[slot] = logic;
     this.running.walks.push(walk);
     this.strayed = true;
     return walk;
+  }
+
+  /** the walk ends by crossing a guard so long after its start; from `from` on that is the only crossing */
+  leave(walk: number, guard: number, side: 0 | 1, from: number, at: number): void {
+    const { known } = this;
+    const record = this.at(walk);
+    known[record + WALK_GUARD] = guard;
+    known[record + WALK_SIDE] = side;
+    known[record + WALK_ALONE_FROM] = from;
+    known[record + WALK_CROSSING] = at;
+    known[record + WALK_FACTORED] = 0;
+  }
+
+  /** the walk is proven for so long, with what the guards had to spare by then */
+  prove(walk: number, { spares, guardCount, guards, entering }: GuardWatch, proven: number): void {
+    const { known } = this;
+    const record = this.at(walk);
+    const { linear } = this.modes[walk % REMEMBERED_WALKS] as Mode;
+    let growth = 1;
+    if (linear.grows) for (const d of linear.decay) if (d > 0) growth = Math.max(growth, Math.exp(d * proven));
+    for (let g = 0, to = record + this.sparesFrom; g < guardCount; g++, to++) known[to] = (spares[g] as number) / growth;
+    known[record + WALK_ENTERING] = entering < 0 ? -1 : (guards[entering] as number);
+    known[record + WALK_PROVEN] = proven;
+  }
+
+  /** where the walk's crossing was found when it was last taken again, and the factors to there */
+  noteCrossing(walk: number, at: number, factors: Float64Array): void {
+    const { known, factorsFrom, sparesFrom } = this;
+    const record = this.at(walk);
+    known[record + WALK_CROSSING] = at;
+    known[record + WALK_FACTORED] = 1;
+    for (let k = factorsFrom; k < sparesFrom; k++) known[record + k] = factors[k - factorsFrom] as number;
   }
 }
