@@ -3,7 +3,7 @@
  * arithmetic, back substitution (Golub & Van Loan, Matrix Computations, ch. 7). The result is a real basis: one column per real
  * eigenvalue and two per complex pair, so that the system is diagonal but for a rotation per pair.
  */
-import { copied, numbers } from '../numbers.ts';
+import { numbers } from '../numbers.ts';
 import { DEFECT_NUDGES, MODE_CONDITION } from '../tolerances.ts';
 
 export interface ModalBasis {
@@ -252,9 +252,13 @@ function invert(matrix: Float64Array, n: number): Float64Array {
   return inverse;
 }
 
-function norm(matrix: Float64Array): number {
+/** Frobenius norm of an n x n matrix */
+function norm(matrix: Float64Array, n: number): number {
   let sum = 0;
-  for (let k = 0; k < matrix.length; k++) sum += at(matrix, k) ** 2;
+  for (let k = 0; k < n * n; k++) {
+    const own = at(matrix, k);
+    sum += own * own;
+  }
   return Math.sqrt(sum);
 }
 
@@ -315,7 +319,7 @@ function decompose(matrix: Float64Array, n: number): ModalBasis {
   for (let k = 0; k < n; k++) qRe[k * n + k] = 1;
   toHessenberg(h, qRe, n);
   toTriangular(h, im, qRe, qIm, n);
-  const scale = norm(matrix);
+  const scale = norm(matrix, n);
   const realBelow = 1e-13 * scale;
   const reals: number[] = [];
   const pairs: number[] = [];
@@ -348,7 +352,7 @@ function decompose(matrix: Float64Array, n: number): ModalBasis {
     }
   });
   const inverse = invert(basis, n);
-  return { reals: reals.length, pairs: pairs.length, decay, rotation, basis, inverse, condition: (norm(basis) * norm(inverse)) / n };
+  return { reals: reals.length, pairs: pairs.length, decay, rotation, basis, inverse, condition: (norm(basis, n) * norm(inverse, n)) / n };
 }
 
 /** a fixed pattern of numbers between -1 and 1 without structure of its own, so that a nudge by it splits any defect */
@@ -366,11 +370,11 @@ export function modalBasis(matrix: Float64Array, n: number): ModalBasis {
   let best = decompose(matrix, n);
   for (const nudge of DEFECT_NUDGES) {
     if (isComplete(best, n) && best.condition < MODE_CONDITION) return best;
-    const nudged = copied(matrix);
+    const nudged = numbers(n * n);
     for (let r = 0; r < n; r++) {
       for (let c = 0; c < n; c++) {
         const weight = Math.sqrt(Math.abs(at(matrix, r * n + r) * at(matrix, c * n + c)));
-        nudged[r * n + c] = at(nudged, r * n + c) + nudge * weight * pattern(r, c);
+        nudged[r * n + c] = at(matrix, r * n + c) + nudge * weight * pattern(r, c);
       }
     }
     const apart = decompose(nudged, n);

@@ -41,12 +41,15 @@ export interface Kernels {
     rows: Int32Array,
     count: number,
   ) => void;
-  /** BEND and RANGE of every watched guard at z, by the level's bends and ranges from `b` on */
+  /** BEND and RANGE of every watched guard at z, for steps whose length squared is squares[level]; a term strays no further than `eighths` times
+   * that, or its whole range, and may grow by `growths` (from `g` on) */
   readonly bound: (
     z: Numbers,
-    bends: Numbers,
-    ranges: Numbers,
-    b: number,
+    eighths: Numbers,
+    growths: Numbers,
+    g: number,
+    squares: Numbers,
+    level: number,
     outputRows: Numbers,
     watched: Numbers,
     rows: Int32Array,
@@ -56,9 +59,11 @@ export interface Kernels {
    * first guard g that is outside its window by more than its slack, and then in side[0] whether below (0) or above (1). */
   readonly begin: (
     z: Numbers,
-    bends: Numbers,
-    ranges: Numbers,
-    b: number,
+    eighths: Numbers,
+    growths: Numbers,
+    g: number,
+    squares: Numbers,
+    level: number,
     outputRows: Numbers,
     windows: Numbers,
     windowRows: Int32Array,
@@ -148,7 +153,12 @@ function writtenOut(reals: number, pairs: number): string {
   const sizes =
     each(real, (k) => `const s${k} = Math.abs(z[${k}]);`) +
     each(pair, ({ term, re, im }) => `const s${term} = Math.sqrt(z[${re}] * z[${re}] + z[${im}] * z[${im}]);`);
-  const curvatures = each([...real, ...pair.map(({ term }) => term)], (t) => `const b${t} = bends[b + ${t}], r${t} = ranges[b + ${t}];`);
+  const curvatures = `const square = squares[level];${each(
+    [...real, ...pair.map(({ term }) => term)],
+    (t) => `
+    const x${t} = eighths[${t}], w${t} = growths[g + ${t}], slow${t} = x${t} * square <= 1;
+    const b${t} = slow${t} ? x${t} * w${t} : 0, r${t} = slow${t} ? 0 : ${t < reals ? '' : '2 * '}w${t};`,
+  )}`;
   const shares =
     each(real, (k) => `const h${k} = Math.abs(outputRows[row + ${k}]) * s${k};`) +
     each(pair, ({ term, row }) => `const h${term} = outputRows[row + ${row + 2}] * s${term};`);
@@ -198,7 +208,7 @@ return {
       )};
     }
   },
-  bound(z, bends, ranges, b, outputRows, watched, rows, count) {
+  bound(z, eighths, growths, g, squares, level, outputRows, watched, rows, count) {
     ${sizes}
     ${curvatures}
     for (let w = 0, at = 0; w < count; w++, at += ${WATCHED_STRIDE}) {
@@ -208,13 +218,13 @@ return {
       watched[at + ${RANGE}] = ${sum(terms.map((t) => `h${t} * r${t}`))};
     }
   },
-  begin(z, bends, ranges, b, outputRows, windows, windowRows, guardCount, all, watched, rows, guards, side, spares) {
+  begin(z, eighths, growths, g, squares, level, outputRows, windows, windowRows, guardCount, all, watched, rows, guards, side, spares) {
     ${Array.from({ length: coordinates }, (_, k) => `const z${k} = z[${k}];`).join(' ')}
     ${sizes}
     ${curvatures}
     let count = 0;
-    for (let g = 0, from = 0, at = 0; g < guardCount; g++, from += ${WINDOW_STRIDE}) {
-      const row = windowRows[g];
+    for (let guard = 0, from = 0, at = 0; guard < guardCount; guard++, from += ${WINDOW_STRIDE}) {
+      const row = windowRows[guard];
       const lower = windows[from + ${WINDOW_LOWER}];
       const upper = windows[from + ${WINDOW_UPPER}];
       const slack = windows[from + ${WINDOW_SLACK}];
@@ -225,18 +235,18 @@ return {
       )};
       if (y < lower - slack || y > upper + slack) {
         side[0] = y < lower ? 0 : 1;
-        return ~g;
+        return ~guard;
       }
       ${shares}
       const reach = ${sum(terms.map((t) => `h${t}`))};
       const spare = Math.min(rest - reach - lower, upper - rest - reach);
       if (!all && spare > 0) {
-        spares[g] = spare;
+        spares[guard] = spare;
         continue;
       }
-      spares[g] = Infinity;
+      spares[guard] = Infinity;
       rows[count] = row;
-      guards[count++] = g;
+      guards[count++] = guard;
       watched[at + ${BEFORE}] = y;
       watched[at + ${LOWER}] = lower;
       watched[at + ${UPPER}] = upper;

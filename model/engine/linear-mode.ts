@@ -4,15 +4,16 @@
  * where each modal coordinate only decays or rotates. The mains is carried as one more undamped pair (cos wt, sin wt), so every output
  * is one dot product with the coordinates plus a constant.
  *
- * Steps come from a ladder h = shortest * 2^level. For each level the mode holds the factor of every coordinate, and how far one
- * coordinate of unit size can stray from the chord over such a step: |lambda|^2 h^2 / 8 where that is small ("slow", a bound on the
- * curvature), or its whole range where it is not ("fast").
+ * Steps come from a ladder h = shortest * 2^level. For each level the mode holds the factor of every coordinate. Over such a step one of
+ * unit size can stray from the chord by |lambda|^2 h^2 / 8 where that is small ("slow", a bound on the curvature), or by its whole range
+ * where it is not ("fast").
  */
 import type { ModeSystem } from '../circuit/mode-system.ts';
 import { numbers } from '../numbers.ts';
 import { LADDER_LEVELS } from '../tolerances.ts';
 import { MOST_STATES, type ModalBasis, modalBasis } from './eigen.ts';
 import { type Kernels, kernelsFor } from './kernels.ts';
+import { productOf } from './matrix-product.ts';
 
 export const LEVELS = LADDER_LEVELS + 1;
 /** largest |lambda| h that still counts as slow: there |lambda|^2 h^2 / 8 is 1, the range of a decaying coordinate */
@@ -40,9 +41,10 @@ export interface LinearMode {
   readonly constantOutputs: Float64Array;
   /** levels x coordinates (a pair: re, im of its factor) */
   readonly factors: Float64Array;
-  /** levels x terms: curvature bound over 8 of a term of unit size where it is slow at that level, its whole range where it is fast */
-  readonly bends: Float64Array;
-  readonly ranges: Float64Array;
+  /** |lambda|^2 / 8 of each term: over a step h one of unit size strays from the chord by no more than that times h^2 */
+  readonly eighths: Float64Array;
+  /** levels x terms: by how much a term can have grown at the end of a step; NO_GROWTH where none does */
+  readonly growths: Float64Array;
   /** |lambda| of each term, and the largest, 1/s */
   readonly speeds: Float64Array;
   readonly fastest: number;
@@ -51,153 +53,163 @@ export interface LinearMode {
   readonly kernels: Kernels;
 }
 
-/** sum over k < n of a[from + k * stride] * b[fromB + k * strideB] */
-function dot(a: Float64Array, from: number, stride: number, b: Float64Array, fromB: number, strideB: number, n: number): number {
-  let sum = 0;
-  for (let k = 0, p = from, q = fromB; k < n; k++, p += stride, q += strideB) sum += (a[p] as number) * (b[q] as number);
-  return sum;
-}
-
-/** scratch of the mode that is being made: a column in modal coordinates, the mains' answer in phase and a quarter before */
-const b = new Float64Array(MOST_STATES);
-const zRe = new Float64Array(MOST_STATES);
-const zIm = new Float64Array(MOST_STATES);
-
-/** modal coordinates of a column of the system, into b */
-function takeInModes(system: ModeSystem, modal: ModalBasis, column: number): void {
-  const n = system.states;
-  for (let r = 0; r < n; r++) b[r] = dot(modal.inverse, r * n, 1, system.rows, column, system.columns, n);
-}
-
-/** states of modal coordinates, written from `to` on */
-function toStates(modal: ModalBasis, z: Float64Array, n: number, into: Float64Array, to: number): void {
-  for (let r = 0; r < n; r++) into[to + r] = dot(modal.basis, r * n, 1, z, 0, 1, n);
-}
+/** most constants: the triac's, the diac's, and one for each state at most */
+const MOST_CONSTANTS = MOST_STATES + 2;
+/** scratch of the mode that is being made: its matrix; the mains' and the constants' columns in modal coordinates; what the modal coordinates
+ * answer to the mains' cosine and sine and to the constants; what the states answer to each coordinate, to those two and to the constants;
+ * and the same of the outputs */
+const matrix = new Float64Array(MOST_STATES * MOST_STATES);
+const columnsInModes = new Float64Array(MOST_STATES * (1 + MOST_CONSTANTS));
+const modalAnswers = new Float64Array(MOST_STATES * (2 + MOST_CONSTANTS));
+const answers = new Float64Array(MOST_STATES * (MOST_STATES + 2 + MOST_CONSTANTS));
+let outputAnswers = new Float64Array(0);
 
 /**
- * Particular solution of the mains sine: (j omega - Lambda) Z = beta in real coordinates and 2 x 2 blocks; x = Im(X e^{j omega t}) =
- * Re X sin + Im X cos.
+ * Particular solution of the mains sine in modal coordinates: (j omega - Lambda) Z = beta in real coordinates and 2 x 2 blocks; x =
+ * Im(X e^{j omega t}) = Re X sin + Im X cos. Into the first two columns of the modal answers: cos, sin.
  */
-function driveAnswer(system: ModeSystem, modal: ModalBasis, omega: number): { driveCos: Float64Array; driveSin: Float64Array } {
-  const n = system.states;
-  takeInModes(system, modal, n);
+function answerDrive(modal: ModalBasis, omega: number, stride: number): void {
+  const width = stride + 1;
   for (let k = 0; k < modal.reals; k++) {
     const d = modal.decay[k] as number;
+    const own = columnsInModes[k * stride] as number;
     const square = d * d + omega * omega;
-    zRe[k] = (-d * (b[k] as number)) / square;
-    zIm[k] = (-omega * (b[k] as number)) / square;
+    modalAnswers[k * width] = (-omega * own) / square;
+    modalAnswers[k * width + 1] = (-d * own) / square;
   }
   for (let p = 0; p < modal.pairs; p++) {
     const k = modal.reals + 2 * p;
     const d = modal.decay[modal.reals + p] as number;
     const q = modal.rotation[modal.reals + p] as number;
-    const b1 = b[k] as number;
-    const b2 = b[k + 1] as number;
+    const b1 = columnsInModes[k * stride] as number;
+    const b2 = columnsInModes[(k + 1) * stride] as number;
     const detRe = d * d - omega * omega + q * q;
     const detIm = -2 * d * omega;
     const square = detRe * detRe + detIm * detIm;
     const firstRe = -d * b1 - q * b2;
     const secondRe = q * b1 - d * b2;
-    zRe[k] = (firstRe * detRe + omega * b1 * detIm) / square;
-    zIm[k] = (omega * b1 * detRe - firstRe * detIm) / square;
-    zRe[k + 1] = (secondRe * detRe + omega * b2 * detIm) / square;
-    zIm[k + 1] = (omega * b2 * detRe - secondRe * detIm) / square;
+    modalAnswers[k * width] = (omega * b1 * detRe - firstRe * detIm) / square;
+    modalAnswers[k * width + 1] = (firstRe * detRe + omega * b1 * detIm) / square;
+    modalAnswers[(k + 1) * width] = (omega * b2 * detRe - secondRe * detIm) / square;
+    modalAnswers[(k + 1) * width + 1] = (secondRe * detRe + omega * b2 * detIm) / square;
   }
-  const driveSin = numbers(n);
-  const driveCos = numbers(n);
-  toStates(modal, zRe, n, driveSin, 0);
-  toStates(modal, zIm, n, driveCos, 0);
-  return { driveCos, driveSin };
 }
 
-/** particular solutions of the constants, constants x states */
-function constantAnswers(system: ModeSystem, modal: ModalBasis): Float64Array {
-  const n = system.states;
-  const states = numbers(system.constants * n);
-  for (let k = 0; k < system.constants; k++) {
-    takeInModes(system, modal, n + 1 + k);
-    for (let r = 0; r < modal.reals; r++) b[r] = (b[r] as number) === 0 ? 0 : -(b[r] as number) / (modal.decay[r] as number);
+/** particular solutions of the constants in modal coordinates, into the other columns of the modal answers */
+function answerConstants(modal: ModalBasis, constants: number): void {
+  const stride = 1 + constants;
+  const width = 2 + constants;
+  for (let c = 0; c < constants; c++) {
+    for (let r = 0; r < modal.reals; r++) {
+      const own = columnsInModes[r * stride + 1 + c] as number;
+      modalAnswers[r * width + 2 + c] = own === 0 ? 0 : -own / (modal.decay[r] as number);
+    }
     for (let p = 0; p < modal.pairs; p++) {
       const r = modal.reals + 2 * p;
       const d = modal.decay[modal.reals + p] as number;
       const q = modal.rotation[modal.reals + p] as number;
-      const c1 = b[r] as number;
-      const c2 = b[r + 1] as number;
-      b[r] = -(d * c1 + q * c2) / (d * d + q * q);
-      b[r + 1] = -(d * c2 - q * c1) / (d * d + q * q);
+      const square = d * d + q * q;
+      const c1 = columnsInModes[r * stride + 1 + c] as number;
+      const c2 = columnsInModes[(r + 1) * stride + 1 + c] as number;
+      modalAnswers[r * width + 2 + c] = -(d * c1 + q * c2) / square;
+      modalAnswers[(r + 1) * width + 2 + c] = -(d * c2 - q * c1) / square;
     }
-    toStates(modal, b, n, states, k * n);
   }
-  return states;
+}
+
+/** a column of the states' answers */
+function answerOf(n: number, column: number, width: number): Float64Array {
+  const made = numbers(n);
+  for (let r = 0; r < n; r++) made[r] = answers[r * width + column] as number;
+  return made;
+}
+
+/** for modes in which nothing grows: the same at every level */
+export const NO_GROWTH = new Float64Array(MOST_STATES + 1).fill(1);
+
+function growthsOf(decay: Float64Array, shortest: number): Float64Array {
+  const made = numbers(LEVELS * decay.length);
+  for (let level = 0, at = 0; level < LEVELS; level++) {
+    for (const d of decay) made[at++] = d > 0 ? Math.exp(d * shortest * 2 ** level) : 1;
+  }
+  return made;
 }
 
 export function linearMode(system: ModeSystem, omega: number, shortest: number): LinearMode {
   const n = system.states;
-  const { columns, outputs, constants } = system;
-  const matrix = numbers(n * n);
-  for (let r = 0; r < n; r++) for (let c = 0; c < n; c++) matrix[r * n + c] = system.rows[r * columns + c] as number;
+  const { columns, outputs, constants, rows } = system;
+  for (let r = 0; r < n; r++) for (let c = 0; c < n; c++) matrix[r * n + c] = rows[r * columns + c] as number;
   const modal = modalBasis(matrix, n);
-  const { reals, pairs } = modal;
+  const { reals, pairs, basis } = modal;
   const terms = reals + pairs + 1;
   const coordinates = n + 2;
-  const decay = numbers(terms);
-  const rotation = numbers(terms);
-  decay.set(modal.decay);
-  rotation.set(modal.rotation);
-  rotation[terms - 1] = omega;
-  const { driveSin, driveCos } = driveAnswer(system, modal, omega);
-  const constantStates = constantAnswers(system, modal);
+
+  const product = productOf(n);
+  const width = coordinates + constants;
+  product(modal.inverse, 0, n, n, rows, n, columns, 1 + constants, columnsInModes, 0, 1 + constants);
+  answerDrive(modal, omega, 1 + constants);
+  answerConstants(modal, constants);
+  for (let r = 0; r < n; r++) for (let c = 0; c < n; c++) answers[r * width + c] = basis[r * n + c] as number;
+  product(basis, 0, n, n, modalAnswers, 0, 2 + constants, 2 + constants, answers, n, width);
+  if (outputAnswers.length < outputs * width) outputAnswers = new Float64Array(outputs * width);
+  product(rows, n * columns, columns, outputs, answers, 0, width, width, outputAnswers, 0, width);
+  const constantStates = numbers(constants * n);
+  for (let r = 0; r < n; r++) for (let k = 0; k < constants; k++) constantStates[k * n + r] = answers[r * width + coordinates + k] as number;
 
   const outputStride = reals + 3 * (pairs + 1);
   const outputRows = numbers(outputs * outputStride);
   const constantOutputs = numbers(constants * outputs);
-  for (let o = 0; o < outputs; o++) {
+  for (let o = 0, at = 0; o < outputs; o++) {
     const row = (n + o) * columns;
-    let at = o * outputStride;
-    for (let k = 0; k < reals; k++) outputRows[at++] = dot(system.rows, row, 1, modal.basis, k, n, n);
-    for (let p = 0; p <= pairs; p++) {
-      const k = reals + 2 * p;
-      const drive = p === pairs;
-      const re = drive ? dot(system.rows, row, 1, driveCos, 0, 1, n) : dot(system.rows, row, 1, modal.basis, k, n, n);
-      const im = drive
-        ? dot(system.rows, row, 1, driveSin, 0, 1, n) + (system.rows[row + n] as number)
-        : dot(system.rows, row, 1, modal.basis, k + 1, n, n);
+    const own = o * width;
+    // the mains and the constants reach an output directly too
+    outputAnswers[own + n + 1] = (outputAnswers[own + n + 1] as number) + (rows[row + n] as number);
+    for (let k = 0; k < reals; k++) outputRows[at++] = outputAnswers[own + k] as number;
+    for (let k = reals; k < coordinates; k += 2) {
+      const re = outputAnswers[own + k] as number;
+      const im = outputAnswers[own + k + 1] as number;
       outputRows[at++] = re;
       outputRows[at++] = im;
       outputRows[at++] = Math.sqrt(re * re + im * im);
     }
     for (let k = 0; k < constants; k++) {
-      const own = system.rows[row + n + 1 + k] as number;
-      constantOutputs[k * outputs + o] = dot(system.rows, row, 1, constantStates, k * n, 1, n) + own;
+      constantOutputs[k * outputs + o] = (outputAnswers[own + coordinates + k] as number) + (rows[row + n + 1 + k] as number);
     }
   }
 
+  const decay = numbers(terms);
+  const rotation = numbers(terms);
+  decay.set(modal.decay);
+  rotation.set(modal.rotation);
+  rotation[terms - 1] = omega;
   const factors = numbers(LEVELS * coordinates);
-  const bends = numbers(LEVELS * terms);
-  const ranges = numbers(LEVELS * terms);
   const speeds = numbers(terms);
+  const eighths = numbers(terms);
   let fastest = 0;
+  let grows = false;
   for (let t = 0; t < terms; t++) {
     const d = decay[t] as number;
     const q = rotation[t] as number;
-    const speed = Math.sqrt(d * d + q * q);
+    const square = d * d + q * q;
+    const speed = Math.sqrt(square);
     speeds[t] = speed;
+    eighths[t] = square / 8;
     if (speed > fastest) fastest = speed;
-    const k = t < reals ? t : reals + 2 * (t - reals);
+    if (d > 0) grows = true;
     // each level's factor is the square of the one below: rounding doubles 17 times, to 1e-11
-    let re = Math.exp(d * shortest) * Math.cos(q * shortest);
-    let im = Math.exp(d * shortest) * Math.sin(q * shortest);
-    let h = shortest;
-    for (let level = 0; level < LEVELS; level++) {
-      factors[level * coordinates + k] = re;
-      if (t >= reals) factors[level * coordinates + k + 1] = im;
-      const growth = d > 0 ? Math.exp(d * h) : 1;
-      if (speed * h <= SLOW_LIMIT) bends[level * terms + t] = (growth * speed * speed) / 8;
-      else ranges[level * terms + t] = q === 0 ? growth : 2 * growth;
-      const square = re * re - im * im;
+    const size = Math.exp(d * shortest);
+    if (t < reals) {
+      for (let level = 0, f = t, re = size; level < LEVELS; level++, f += coordinates, re *= re) factors[f] = re;
+      continue;
+    }
+    let re = size * Math.cos(q * shortest);
+    let im = size * Math.sin(q * shortest);
+    for (let level = 0, f = 2 * t - reals; level < LEVELS; level++, f += coordinates) {
+      factors[f] = re;
+      factors[f + 1] = im;
+      const next = re * re - im * im;
       im *= 2 * re;
-      re = square;
-      h *= 2;
+      re = next;
     }
   }
   return {
@@ -210,16 +222,16 @@ export function linearMode(system: ModeSystem, omega: number, shortest: number):
     rotation,
     outputRows,
     outputStride,
-    driveCos,
-    driveSin,
+    driveCos: answerOf(n, n, width),
+    driveSin: answerOf(n, n + 1, width),
     constantStates,
     constantOutputs,
     factors,
-    bends,
-    ranges,
+    eighths,
+    growths: grows ? growthsOf(decay, shortest) : NO_GROWTH,
     speeds,
     fastest,
-    grows: decay.some((d) => d > 0),
+    grows,
     kernels: kernelsFor(reals, pairs + 1),
   };
 }

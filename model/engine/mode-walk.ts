@@ -79,7 +79,7 @@ export class ModeWalk {
     this.z = numbers(states + 2);
     this.zNext = numbers(states + 2);
     this.zStart = numbers(states + 2);
-    this.watch = new GuardWatch(mostGuards);
+    this.watch = new GuardWatch(shortest, mostGuards);
     this.crossings = numbers(mostGuards);
     this.memory = new WalkMemory(states + 2, mostGuards);
   }

@@ -11,6 +11,7 @@ import type { ConfigurationMap, MappedConfiguration, MappedSystem } from './conf
 import { MOST_STATES } from './eigen.ts';
 import { WINDOW_LOWER, WINDOW_REST, WINDOW_SLACK, WINDOW_STRIDE, WINDOW_UPPER } from './kernels.ts';
 import { type LinearMode, linearMode } from './linear-mode.ts';
+import { productOf } from './matrix-product.ts';
 
 /** windows on outputs, one per guard: where the output's row begins, and a record of WINDOW_STRIDE numbers. The slack is how far outside
  * its window a guard may be before it counts as outside: rounding of the quantity, V or A */
@@ -87,12 +88,7 @@ function passageBetween(from: Mode, to: Mode): Passage {
     state[at + n + 2] = flip * (from.restState[r] as number) - (to.restState[r] as number);
   }
   const matrix = numbers(n * width);
-  for (let r = 0; r < n; r++) {
-    for (let k = 0; k < n; k++) {
-      const share = inverse[r * n + k] as number;
-      for (let c = 0; c < width; c++) matrix[r * width + c] = (matrix[r * width + c] as number) + share * (state[k * width + c] as number);
-    }
-  }
+  productOf(n)(inverse, 0, n, n, state, 0, width, width, matrix, 0, width);
   return { to, matrix };
 }
 
