@@ -227,20 +227,25 @@ export function openModeSystem(network: Network, dimmer: Dimmer, configuration: 
   return { states: n, outputs, constants, columns, rows, hasPort };
 }
 
-/** folds the timing resistor (Ohm; ignored without a port) into the open system */
+/** scratch: the rows of the system that was closed last */
+let closedRows = new Float64Array(0);
+
+/** Folds the timing resistor (Ohm; ignored without a port) into the open system. The rows are good until the next one is closed. */
 export function closeModeSystem(open: OpenModeSystem, timingResistance: number): ModeSystem {
   const { states, outputs, constants } = open;
+  if (!open.hasPort) return open;
   const columns = states + 1 + constants;
-  const rows = numbers((states + outputs) * columns);
+  const count = states + outputs;
+  if (closedRows.length < count * columns) closedRows = new Float64Array(count * columns);
+  const rows = closedRows;
+  const from = open.rows;
   const portColumn = open.columns - 1;
-  const portRow = (states + outputs) * open.columns;
-  const divisor = open.hasPort ? timingResistance - (open.rows[portRow + portColumn] as number) : 1;
-  for (let r = 0; r < states + outputs; r++) {
-    const share = open.hasPort ? (open.rows[r * open.columns + portColumn] as number) / divisor : 0;
-    for (let c = 0; c < columns; c++) {
-      const own = open.rows[r * open.columns + c] as number;
-      rows[r * columns + c] = open.hasPort ? own + share * (open.rows[portRow + c] as number) : own;
-    }
+  const portRow = count * open.columns;
+  const divisor = timingResistance - (from[portRow + portColumn] as number);
+  for (let r = 0, at = 0; r < count; r++) {
+    const own = r * open.columns;
+    const share = (from[own + portColumn] as number) / divisor;
+    for (let c = 0; c < columns; c++, at++) rows[at] = (from[own + c] as number) + share * (from[portRow + c] as number);
   }
   return { states, outputs, constants, columns, rows };
 }

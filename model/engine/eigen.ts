@@ -37,6 +37,7 @@ const yRe = new Float64Array(MOST_STATES);
 const yIm = new Float64Array(MOST_STATES);
 const vRe = new Float64Array(MOST_STATES);
 const vIm = new Float64Array(MOST_STATES);
+const order = new Int32Array(MOST_STATES);
 
 function at(a: Float64Array, k: number): number {
   return a[k] as number;
@@ -83,8 +84,11 @@ function toHessenberg(h: Float64Array, q: Float64Array, n: number): void {
   }
 }
 
-/** the eigenvalue of the trailing 2 x 2 block that lies nearer its last diagonal entry: [re, im] */
-function wilkinsonShift(re: Float64Array, im: Float64Array, n: number, hi: number): [number, number] {
+/** shift of the QR step to come: re, im */
+const shift = new Float64Array(2);
+
+/** the eigenvalue of the trailing 2 x 2 block that lies nearer its last diagonal entry, into `shift` */
+function wilkinsonShift(re: Float64Array, im: Float64Array, n: number, hi: number): void {
   const a = (hi - 1) * n + hi - 1;
   const b = a + 1;
   const c = hi * n + hi - 1;
@@ -98,12 +102,17 @@ function wilkinsonShift(re: Float64Array, im: Float64Array, n: number, hi: numbe
   const modulus = size(sqRe, sqIm);
   let rootRe = Math.sqrt((modulus + Math.abs(sqRe)) / 2);
   let rootIm = rootRe === 0 ? 0 : sqIm / (2 * rootRe);
-  if (sqRe < 0) [rootRe, rootIm] = [Math.abs(rootIm), sqIm < 0 ? -rootRe : rootRe];
+  if (sqRe < 0) {
+    const turned = sqIm < 0 ? -rootRe : rootRe;
+    rootRe = Math.abs(rootIm);
+    rootIm = turned;
+  }
   if (halfRe * rootRe + halfIm * rootIm > 0) {
     rootRe = -rootRe;
     rootIm = -rootIm;
   }
-  return [at(re, d) + halfRe + rootRe, at(im, d) + halfIm + rootIm];
+  shift[0] = at(re, d) + halfRe + rootRe;
+  shift[1] = at(im, d) + halfIm + rootIm;
 }
 
 /** the rotations of the QR step that is being taken, per column: cosine, complex sine */
@@ -129,7 +138,7 @@ function rotateColumns(mRe: Float64Array, mIm: Float64Array, n: number, k: numbe
   }
 }
 
-/** one explicit QR step on rows lo..hi with a shift, by complex Givens rotations, accumulated in (qRe, qIm) */
+/** one explicit QR step on rows lo..hi with the shift, by complex Givens rotations, accumulated in (qRe, qIm) */
 function qrStep(
   re: Float64Array,
   im: Float64Array,
@@ -138,11 +147,12 @@ function qrStep(
   n: number,
   lo: number,
   hi: number,
-  shift: [number, number],
 ): void {
+  const shiftRe = at(shift, 0);
+  const shiftIm = at(shift, 1);
   for (let k = 0; k < n; k++) {
-    re[k * n + k] = at(re, k * n + k) - shift[0];
-    im[k * n + k] = at(im, k * n + k) - shift[1];
+    re[k * n + k] = at(re, k * n + k) - shiftRe;
+    im[k * n + k] = at(im, k * n + k) - shiftIm;
   }
   for (let k = lo; k < hi; k++) {
     const p = k * n + k;
@@ -183,8 +193,8 @@ function qrStep(
     rotateColumns(qRe, qIm, n, k, n);
   }
   for (let k = 0; k < n; k++) {
-    re[k * n + k] = at(re, k * n + k) + shift[0];
-    im[k * n + k] = at(im, k * n + k) + shift[1];
+    re[k * n + k] = at(re, k * n + k) + shiftRe;
+    im[k * n + k] = at(im, k * n + k) + shiftIm;
   }
 }
 
@@ -212,9 +222,12 @@ function toTriangular(re: Float64Array, im: Float64Array, qRe: Float64Array, qIm
     }
     tries++;
     if (tries > 100) throw new Error('QR iteration did not converge');
-    const shift: [number, number] =
-      tries % 11 === 10 ? [at(re, hi * n + hi) + Math.abs(at(re, hi * n + hi - 1)), at(im, hi * n + hi)] : wilkinsonShift(re, im, n, hi);
-    qrStep(re, im, qRe, qIm, n, lo, hi, shift);
+    wilkinsonShift(re, im, n, hi);
+    if (tries % 11 === 10) {
+      shift[0] = at(re, hi * n + hi) + Math.abs(at(re, hi * n + hi - 1));
+      shift[1] = at(im, hi * n + hi);
+    }
+    qrStep(re, im, qRe, qIm, n, lo, hi);
   }
 }
 
@@ -276,35 +289,49 @@ function eigenvector(re: Float64Array, im: Float64Array, n: number, k: number, s
     }
     let dRe = at(re, k * n + k) - at(re, i * n + i);
     let dIm = at(im, k * n + k) - at(im, i * n + i);
-    if (size(dRe, dIm) < smallest) [dRe, dIm] = [smallest, 0];
-    const square = dRe * dRe + dIm * dIm;
+    let square = dRe * dRe + dIm * dIm;
+    if (square < smallest * smallest) {
+      dRe = smallest;
+      dIm = 0;
+      square = smallest * smallest;
+    }
     yRe[i] = (sRe * dRe + sIm * dIm) / square;
     yIm[i] = (sIm * dRe - sRe * dIm) / square;
   }
   let largest = 0;
   let largestAt = 0;
   for (let r = 0; r < n; r++) {
-    vRe[r] = 0;
-    vIm[r] = 0;
-    for (let j = 0; j <= k; j++) {
-      const t = r * n + j;
-      vRe[r] = at(vRe, r) + at(qRe, t) * at(yRe, j) - at(qIm, t) * at(yIm, j);
-      vIm[r] = at(vIm, r) + at(qRe, t) * at(yIm, j) + at(qIm, t) * at(yRe, j);
+    let sRe = 0;
+    let sIm = 0;
+    for (let j = 0, t = r * n; j <= k; j++, t++) {
+      sRe += at(qRe, t) * at(yRe, j) - at(qIm, t) * at(yIm, j);
+      sIm += at(qRe, t) * at(yIm, j) + at(qIm, t) * at(yRe, j);
     }
-    const modulus = size(at(vRe, r), at(vIm, r));
-    if (modulus > largest) {
-      largest = modulus;
+    vRe[r] = sRe;
+    vIm[r] = sIm;
+    const square = sRe * sRe + sIm * sIm;
+    if (square > largest) {
+      largest = square;
       largestAt = r;
     }
   }
-  const pRe = at(vRe, largestAt) / (largest * largest);
-  const pIm = -at(vIm, largestAt) / (largest * largest);
+  const pRe = at(vRe, largestAt) / largest;
+  const pIm = -at(vIm, largestAt) / largest;
   for (let r = 0; r < n; r++) {
     const a = at(vRe, r);
     const b = at(vIm, r);
     vRe[r] = a * pRe - b * pIm;
     vIm[r] = a * pIm + b * pRe;
   }
+}
+
+/** whether one of the pairs has about the same real part as the k-th eigenvalue */
+function hasPartner(re: Float64Array, n: number, k: number, reals: number, pairs: number, within: number): boolean {
+  for (let p = reals; p < reals + pairs; p++) {
+    const partner = order[p] as number;
+    if (Math.abs(at(re, partner * n + partner) - at(re, k * n + k)) < within) return true;
+  }
+  return false;
 }
 
 function decompose(matrix: Float64Array, n: number): ModalBasis {
@@ -321,38 +348,39 @@ function decompose(matrix: Float64Array, n: number): ModalBasis {
   toTriangular(h, im, qRe, qIm, n);
   const scale = norm(matrix, n);
   const realBelow = 1e-13 * scale;
-  const reals: number[] = [];
-  const pairs: number[] = [];
-  for (let k = 0; k < n; k++) {
-    const imag = at(im, k * n + k);
-    if (Math.abs(imag) <= realBelow) reals.push(k);
-    else if (imag > 0) pairs.push(k);
+  // the reals' places on the diagonal, then the pairs'
+  let reals = 0;
+  let pairs = 0;
+  for (let k = 0; k < n; k++) if (Math.abs(at(im, k * n + k)) <= realBelow) order[reals++] = k;
+  for (let k = 0; k < n; k++) if (at(im, k * n + k) > realBelow) order[reals + pairs++] = k;
+  // a pair may straddle the threshold by rounding: what is left without its partner counts as real
+  for (let k = 0; reals + 2 * pairs < n && k < n; k++) {
+    if (at(im, k * n + k) >= -realBelow || hasPartner(h, n, k, reals, pairs, 1e-6 * scale)) continue;
+    order.copyWithin(reals + 1, reals, reals + pairs);
+    order[reals++] = k;
   }
-  // a pair may straddle the threshold by rounding: complete the count from the nearest leftovers
-  for (let k = 0; reals.length + 2 * pairs.length < n && k < n; k++) {
-    if (!reals.includes(k) && !pairs.includes(k) && at(im, k * n + k) < 0) {
-      const partner = pairs.some((p) => Math.abs(at(h, p * n + p) - at(h, k * n + k)) < 1e-6 * scale);
-      if (!partner) reals.push(k);
-    }
-  }
-  const count = reals.length + pairs.length;
+  const count = reals + pairs;
   const decay = numbers(count);
   const rotation = numbers(count);
   const basis = numbers(n * n);
   const smallest = 1e-16 * scale || 1e-300;
-  [...reals, ...pairs].forEach((k, mode) => {
+  for (let mode = 0; mode < count; mode++) {
+    const k = order[mode] as number;
     eigenvector(h, im, n, k, smallest);
     decay[mode] = at(h, k * n + k);
-    const isPair = mode >= reals.length;
-    rotation[mode] = isPair ? at(im, k * n + k) : 0;
-    const column = isPair ? reals.length + 2 * (mode - reals.length) : mode;
-    for (let r = 0; r < n; r++) {
-      basis[r * n + column] = isPair ? 2 * at(vRe, r) : at(vRe, r);
-      if (isPair) basis[r * n + column + 1] = -2 * at(vIm, r);
+    if (mode < reals) {
+      for (let r = 0; r < n; r++) basis[r * n + mode] = at(vRe, r);
+      continue;
     }
-  });
+    rotation[mode] = at(im, k * n + k);
+    const column = 2 * mode - reals;
+    for (let r = 0; r < n; r++) {
+      basis[r * n + column] = 2 * at(vRe, r);
+      if (column + 1 < n) basis[r * n + column + 1] = -2 * at(vIm, r);
+    }
+  }
   const inverse = invert(basis, n);
-  return { reals: reals.length, pairs: pairs.length, decay, rotation, basis, inverse, condition: (norm(basis, n) * norm(inverse, n)) / n };
+  return { reals, pairs, decay, rotation, basis, inverse, condition: (norm(basis, n) * norm(inverse, n)) / n };
 }
 
 /** a fixed pattern of numbers between -1 and 1 without structure of its own, so that a nudge by it splits any defect */
