@@ -139,15 +139,7 @@ function rotateColumns(mRe: Float64Array, mIm: Float64Array, n: number, k: numbe
 }
 
 /** one explicit QR step on rows lo..hi with the shift, by complex Givens rotations, accumulated in (qRe, qIm) */
-function qrStep(
-  re: Float64Array,
-  im: Float64Array,
-  qRe: Float64Array,
-  qIm: Float64Array,
-  n: number,
-  lo: number,
-  hi: number,
-): void {
+function qrStep(re: Float64Array, im: Float64Array, qRe: Float64Array, qIm: Float64Array, n: number, lo: number, hi: number): void {
   const shiftRe = at(shift, 0);
   const shiftIm = at(shift, 1);
   for (let k = 0; k < n; k++) {

@@ -16,6 +16,8 @@ import { type Kernels, kernelsFor } from './kernels.ts';
 import { productOf } from './matrix-product.ts';
 
 export const LEVELS = LADDER_LEVELS + 1;
+/** levels whose factors are got from one another */
+const SQUARED = 9;
 /** largest |lambda| h that still counts as slow: there |lambda|^2 h^2 / 8 is 1, the range of a decaying coordinate */
 export const SLOW_LIMIT = Math.sqrt(8);
 
@@ -154,7 +156,8 @@ export function linearMode(system: ModeSystem, omega: number, shortest: number):
   if (outputAnswers.length < outputs * width) outputAnswers = new Float64Array(outputs * width);
   product(rows, n * columns, columns, outputs, answers, 0, width, width, outputAnswers, 0, width);
   const constantStates = numbers(constants * n);
-  for (let r = 0; r < n; r++) for (let k = 0; k < constants; k++) constantStates[k * n + r] = answers[r * width + coordinates + k] as number;
+  for (let r = 0; r < n; r++)
+    for (let k = 0; k < constants; k++) constantStates[k * n + r] = answers[r * width + coordinates + k] as number;
 
   const outputStride = reals + 3 * (pairs + 1);
   const outputRows = numbers(outputs * outputStride);
@@ -196,20 +199,24 @@ export function linearMode(system: ModeSystem, omega: number, shortest: number):
     eighths[t] = square / 8;
     if (speed > fastest) fastest = speed;
     if (d > 0) grows = true;
-    // each level's factor is the square of the one below: rounding doubles 17 times, to 1e-11
-    const size = Math.exp(d * shortest);
-    if (t < reals) {
-      for (let level = 0, f = t, re = size; level < LEVELS; level++, f += coordinates, re *= re) factors[f] = re;
-      continue;
-    }
-    let re = size * Math.cos(q * shortest);
-    let im = size * Math.sin(q * shortest);
-    for (let level = 0, f = 2 * t - reals; level < LEVELS; level++, f += coordinates) {
-      factors[f] = re;
-      factors[f + 1] = im;
-      const next = re * re - im * im;
-      im *= 2 * re;
-      re = next;
+    // each level's factor is the square of the one below, but for one in the middle: rounding doubles from level to level, to 1e-13
+    for (let from = 0; from < LEVELS; from += SQUARED) {
+      const h = shortest * 2 ** from;
+      const to = Math.min(from + SQUARED, LEVELS);
+      const size = Math.exp(d * h);
+      if (t < reals) {
+        for (let level = from, f = from * coordinates + t, re = size; level < to; level++, f += coordinates, re *= re) factors[f] = re;
+        continue;
+      }
+      let re = size * Math.cos(q * h);
+      let im = size * Math.sin(q * h);
+      for (let level = from, f = from * coordinates + 2 * t - reals; level < to; level++, f += coordinates) {
+        factors[f] = re;
+        factors[f + 1] = im;
+        const next = re * re - im * im;
+        im *= 2 * re;
+        re = next;
+      }
     }
   }
   return {

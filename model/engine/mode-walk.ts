@@ -42,7 +42,9 @@ export type WalkOutcome = 'reached' | 'crossed' | 'out-of-steps';
 
 /** tries at a remembered crossing before it is located from nothing */
 const RETRACE_TRIES = 8;
-const RETRACE_ROOT_SHARE = ROOT_SHARE / 100;
+/** share of what is near enough within which a remembered crossing is taken as it is: elsewhere one step of Newton's makes it as exact as one
+ * that is located from nothing, for unstable parts of a lamp's curve multiply what is left */
+const AS_KNOWN_SHARE = 1e-4;
 
 /** how often 4 goes into a number: how many levels a step may be longer or shorter by; 0 where the number is below 4, or not one */
 function powersOfFour(x: number): number {
@@ -229,7 +231,7 @@ export class ModeWalk {
     const side = known[record + WALK_SIDE] === 0 ? 0 : 1;
     const bound = windows.records[window + (side === 0 ? WINDOW_LOWER : WINDOW_UPPER)] as number;
     const offset = (windows.records[window + WINDOW_REST] as number) - bound;
-    const enough = RETRACE_ROOT_SHARE * (windows.records[window + WINDOW_SLACK] as number);
+    const enough = ROOT_SHARE * (windows.records[window + WINDOW_SLACK] as number);
     const factors = record + memory.factorsFrom;
     const near = NUDGE * (proven - from);
     let at = known[record + WALK_CROSSING] as number;
@@ -239,7 +241,7 @@ export class ModeWalk {
     else kernels.probe(slopes, moved, parts, decay, rotation, at);
     for (let k = 0; k < RETRACE_TRIES; k++) {
       const f = (slopes[0] as number) + offset;
-      if (Math.abs(f) <= enough) {
+      if (Math.abs(f) <= (k === 0 ? AS_KNOWN_SHARE * enough : enough)) {
         // the next one will cross about here
         if (!asKnown) memory.noteCrossing(this.followed, at, moved);
         memory.retraced(this.followed);
