@@ -16,26 +16,26 @@ export const slopes = new Float64Array(2);
 /** factors from the step's start to the crossing that was located last */
 export const moved = new Float64Array(MOST_COORDINATES);
 
-/** what is asked, filled in before `locateCrossing`: numbers as arguments would each be put on the heap */
-export const asked = {
-  /** the output's value at the step's ends, less its bound, positive inside the window */
-  before: 0,
-  after: 0,
-  /** the output's constant part less the bound; 1 where the window is above the bound, -1 where it is below */
-  offset: 0,
-  inside: 1,
-  /** how near the bound is near enough */
-  enough: 0,
-  /** length of the step, s */
-  span: 0,
-};
+/** What is asked, filled in before `locateCrossing` (numbers as arguments would each be put on the heap): the output's value at the step's start
+ * and end less its bound, positive inside the window; the output's constant part less the bound; 1 where the window is above the bound, -1
+ * where it is below; how near the bound is near enough; the length of the step, s. */
+export const asked = new Float64Array(6);
+export const START = 0;
+export const END = 1;
+export const OFFSET = 2;
+export const INSIDE = 3;
+export const ENOUGH = 4;
+export const SPAN = 5;
 
-/** time (0, span] after the coordinates z at which the output with this row passes the bound, having been inside at z */
-export function locateCrossing(linear: LinearMode, z: Float64Array, row: number, level: number): number {
+/** time (0, span] after the coordinates z at which the output with this row passes the bound, having been inside at z: into found[k] */
+export function locateCrossing(linear: LinearMode, z: Float64Array, row: number, level: number, found: Float64Array, k: number): void {
   const { kernels, coordinates, decay, rotation, factors, outputRows } = linear;
-  const { offset, inside, enough, span } = asked;
-  let f0 = asked.before;
-  let f1 = asked.after;
+  const offset = asked[OFFSET] as number;
+  const inside = asked[INSIDE] as number;
+  const enough = asked[ENOUGH] as number;
+  const span = asked[SPAN] as number;
+  let f0 = asked[START] as number;
+  let f1 = asked[END] as number;
   kernels.takeApart(parts, slopes, z, decay, rotation, outputRows, row);
   const once = inside * span;
   const twice = once * span;
@@ -52,13 +52,16 @@ export function locateCrossing(linear: LinearMode, z: Float64Array, row: number,
   // where the factors in `moved` belong
   let probed = Number.POSITIVE_INFINITY;
   const near = NUDGE * span;
-  for (let k = 0; k < 60; k++) {
-    if (!(at > lo && at < hi)) at = k < 6 ? lo + ((hi - lo) * f0) / (f0 - f1) : (lo + hi) / 2;
+  for (let tries = 0; tries < 60; tries++) {
+    if (!(at > lo && at < hi)) at = tries < 6 ? lo + ((hi - lo) * f0) / (f0 - f1) : (lo + hi) / 2;
     if (Math.abs(at - probed) < near) kernels.nudge(slopes, moved, parts, decay, rotation, at - probed);
     else kernels.probe(slopes, moved, parts, decay, rotation, at);
     probed = at;
     const f = ((slopes[0] as number) + offset) * inside;
-    if (Math.abs(f) <= enough) return at;
+    if (Math.abs(f) <= enough) {
+      found[k] = at;
+      return;
+    }
     if (f > 0) {
       lo = at;
       f0 = f;
@@ -67,8 +70,8 @@ export function locateCrossing(linear: LinearMode, z: Float64Array, row: number,
       f1 = f;
     }
     if (hi - lo <= EVENT_TIME) break;
-    at = k < 12 ? at - f / ((slopes[1] as number) * inside) : (lo + hi) / 2;
+    at = tries < 12 ? at - f / ((slopes[1] as number) * inside) : (lo + hi) / 2;
   }
   kernels.factorsAfter(moved, decay, rotation, hi);
-  return hi;
+  found[k] = hi;
 }

@@ -11,11 +11,14 @@
  */
 import { numbers } from '../numbers.ts';
 import { AFTER, BEFORE, BEND, LOWER, RANGE, SLACK, SPARE, UPPER, WATCHED_STRIDE } from './kernels.ts';
-import { LEVELS, SLOW_LIMIT } from './linear-mode.ts';
+import { SLOW_LIMIT, takeStrays } from './linear-mode.ts';
 import type { Mode } from './mode.ts';
 
 /** reserve of a step that nothing bounds: more than the ladder is long */
 export const MOST_RESERVE = 1e9;
+
+/** exponent below which a fast term has no slope left, however long the step */
+const GONE = -40;
 
 /** scratch: the side on which a guard is outside */
 const outside = new Float64Array(1);
@@ -37,25 +40,30 @@ export class GuardWatch {
   readonly suspects: Int32Array;
   suspectCount = 0;
   reserve = 0;
+  /** s after the step's start: when each suspect leaves its window. Filled in by the caller */
+  readonly crossings: Float64Array;
   /** what each guard has to spare since the walk began, V or A: kept only while `sparing` */
   readonly spares: Float64Array;
   sparing = false;
   /** guard on the watch that began the walk on its bound and moved in: -1 for none. Its slope at the start is part of what it has to spare */
   entering = -1;
-  /** s since the walk began */
+  /** s since the walk began, and length of the step that is tried: set by the caller (a number as an argument would be put on the heap) */
   since = 0;
+  tried = 0;
+  /** of a walk that ends by a crossing, s after its start: how far it is proven, from when on the crossing is the only one, and the crossing */
+  proven = 0;
+  aloneFrom = 0;
+  crossing = 0;
   private mode!: Mode;
-  /** of each level's step, its length squared */
-  private readonly squares: Float64Array;
-  private tried = 0;
+  /** |slope| times the step that a difference of unit size at the walk's start can have in the step that was certified last, or later */
+  private steepest = 0;
 
-  /** the ladder's shortest step, s; at most how many guards the circuit's modes have */
-  constructor(shortest: number, mostGuards: number) {
-    this.squares = Float64Array.from({ length: LEVELS }, (_, level) => (shortest * 2 ** level) ** 2);
+  constructor(mostGuards: number) {
     this.records = numbers(mostGuards * WATCHED_STRIDE);
     this.rows = new Int32Array(mostGuards);
     this.guards = new Int32Array(mostGuards);
     this.suspects = new Int32Array(mostGuards);
+    this.crossings = numbers(mostGuards);
     this.spares = numbers(mostGuards);
   }
 
@@ -64,13 +72,12 @@ export class GuardWatch {
   begin(mode: Mode, z: Float64Array, level: number): boolean {
     const { linear, windows } = mode;
     this.mode = mode;
+    takeStrays(linear, level);
     const count = linear.kernels.begin(
       z,
-      linear.eighths,
-      linear.growths,
-      linear.grows ? level * linear.terms : 0,
-      this.squares,
-      level,
+      linear.bends,
+      linear.ranges,
+      level * linear.terms,
       linear.outputRows,
       windows.records,
       windows.rows,
@@ -95,16 +102,15 @@ export class GuardWatch {
 
   /** bounds of every guard at this moment, for steps of this level */
   takeBounds(z: Float64Array, level: number): void {
-    const { kernels, eighths, growths, grows, terms, outputRows } = this.mode.linear;
-    kernels.bound(z, eighths, growths, grows ? level * terms : 0, this.squares, level, outputRows, this.records, this.rows, this.count);
+    const { linear } = this.mode;
+    takeStrays(linear, level);
+    linear.kernels.bound(z, linear.bends, linear.ranges, level * linear.terms, linear.outputRows, this.records, this.rows, this.count);
   }
 
-  /** The certificate for the step h whose ends are in the records: false where some guard may leave its window and come back. */
-  certify(h: number): boolean {
-    const { records, count, suspects, sparing } = this;
-    const square = h * h;
-    this.tried = h;
-    if (this.since === 0) this.entering = -1;
+  /** The certificate for the step that is tried, whose ends are in the records: false where some guard may leave its window and come back. */
+  certify(): boolean {
+    const { records, count, suspects, tried } = this;
+    const square = tried * tried;
     let certain = true;
     let suspectCount = 0;
     let reserve = MOST_RESERVE;
@@ -134,20 +140,18 @@ export class GuardWatch {
       const high = d <= 0 && before >= upper - slack ? upper + slack : upper;
       if (Math.abs(d) >= 4 * stray) {
         if (least - fast >= low && most + fast <= high) {
-          if (room > slack) records[at + SPARE] = room;
-          else if (sparing) this.spareOnBound(w, Math.min(least - fast - low, high - most - fast));
+          records[at + SPARE] = room;
           continue;
         }
         if (after < lower || after > upper) {
           suspects[suspectCount++] = w;
-          if (sparing) this.spareLeaving(w);
           if (fast <= slack) continue;
         }
       } else {
         const middle = 0.5 * (before + after);
         const bulge = stray * (1 + bySlope * bySlope) + fast;
         if (middle - bulge >= low && middle + bulge <= high) {
-          records[at + SPARE] = Math.min(middle - bulge - low, high - middle - bulge) + (low < lower || high > upper ? slack : 0);
+          records[at + SPARE] = Math.min(middle - bulge - lower, upper - middle - bulge);
           continue;
         }
         if (after < lower || after > upper) suspects[suspectCount++] = w;
@@ -161,68 +165,84 @@ export class GuardWatch {
 
   /** takes the step that was just certified: its end is the next one's beginning */
   accept(): void {
-    const { records, count, spares, guards, sparing } = this;
+    const { records, count } = this;
+    if (this.sparing) {
+      if (this.since === 0) this.spareOnBound();
+      this.takeSpares();
+    }
+    for (let w = 0, at = 0; w < count; w++, at += WATCHED_STRIDE) records[at + BEFORE] = records[at + AFTER] as number;
+    this.since += this.tried;
+  }
+
+  /** what the guards have to spare over the step that was just certified, into `spares` where that is less than so far */
+  private takeSpares(): void {
+    const { records, count, spares, guards } = this;
     for (let w = 0, at = 0; w < count; w++, at += WATCHED_STRIDE) {
-      records[at + BEFORE] = records[at + AFTER] as number;
-      if (!sparing) continue;
       const g = guards[w] as number;
       const spare = records[at + SPARE] as number;
       if (spare < (spares[g] as number)) spares[g] = spare;
     }
-    this.since += this.tried;
   }
 
-  /** Of the step that was just certified another guard is crossed first, `ahead` s before this one leaves its window: by its slope that is
-   * so much to spare. */
-  spareAhead(w: number, ahead: number): void {
-    const at = w * WATCHED_STRIDE;
-    const spare = (ahead * this.steep(at)) / this.tried - 2 * (this.records[at + RANGE] as number);
-    if (spare < (this.records[at + SPARE] as number)) this.records[at + SPARE] = spare;
+  /** Guards that begin the walk on their bound and move in. Such a one may be a hair outside; and it does not come back while its slope holds.
+   * One at most is known by its slope, and must be looked at again by whoever relies on it. */
+  private spareOnBound(): void {
+    const { records, count } = this;
+    for (let w = 0, at = 0; w < count; w++, at += WATCHED_STRIDE) {
+      const spare = records[at + SPARE] as number;
+      const slack = records[at + SLACK] as number;
+      if (spare > slack) continue;
+      const plain = spare + 2 * slack;
+      records[at + SPARE] = plain;
+      if (this.entering !== -1 || (records[at + RANGE] as number) > 0) continue;
+      const before = records[at + BEFORE] as number;
+      const after = records[at + AFTER] as number;
+      const toFar = after > before ? (records[at + UPPER] as number) - after : after - (records[at + LOWER] as number);
+      this.takeSteepest();
+      const steep = Math.abs(after - before) - 4 * (records[at + BEND] as number) * this.tried * this.tried;
+      const bySlope = Math.min(steep / this.steepest, toFar);
+      if (bySlope <= plain) continue;
+      this.entering = w;
+      records[at + SPARE] = bySlope;
+    }
   }
 
-  /** a guard that begins a step on its bound and stays inside its window to the step's end: as it is, it has `left` and another slack */
-  private spareOnBound(w: number, left: number): void {
-    const { records } = this;
-    const at = w * WATCHED_STRIDE;
-    const after = records[at + AFTER] as number;
-    const rises = after > (records[at + BEFORE] as number);
-    const toFar = rises ? (records[at + UPPER] as number) - after : after - (records[at + LOWER] as number);
-    records[at + SPARE] = Math.max(left + (records[at + SLACK] as number), this.entered(w) ? Math.min(this.slopeSpare(at), toFar) : 0);
+  /**
+   * Ends the walk by a crossing inside the step that was just certified: the suspects' are in `crossings`, that of the `first`th is the first.
+   * All of them are monotone in it. The one that is crossed must come from inside and stay monotone; the others are inside up to half way
+   * between, which their slope tells, and so far the walk is proven.
+   */
+  cross(first: number): void {
+    const { records, crossings, suspects, suspectCount, since, tried } = this;
+    if (since === 0) this.spareOnBound();
+    const at = crossings[first] as number;
+    let until = tried;
+    for (let k = 0; k < suspectCount; k++) if (k !== first) until = Math.min(until, (at + (crossings[k] as number)) / 2);
+    this.takeSteepest();
+    for (let k = 0; k < suspectCount; k++) {
+      const w = suspects[k] as number;
+      const record = w * WATCHED_STRIDE;
+      const before = records[record + BEFORE] as number;
+      const fast = records[record + RANGE] as number;
+      const slack = records[record + SLACK] as number;
+      const steep = Math.abs((records[record + AFTER] as number) - before) - 4 * (records[record + BEND] as number) * tried * tried;
+      const inside = Math.min(before - (records[record + LOWER] as number), (records[record + UPPER] as number) - before);
+      let spare = steep / this.steepest;
+      if (inside > slack) spare = Math.min(spare, inside);
+      else if (since > 0 || fast > 0 || this.entering !== -1) spare = Math.min(spare, inside + 2 * slack);
+      else this.entering = w;
+      if (k !== first) spare = Math.min(spare, (((crossings[k] as number) - until) * steep) / tried - 2 * fast);
+      records[record + SPARE] = spare;
+    }
+    this.takeSpares();
+    this.proven = since + until;
+    this.aloneFrom = since;
+    this.crossing = since + at;
   }
 
-  /** a guard that leaves its window in a step, once */
-  private spareLeaving(w: number): void {
-    const { records } = this;
-    const at = w * WATCHED_STRIDE;
-    const before = records[at + BEFORE] as number;
-    const inside = Math.min(before - (records[at + LOWER] as number), (records[at + UPPER] as number) - before);
-    const slack = records[at + SLACK] as number;
-    if (inside > slack || !this.entered(w))
-      records[at + SPARE] = Math.min(inside > slack ? inside : inside + 2 * slack, this.slopeSpare(at));
-    else records[at + SPARE] = this.slopeSpare(at);
-  }
-
-  /** Whether a guard that is on its bound enters: begins the walk there and moves in. It does not come back while its slope holds. One at most
-   * is taken as that; others have their slack. */
-  private entered(w: number): boolean {
-    if (this.since > 0 || (this.records[w * WATCHED_STRIDE + RANGE] as number) > 0) return false;
-    if (this.entering !== -1 && this.entering !== w) return false;
-    this.entering = w;
-    return true;
-  }
-
-  /** how far |d| is above what monotony needs */
-  private steep(at: number): number {
-    const { records, tried } = this;
-    return (
-      Math.abs((records[at + AFTER] as number) - (records[at + BEFORE] as number)) - 4 * (records[at + BEND] as number) * tried * tried
-    );
-  }
-
-  /** what a monotone guard has to spare of its slope: over what a difference of unit size at the walk's start can have of one from here on */
-  private slopeSpare(at: number): number {
-    const { tried } = this;
+  private takeSteepest(): void {
     const { decay, speeds, terms, fastest } = this.mode.linear;
+    const { tried, since } = this;
     let most = fastest * tried;
     if (most > SLOW_LIMIT) {
       most = SLOW_LIMIT;
@@ -230,9 +250,10 @@ export class GuardWatch {
         const speed = (speeds[t] as number) * tried;
         if (speed <= most) continue;
         // by now the fast ones are gone
-        most = Math.max(most, speed * Math.exp(Math.min(0, (decay[t] as number) * this.since)));
+        const faded = (decay[t] as number) * since;
+        if (faded > GONE) most = Math.max(most, faded < 0 ? speed * Math.exp(faded) : speed);
       }
     }
-    return this.steep(at) / most;
+    this.steepest = most;
   }
 }

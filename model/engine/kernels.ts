@@ -41,15 +41,12 @@ export interface Kernels {
     rows: Int32Array,
     count: number,
   ) => void;
-  /** BEND and RANGE of every watched guard at z, for steps whose length squared is squares[level]; a term strays no further than `eighths` times
-   * that, or its whole range, and may grow by `growths` (from `g` on) */
+  /** BEND and RANGE of every watched guard at z, by the level's bends and ranges from `b` on */
   readonly bound: (
     z: Numbers,
-    eighths: Numbers,
-    growths: Numbers,
-    g: number,
-    squares: Numbers,
-    level: number,
+    bends: Numbers,
+    ranges: Numbers,
+    b: number,
     outputRows: Numbers,
     watched: Numbers,
     rows: Int32Array,
@@ -59,11 +56,9 @@ export interface Kernels {
    * first guard g that is outside its window by more than its slack, and then in side[0] whether below (0) or above (1). */
   readonly begin: (
     z: Numbers,
-    eighths: Numbers,
-    growths: Numbers,
-    g: number,
-    squares: Numbers,
-    level: number,
+    bends: Numbers,
+    ranges: Numbers,
+    b: number,
     outputRows: Numbers,
     windows: Numbers,
     windowRows: Int32Array,
@@ -153,12 +148,7 @@ function writtenOut(reals: number, pairs: number): string {
   const sizes =
     each(real, (k) => `const s${k} = Math.abs(z[${k}]);`) +
     each(pair, ({ term, re, im }) => `const s${term} = Math.sqrt(z[${re}] * z[${re}] + z[${im}] * z[${im}]);`);
-  const curvatures = `const square = squares[level];${each(
-    [...real, ...pair.map(({ term }) => term)],
-    (t) => `
-    const x${t} = eighths[${t}], w${t} = growths[g + ${t}], slow${t} = x${t} * square <= 1;
-    const b${t} = slow${t} ? x${t} * w${t} : 0, r${t} = slow${t} ? 0 : ${t < reals ? '' : '2 * '}w${t};`,
-  )}`;
+  const curvatures = each([...real, ...pair.map(({ term }) => term)], (t) => `const b${t} = bends[b + ${t}], r${t} = ranges[b + ${t}];`);
   const shares =
     each(real, (k) => `const h${k} = Math.abs(outputRows[row + ${k}]) * s${k};`) +
     each(pair, ({ term, row }) => `const h${term} = outputRows[row + ${row + 2}] * s${term};`);
@@ -208,7 +198,7 @@ return {
       )};
     }
   },
-  bound(z, eighths, growths, g, squares, level, outputRows, watched, rows, count) {
+  bound(z, bends, ranges, b, outputRows, watched, rows, count) {
     ${sizes}
     ${curvatures}
     for (let w = 0, at = 0; w < count; w++, at += ${WATCHED_STRIDE}) {
@@ -218,7 +208,7 @@ return {
       watched[at + ${RANGE}] = ${sum(terms.map((t) => `h${t} * r${t}`))};
     }
   },
-  begin(z, eighths, growths, g, squares, level, outputRows, windows, windowRows, guardCount, all, watched, rows, guards, side, spares) {
+  begin(z, bends, ranges, b, outputRows, windows, windowRows, guardCount, all, watched, rows, guards, side, spares) {
     ${Array.from({ length: coordinates }, (_, k) => `const z${k} = z[${k}];`).join(' ')}
     ${sizes}
     ${curvatures}

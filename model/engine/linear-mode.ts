@@ -43,10 +43,13 @@ export interface LinearMode {
   readonly constantOutputs: Float64Array;
   /** levels x coordinates (a pair: re, im of its factor) */
   readonly factors: Float64Array;
-  /** |lambda|^2 / 8 of each term: over a step h one of unit size strays from the chord by no more than that times h^2 */
-  readonly eighths: Float64Array;
-  /** levels x terms: by how much a term can have grown at the end of a step; NO_GROWTH where none does */
-  readonly growths: Float64Array;
+  /** levels x terms: curvature bound over 8 of a term of unit size where it is slow at that level, its whole range where it is fast; found
+   * by takeStrays for the levels whose bit is set in `strayLevels` */
+  readonly bends: Float64Array;
+  readonly ranges: Float64Array;
+  strayLevels: number;
+  /** s */
+  readonly shortest: number;
   /** |lambda| of each term, and the largest, 1/s */
   readonly speeds: Float64Array;
   readonly fastest: number;
@@ -126,15 +129,19 @@ function answerOf(n: number, column: number, width: number): Float64Array {
   return made;
 }
 
-/** for modes in which nothing grows: the same at every level */
-export const NO_GROWTH = new Float64Array(MOST_STATES + 1).fill(1);
-
-function growthsOf(decay: Float64Array, shortest: number): Float64Array {
-  const made = numbers(LEVELS * decay.length);
-  for (let level = 0, at = 0; level < LEVELS; level++) {
-    for (const d of decay) made[at++] = d > 0 ? Math.exp(d * shortest * 2 ** level) : 1;
+/** finds the bends and ranges of a level; a mode is walked at few of them */
+export function takeStrays(linear: LinearMode, level: number): void {
+  if ((linear.strayLevels & (1 << level)) !== 0) return;
+  linear.strayLevels |= 1 << level;
+  const { terms, decay, rotation, speeds, bends, ranges } = linear;
+  const h = linear.shortest * 2 ** level;
+  for (let t = 0, at = level * terms; t < terms; t++, at++) {
+    const d = decay[t] as number;
+    const speed = speeds[t] as number;
+    const growth = d > 0 ? Math.exp(d * h) : 1;
+    if (speed * h <= SLOW_LIMIT) bends[at] = (growth * speed * speed) / 8;
+    else ranges[at] = rotation[t] === 0 ? growth : 2 * growth;
   }
-  return made;
 }
 
 export function linearMode(system: ModeSystem, omega: number, shortest: number): LinearMode {
@@ -187,16 +194,13 @@ export function linearMode(system: ModeSystem, omega: number, shortest: number):
   rotation[terms - 1] = omega;
   const factors = numbers(LEVELS * coordinates);
   const speeds = numbers(terms);
-  const eighths = numbers(terms);
   let fastest = 0;
   let grows = false;
   for (let t = 0; t < terms; t++) {
     const d = decay[t] as number;
     const q = rotation[t] as number;
-    const square = d * d + q * q;
-    const speed = Math.sqrt(square);
+    const speed = Math.sqrt(d * d + q * q);
     speeds[t] = speed;
-    eighths[t] = square / 8;
     if (speed > fastest) fastest = speed;
     if (d > 0) grows = true;
     // each level's factor is the square of the one below, but for one in the middle: rounding doubles from level to level, to 1e-13
@@ -234,8 +238,10 @@ export function linearMode(system: ModeSystem, omega: number, shortest: number):
     constantStates,
     constantOutputs,
     factors,
-    eighths,
-    growths: grows ? growthsOf(decay, shortest) : NO_GROWTH,
+    bends: numbers(LEVELS * terms),
+    ranges: numbers(LEVELS * terms),
+    strayLevels: 0,
+    shortest,
     speeds,
     fastest,
     grows,

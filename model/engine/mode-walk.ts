@@ -8,7 +8,7 @@
  */
 import { numbers } from '../numbers.ts';
 import { ROOT_SHARE } from '../tolerances.ts';
-import { asked, locateCrossing, moved, NUDGE, parts, slopes } from './crossing.ts';
+import { asked, END, ENOUGH, INSIDE, locateCrossing, moved, NUDGE, OFFSET, parts, SPAN, START, slopes } from './crossing.ts';
 import { GuardWatch, MOST_RESERVE } from './guard-watch.ts';
 import {
   AFTER,
@@ -65,8 +65,6 @@ export class ModeWalk {
   private zNext: Float64Array;
   private readonly zStart: Float64Array;
   private readonly watch: GuardWatch;
-  /** s after the step's start, of each suspect: when it leaves its window */
-  private readonly crossings: Float64Array;
   private readonly memory: WalkMemory;
   /** remembered walk that begins close enough to the present moment, or -1; the caller's number for the windows there are */
   private followed = -1;
@@ -81,8 +79,7 @@ export class ModeWalk {
     this.z = numbers(states + 2);
     this.zNext = numbers(states + 2);
     this.zStart = numbers(states + 2);
-    this.watch = new GuardWatch(shortest, mostGuards);
-    this.crossings = numbers(mostGuards);
+    this.watch = new GuardWatch(mostGuards);
     this.memory = new WalkMemory(states + 2, mostGuards);
   }
 
@@ -313,12 +310,16 @@ export class ModeWalk {
       const remaining = end - this.elapsed;
       if (count === 0 || remaining <= 0) {
         this.level = level;
-        if (remembered >= 0 && count === 0) memory.prove(remembered, watch, Number.POSITIVE_INFINITY);
+        if (remembered >= 0 && count === 0) {
+          watch.proven = Number.POSITIVE_INFINITY;
+          memory.prove(remembered, watch);
+        }
         if (remaining > 0) this.settleAt(end);
         return 'reached';
       }
       this.steps++;
       const h = this.shortest * (1 << level);
+      watch.tried = h;
       kernels.step(this.z, this.zNext, factors, level * coordinates, outputRows, records, rows, count);
       if (grows) {
         // what grows outgrows its bounds
@@ -326,13 +327,13 @@ export class ModeWalk {
         boundsFresh = true;
         boundsLevel = level;
       }
-      let certain = watch.certify(h);
+      let certain = watch.certify();
       if (!certain && !(boundsFresh && boundsLevel <= level)) {
         // the bounds may only be out of date
         watch.takeBounds(this.z, level);
         boundsFresh = true;
         boundsLevel = level;
-        certain = watch.certify(h);
+        certain = watch.certify();
       }
       if (forced) {
         watch.suspectCount = 0;
@@ -350,8 +351,12 @@ export class ModeWalk {
       }
       if (watch.suspectCount > 0) {
         this.level = level;
-        const earliest = this.firstCrossing(level, h);
-        if (remembered >= 0 && earliest > 0) this.rememberCrossing(remembered, earliest, h);
+        const first = this.firstCrossing(level);
+        const earliest = watch.crossings[first] as number;
+        if (remembered >= 0 && earliest > 0) {
+          watch.cross(first);
+          memory.leave(remembered, watch, this.crossedGuard, this.crossedSide);
+        }
         if (earliest >= remaining) {
           this.settleAt(end);
           return 'reached';
@@ -369,7 +374,10 @@ export class ModeWalk {
       watch.accept();
       if (h >= remaining) {
         this.level = level;
-        if (remembered >= 0) memory.prove(remembered, watch, watch.since);
+        if (remembered >= 0) {
+          watch.proven = watch.since;
+          memory.prove(remembered, watch);
+        }
         this.settleAt(end);
         return 'reached';
       }
@@ -381,54 +389,38 @@ export class ModeWalk {
     return 'out-of-steps';
   }
 
-  /** earliest crossing among the suspects within the step h that was just tried; leaves the coordinates there in zNext */
-  private firstCrossing(level: number, h: number): number {
-    const { z, crossings } = this;
-    const { records, suspects, suspectCount, rows, guards } = this.watch;
+  /** Locates the suspects' crossings within the step that was just tried. Returns which of them is the first, and leaves the coordinates
+   * there in zNext. */
+  private firstCrossing(level: number): number {
+    const { z } = this;
+    const { records, suspects, suspectCount, crossings, rows, guards, tried } = this.watch;
     const { linear } = this.mode;
     let earliest = Number.POSITIVE_INFINITY;
-    let last = 0;
+    let first = 0;
+    asked[SPAN] = tried;
     for (let k = 0; k < suspectCount; k++) {
       const w = suspects[k] as number;
       const record = w * WATCHED_STRIDE;
       const side = (records[record + AFTER] as number) < (records[record + LOWER] as number) ? 0 : 1;
       const bound = records[record + (side === 0 ? LOWER : UPPER)] as number;
       const inside = side === 0 ? 1 : -1;
-      asked.inside = inside;
-      asked.before = ((records[record + BEFORE] as number) - bound) * inside;
-      asked.after = ((records[record + AFTER] as number) - bound) * inside;
-      asked.offset = (records[record + REST] as number) - bound;
-      asked.enough = ROOT_SHARE * (records[record + SLACK] as number);
-      asked.span = h;
-      const at = asked.before <= 0 ? 0 : locateCrossing(linear, z, rows[w] as number, level);
-      crossings[k] = at;
+      const before = ((records[record + BEFORE] as number) - bound) * inside;
+      asked[INSIDE] = inside;
+      asked[START] = before;
+      asked[END] = ((records[record + AFTER] as number) - bound) * inside;
+      asked[OFFSET] = (records[record + REST] as number) - bound;
+      asked[ENOUGH] = ROOT_SHARE * (records[record + SLACK] as number);
+      if (before <= 0) crossings[k] = 0;
+      else locateCrossing(linear, z, rows[w] as number, level, crossings, k);
+      const at = crossings[k] as number;
       if (at >= earliest) continue;
       earliest = at;
-      last = k;
+      first = k;
       this.crossedGuard = guards[w] as number;
       this.crossedSide = side;
     }
-    if (last < suspectCount - 1) this.moveBy(earliest, z);
+    if (first < suspectCount - 1) this.moveBy(earliest, z);
     else if (earliest > 0) linear.kernels.move(this.zNext, z, moved, 0);
-    return earliest;
-  }
-
-  /** remembers the walk that is ending with a crossing so long after the start of the step h */
-  private rememberCrossing(walk: number, earliest: number, h: number): void {
-    const { watch, memory, crossings } = this;
-    const { suspects, suspectCount, guards } = watch;
-    // proven half way to the next guard that leaves in this step: up to there it is inside, by its slope
-    let proven = h;
-    for (let k = 0; k < suspectCount; k++) {
-      if (guards[suspects[k] as number] !== this.crossedGuard) proven = Math.min(proven, (earliest + (crossings[k] as number)) / 2);
-    }
-    for (let k = 0; k < suspectCount; k++) {
-      const w = suspects[k] as number;
-      if (guards[w] !== this.crossedGuard) watch.spareAhead(w, (crossings[k] as number) - proven);
-    }
-    const from = watch.since;
-    watch.accept();
-    memory.leave(walk, this.crossedGuard, this.crossedSide, from, from + earliest);
-    memory.prove(walk, watch, from + proven);
+    return first;
   }
 }

@@ -176,9 +176,11 @@ export class WalkMemory {
       more.set(this.known);
       this.known = more;
     }
-    this.known[at + WALK_PROVEN] = -1;
-    this.known[at + WALK_GUARD] = -1;
-    for (let k = 0, to = at + WALK_START; k < mode.linear.coordinates; k++, to++) this.known[to] = z[k] as number;
+    const { known } = this;
+    known[at + WALK_PROVEN] = -1;
+    known[at + WALK_GUARD] = -1;
+    const { coordinates } = mode.linear;
+    for (let k = 0, to = at + WALK_START; k < coordinates; k++, to++) known[to] = z[k] as number;
     const slot = walk % REMEMBERED_WALKS;
     this.modes[slot] = mode;
     this.logics[slot] = logic;
@@ -187,25 +189,26 @@ export class WalkMemory {
     return walk;
   }
 
-  /** the walk ends by crossing a guard so long after its start; from `from` on that is the only crossing */
-  leave(walk: number, guard: number, side: 0 | 1, from: number, at: number): void {
+  /** the walk ends by crossing a guard, as the watch says */
+  leave(walk: number, watch: GuardWatch, guard: number, side: 0 | 1): void {
     const { known } = this;
     const record = this.at(walk);
     known[record + WALK_GUARD] = guard;
     known[record + WALK_SIDE] = side;
-    known[record + WALK_ALONE_FROM] = from;
-    known[record + WALK_CROSSING] = at;
+    known[record + WALK_ALONE_FROM] = watch.aloneFrom;
+    known[record + WALK_CROSSING] = watch.crossing;
     known[record + WALK_FACTORED] = 0;
+    this.prove(walk, watch);
   }
 
-  /** the walk is proven for so long, with what the guards had to spare by then */
-  prove(walk: number, { spares, guardCount, guards, entering }: GuardWatch, proven: number): void {
+  /** the walk is proven for as long as the watch says, with what the guards had to spare by then */
+  prove(walk: number, { spares, guardCount, guards, entering, proven }: GuardWatch): void {
     const { known } = this;
     const record = this.at(walk);
     const { linear } = this.modes[walk % REMEMBERED_WALKS] as Mode;
-    let growth = 1;
-    if (linear.grows) for (const d of linear.decay) if (d > 0) growth = Math.max(growth, Math.exp(d * proven));
-    for (let g = 0, to = record + this.sparesFrom; g < guardCount; g++, to++) known[to] = (spares[g] as number) / growth;
+    let share = 1;
+    if (linear.grows) for (const d of linear.decay) if (d > 0) share = Math.min(share, Math.exp(-d * proven));
+    for (let g = 0, to = record + this.sparesFrom; g < guardCount; g++, to++) known[to] = (spares[g] as number) * share;
     known[record + WALK_ENTERING] = entering < 0 ? -1 : (guards[entering] as number);
     known[record + WALK_PROVEN] = proven;
   }
