@@ -1,5 +1,6 @@
 /**
- * Measures the engine: half-cycles per second on one core for each load kind, its steps and events, the arithmetic of its steps alone,
+ * Measures the engine: half-cycles per second on one core for each load kind, as they come and with every walk proven anew, its steps and
+ * events, the arithmetic of its steps alone,
  * what building the modes of a new dial position costs, how a sweep grows with lamp groups, and, alternately in the same call, what
  * ngspice makes of the same circuits. Every figure is the median of several runs with its least and most.
  *
@@ -51,11 +52,17 @@ interface EngineRate {
   readonly events: number;
 }
 
-/** one timed run over the dial positions: half-cycles over the time that all of them took together */
-function timeEngine(atDials: readonly DimmerRun[]): EngineRate {
+/** One timed run over the dial positions: half-cycles over the time that all of them took together. Setting the dial makes a run forget the walks
+ * of the half-cycles before; where it does so before each one, every walk is proven anew. */
+function timeEngine(atDials: readonly DimmerRun[], forgetting = false): EngineRate {
   const before = atDials.map((run) => ({ steps: run.steps, events: run.events }));
   const began = performance.now();
-  for (const run of atDials) for (let k = 0; k < TIMED; k++) run.finishHalfCycle();
+  atDials.forEach((run, at) => {
+    for (let k = 0; k < TIMED; k++) {
+      if (forgetting) run.setDial(DIALS[at] as number);
+      run.finishHalfCycle();
+    }
+  });
   const seconds = (performance.now() - began) / 1000;
   const halfCycles = TIMED * atDials.length;
   const sum = (pick: (run: DimmerRun, k: number) => number): number => atDials.reduce((total, run, k) => total + pick(run, k), 0);
@@ -150,13 +157,26 @@ function timeSweep(pairing: Pairing): { readonly ms: number; readonly modesBuilt
   return { ms: performance.now() - began, modesBuilt: counters.modesBuilt, halfCycles: counters.halfCycles };
 }
 
-async function benchCircuit(circuit: BenchCircuit, withNgspice: boolean): Promise<{ engine: number; ratio: number | null; sweep: number }> {
+interface CircuitFigures {
+  /** half-cycles per second, as they come and with every walk proven anew */
+  readonly engine: number;
+  readonly anew: number;
+  /** times ngspice's rate */
+  readonly ratio: number | null;
+  /** ms, and the share of it that new modes take */
+  readonly sweep: number;
+  readonly newModes: number;
+}
+
+async function benchCircuit(circuit: BenchCircuit, withNgspice: boolean): Promise<CircuitFigures> {
   const atDials = settledRuns(circuit.pairing);
   const engine: EngineRate[] = [];
+  const anew: EngineRate[] = [];
   const ngspice: number[] = [];
   let givenUp: readonly number[] = [];
   for (let r = 0; r < runs; r++) {
     engine.push(timeEngine(atDials));
+    anew.push(timeEngine(atDials, true));
     // ngspice is timed three times at most: it takes seconds
     if (!withNgspice || r >= 3 || givenUp.length === DIALS.length) continue;
     const timed = await timeNgspice(circuit.pairing);
@@ -166,15 +186,15 @@ async function benchCircuit(circuit: BenchCircuit, withNgspice: boolean): Promis
   const sweeps = Array.from({ length: runs + 2 }, () => timeSweep(circuit.pairing)).slice(2);
   const rebuild = Array.from({ length: runs }, () => timeRebuild(circuit.pairing));
   const rate = spreadOf(engine.map((e) => e.perSecond));
+  const fromNothing = spreadOf(anew.map((e) => e.perSecond));
   const sweep = spreadOf(sweeps.map((s) => s.ms));
   const perMode = spreadOf(rebuild);
   const share = (perMode.median * (sweeps[0]?.modesBuilt ?? 0)) / 1000 / sweep.median;
   const arithmetic = spreadOf(Array.from({ length: runs }, () => timeArithmetic(circuit.pairing)));
-  const floor = 1e9 / (arithmetic.median * (engine[0]?.steps ?? 1));
+  const floor = 1e9 / (arithmetic.median * (anew[0]?.steps ?? 1));
   console.log(`${circuit.kind}: ${circuit.name}`);
-  console.log(
-    `  engine     ${told(rate)} half-cycles/s, ${figure(engine[0]?.steps ?? 0)} steps and ${figure(engine[0]?.events ?? 0)} events each`,
-  );
+  console.log(`  engine     ${told(rate)} half-cycles/s, ${figure(engine[0]?.events ?? 0)} events each`);
+  console.log(`  every walk proven anew: ${told(fromNothing)} half-cycles/s, ${figure(anew[0]?.steps ?? 0)} steps each`);
   console.log(`  arithmetic ${told(arithmetic)} ns a step: ${figure(floor)} half-cycles/s if it were all`);
   console.log(`  sweep      ${told(sweep)} ms for 21 positions up and down, ${sweeps[0]?.halfCycles} half-cycles`);
   console.log(`  new modes  ${told(perMode)} us each, ${sweeps[0]?.modesBuilt} in the sweep: ${figure(100 * share)} % of it`);
@@ -183,7 +203,13 @@ async function benchCircuit(circuit: BenchCircuit, withNgspice: boolean): Promis
     console.log(`  ngspice    ${told(reference)} half-cycles/s: the engine is ${figure(rate.median / reference.median)} times as fast`);
   }
   if (givenUp.length > 0) console.log(`             ngspice gave up at ${givenUp.join(', ')} % of the dial; its rate is over the others`);
-  return { engine: rate.median, ratio: reference === null ? null : rate.median / reference.median, sweep: sweep.median };
+  return {
+    engine: rate.median,
+    anew: fromNothing.median,
+    ratio: reference === null ? null : rate.median / reference.median,
+    sweep: sweep.median,
+    newModes: share,
+  };
 }
 
 function benchGroups(): void {
@@ -206,11 +232,14 @@ console.log(machineLine());
 const version = values['no-ngspice'] ? null : ngspiceVersion();
 if (version === null && !values['no-ngspice']) console.log('ngspice is not installed: engine alone');
 for (const { pairing } of benchCircuits()) for (let k = 0; k < WARM_SWEEPS; k++) timeSweep(pairing);
-const results: { engine: number; ratio: number | null; sweep: number }[] = [];
+const results: CircuitFigures[] = [];
 for (const circuit of benchCircuits()) results.push(await benchCircuit(circuit, version !== null));
 console.log(`over ${results.length} circuits: ${told(spreadOf(results.map((r) => r.engine)))} half-cycles/s`);
 const ratios = results.map((r) => r.ratio).filter((r) => r !== null);
 if (ratios.length > 0) console.log(`  against ${version}: ${told(spreadOf(ratios))} times as fast`);
-console.log(`  sweep: ${told(spreadOf(results.map((r) => r.sweep)))} ms`);
+console.log(`  every walk proven anew: ${told(spreadOf(results.map((r) => r.anew)))} half-cycles/s`);
+console.log(
+  `  sweep: ${told(spreadOf(results.map((r) => r.sweep)))} ms, new modes ${told(spreadOf(results.map((r) => 100 * r.newModes)))} % of it`,
+);
 benchGroups();
 if (values.grid) benchGrid();

@@ -30,6 +30,8 @@ export const WINDOW_REST = 3;
 type Numbers = Float64Array;
 
 export interface Kernels {
+  /** the output with this row at z (less its constant part), into at[0] */
+  readonly value: (at: Numbers, z: Numbers, outputRows: Numbers, row: number) => void;
   /** zNext = z moved by the factors from `f` on; the watched outputs there, into AFTER */
   readonly step: (
     z: Numbers,
@@ -187,6 +189,12 @@ function writtenOut(reals: number, pairs: number): string {
   const width = states + 3;
   return `'use strict';
 return {
+  value(at, z, outputRows, row) {
+    at[0] = ${total(
+      (k) => `outputRows[row + ${k}] * z[${k}]`,
+      ({ row, re, im }) => `(outputRows[row + ${row}] * z[${re}] + outputRows[row + ${row + 1}] * z[${im}])`,
+    )};
+  },
   step(z, zNext, factors, f, outputRows, watched, rows, count) {
     ${moved('z', (k) => `factors[f + ${k}]`)}
     ${stored('zNext')}

@@ -128,21 +128,9 @@ export class ModeWalk {
 
   /** value of an output now */
   value(output: number): number {
-    return this.outputAt(output * this.mode.linear.outputStride, this.mode.restOutput[output] as number);
-  }
-
-  /** the same of the output with this row and this constant part */
-  private outputAt(row: number, rest: number): number {
-    const { outputRows, terms, modal } = this.mode.linear;
-    const { reals } = modal;
-    const { z } = this;
-    let sum = rest;
-    let at = row;
-    for (let k = 0; k < reals; k++, at++) sum += (outputRows[at] as number) * (z[k] as number);
-    for (let t = reals, k = reals; t < terms; t++, k += 2, at += 3) {
-      sum += (outputRows[at] as number) * (z[k] as number) + (outputRows[at + 1] as number) * (z[k + 1] as number);
-    }
-    return sum;
+    const { linear, restOutput } = this.mode;
+    linear.kernels.value(slopes, this.z, linear.outputRows, output * linear.outputStride);
+    return (restOutput[output] as number) + (slopes[0] as number);
   }
 
   /** the state now, in the mode's own coordinates */
@@ -200,7 +188,8 @@ export class ModeWalk {
     const entering = known[at + WALK_ENTERING] as number;
     if (entering < 0) return true;
     const window = entering * WINDOW_STRIDE;
-    const y = this.outputAt(windows.rows[entering] as number, windows.records[window + WINDOW_REST] as number);
+    linear.kernels.value(slopes, this.z, linear.outputRows, windows.rows[entering] as number);
+    const y = (slopes[0] as number) + (windows.records[window + WINDOW_REST] as number);
     const slack = windows.records[window + WINDOW_SLACK] as number;
     const lower = windows.records[window + WINDOW_LOWER] as number;
     const upper = windows.records[window + WINDOW_UPPER] as number;
