@@ -27,8 +27,10 @@ const POSITIONS = Array.from({ length: 21 }, (_, k) => 5 * k);
 /** half-cycles per timed run and dial position, and before timing begins: settled, and compiled */
 const TIMED = 4000;
 const WARM_UP = 2000;
-/** sweeps of every circuit before anything is timed: a new thread compiles for its first second or two */
+/** sweeps of every circuit before anything is timed, and runs of one before it is: a new thread compiles for its first second or two, and
+ * again where it meets what it has not met for a while */
 const WARM_SWEEPS = 6;
+const UNTIMED = 4;
 const NGSPICE_HALF_CYCLES = 8;
 /** modes built per timed run; steps per mode, and guards read in each, where only the arithmetic is timed */
 const REBUILT = 4000;
@@ -183,8 +185,8 @@ async function benchCircuit(circuit: BenchCircuit, withNgspice: boolean): Promis
     givenUp = timed.givenUp;
     if (givenUp.length < DIALS.length) ngspice.push(timed.perSecond);
   }
-  const sweeps = Array.from({ length: runs + 2 }, () => timeSweep(circuit.pairing)).slice(2);
-  const rebuild = Array.from({ length: runs }, () => timeRebuild(circuit.pairing));
+  const sweeps = Array.from({ length: runs + UNTIMED }, () => timeSweep(circuit.pairing)).slice(UNTIMED);
+  const rebuild = Array.from({ length: runs + UNTIMED }, () => timeRebuild(circuit.pairing)).slice(UNTIMED);
   const rate = spreadOf(engine.map((e) => e.perSecond));
   const fromNothing = spreadOf(anew.map((e) => e.perSecond));
   const sweep = spreadOf(sweeps.map((s) => s.ms));
