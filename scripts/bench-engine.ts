@@ -21,6 +21,7 @@ import { cases } from '../tests/ngspice/cases.ts';
 import { ngspiceVersion, runNgspice } from '../tests/ngspice/run.ts';
 import { type BenchCircuit, benchCircuits, groupedPairing } from './bench-circuits.ts';
 import { figure, machineLine, type Spread, spreadOf } from './bench-figures.ts';
+import { timeNewModes } from './new-mode-timing.ts';
 
 const DIALS = [20, 40, 60, 80, 100];
 const POSITIONS = Array.from({ length: 21 }, (_, k) => 5 * k);
@@ -33,7 +34,7 @@ const WARM_SWEEPS = 6;
 const UNTIMED = 4;
 const NGSPICE_HALF_CYCLES = 8;
 /** modes built per timed run; steps per mode, and guards read in each, where only the arithmetic is timed */
-const REBUILT = 4000;
+const REBUILT = 20_000;
 const STEPPED = 200_000;
 const GUARDS = 3;
 
@@ -159,13 +160,20 @@ function timeSweep(pairing: Pairing): { readonly ms: number; readonly modesBuilt
   return { ms: performance.now() - began, modesBuilt: counters.modesBuilt, halfCycles: counters.halfCycles };
 }
 
+/** share of a sweep that building its modes takes, % */
+function newModesShare(pairing: Pairing): number {
+  const began = performance.now();
+  const building = timeNewModes(() => sweepDial(pairing, POSITIONS));
+  return (100 * building) / (performance.now() - began);
+}
+
 interface CircuitFigures {
   /** half-cycles per second, as they come and with every walk proven anew */
   readonly engine: number;
   readonly anew: number;
   /** times ngspice's rate */
   readonly ratio: number | null;
-  /** ms, and the share of it that new modes take */
+  /** ms, and the share of it that new modes take, % */
   readonly sweep: number;
   readonly newModes: number;
 }
@@ -191,7 +199,7 @@ async function benchCircuit(circuit: BenchCircuit, withNgspice: boolean): Promis
   const fromNothing = spreadOf(anew.map((e) => e.perSecond));
   const sweep = spreadOf(sweeps.map((s) => s.ms));
   const perMode = spreadOf(rebuild);
-  const share = (perMode.median * (sweeps[0]?.modesBuilt ?? 0)) / 1000 / sweep.median;
+  const share = spreadOf(Array.from({ length: runs + UNTIMED }, () => newModesShare(circuit.pairing)).slice(UNTIMED));
   const arithmetic = spreadOf(Array.from({ length: runs }, () => timeArithmetic(circuit.pairing)));
   const floor = 1e9 / (arithmetic.median * (anew[0]?.steps ?? 1));
   console.log(`${circuit.kind}: ${circuit.name}`);
@@ -199,7 +207,7 @@ async function benchCircuit(circuit: BenchCircuit, withNgspice: boolean): Promis
   console.log(`  every walk proven anew: ${told(fromNothing)} half-cycles/s, ${figure(anew[0]?.steps ?? 0)} steps each`);
   console.log(`  arithmetic ${told(arithmetic)} ns a step: ${figure(floor)} half-cycles/s if it were all`);
   console.log(`  sweep      ${told(sweep)} ms for 21 positions up and down, ${sweeps[0]?.halfCycles} half-cycles`);
-  console.log(`  new modes  ${told(perMode)} us each, ${sweeps[0]?.modesBuilt} in the sweep: ${figure(100 * share)} % of it`);
+  console.log(`  new modes  ${told(perMode)} us each, ${sweeps[0]?.modesBuilt} in a sweep: ${told(share)} % of it`);
   const reference = ngspice.length === 0 ? null : spreadOf(ngspice);
   if (reference !== null) {
     console.log(`  ngspice    ${told(reference)} half-cycles/s: the engine is ${figure(rate.median / reference.median)} times as fast`);
@@ -210,7 +218,7 @@ async function benchCircuit(circuit: BenchCircuit, withNgspice: boolean): Promis
     anew: fromNothing.median,
     ratio: reference === null ? null : rate.median / reference.median,
     sweep: sweep.median,
-    newModes: share,
+    newModes: share.median,
   };
 }
 
@@ -241,7 +249,7 @@ const ratios = results.map((r) => r.ratio).filter((r) => r !== null);
 if (ratios.length > 0) console.log(`  against ${version}: ${told(spreadOf(ratios))} times as fast`);
 console.log(`  every walk proven anew: ${told(spreadOf(results.map((r) => r.anew)))} half-cycles/s`);
 console.log(
-  `  sweep: ${told(spreadOf(results.map((r) => r.sweep)))} ms, new modes ${told(spreadOf(results.map((r) => 100 * r.newModes)))} % of it`,
+  `  sweep: ${told(spreadOf(results.map((r) => r.sweep)))} ms, new modes ${told(spreadOf(results.map((r) => r.newModes)))} % of it`,
 );
 benchGroups();
 if (values.grid) benchGrid();

@@ -10,7 +10,7 @@ export interface ModalBasis {
   /** number of real eigenvalues (they come first) and of complex pairs */
   readonly reals: number;
   readonly pairs: number;
-  /** per eigenvalue or pair: real part and (positive) imaginary part, 1/s */
+  /** per eigenvalue or pair: real part and (positive) imaginary part, 1/s; there is room for one more (the mains, in LinearMode) */
   readonly decay: Float64Array;
   readonly rotation: Float64Array;
   /** n x n, row-major: state = basis * modal; for a pair the two columns belong to the real and imaginary part of its coordinate */
@@ -352,8 +352,8 @@ function decompose(matrix: Float64Array, n: number): ModalBasis {
     order[reals++] = k;
   }
   const count = reals + pairs;
-  const decay = numbers(count);
-  const rotation = numbers(count);
+  const decay = numbers(count + 1);
+  const rotation = numbers(count + 1);
   const basis = numbers(n * n);
   const smallest = 1e-16 * scale || 1e-300;
   for (let mode = 0; mode < count; mode++) {

@@ -75,8 +75,7 @@ export class GuardWatch {
     takeStrays(linear, level);
     const count = linear.kernels.begin(
       z,
-      linear.bends,
-      linear.ranges,
+      linear.strays,
       level * linear.terms,
       linear.outputRows,
       windows.records,
@@ -104,7 +103,7 @@ export class GuardWatch {
   takeBounds(z: Float64Array, level: number): void {
     const { linear } = this.mode;
     takeStrays(linear, level);
-    linear.kernels.bound(z, linear.bends, linear.ranges, level * linear.terms, linear.outputRows, this.records, this.rows, this.count);
+    linear.kernels.bound(z, linear.strays, level * linear.terms, linear.outputRows, this.records, this.rows, this.count);
   }
 
   /** The certificate for the step that is tried, whose ends are in the records: false where some guard may leave its window and come back. */

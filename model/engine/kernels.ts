@@ -43,23 +43,13 @@ export interface Kernels {
     rows: Int32Array,
     count: number,
   ) => void;
-  /** BEND and RANGE of every watched guard at z, by the level's bends and ranges from `b` on */
-  readonly bound: (
-    z: Numbers,
-    bends: Numbers,
-    ranges: Numbers,
-    b: number,
-    outputRows: Numbers,
-    watched: Numbers,
-    rows: Int32Array,
-    count: number,
-  ) => void;
+  /** BEND and RANGE of every watched guard at z, by the level's strays from `b` on */
+  readonly bound: (z: Numbers, strays: Numbers, b: number, outputRows: Numbers, watched: Numbers, rows: Int32Array, count: number) => void;
   /** Puts every guard that could ever leave its window on the watch (with `all`, every one). Returns how many there are, or ~g for the
    * first guard g that is outside its window by more than its slack, and then in side[0] whether below (0) or above (1). */
   readonly begin: (
     z: Numbers,
-    bends: Numbers,
-    ranges: Numbers,
+    strays: Numbers,
     b: number,
     outputRows: Numbers,
     windows: Numbers,
@@ -150,7 +140,10 @@ function writtenOut(reals: number, pairs: number): string {
   const sizes =
     each(real, (k) => `const s${k} = Math.abs(z[${k}]);`) +
     each(pair, ({ term, re, im }) => `const s${term} = Math.sqrt(z[${re}] * z[${re}] + z[${im}] * z[${im}]);`);
-  const curvatures = each([...real, ...pair.map(({ term }) => term)], (t) => `const b${t} = bends[b + ${t}], r${t} = ranges[b + ${t}];`);
+  const curvatures = each(
+    [...real, ...pair.map(({ term }) => term)],
+    (t) => `const x${t} = strays[b + ${t}], b${t} = Math.max(x${t}, 0), r${t} = Math.max(-x${t}, 0);`,
+  );
   const shares =
     each(real, (k) => `const h${k} = Math.abs(outputRows[row + ${k}]) * s${k};`) +
     each(pair, ({ term, row }) => `const h${term} = outputRows[row + ${row + 2}] * s${term};`);
@@ -206,7 +199,7 @@ return {
       )};
     }
   },
-  bound(z, bends, ranges, b, outputRows, watched, rows, count) {
+  bound(z, strays, b, outputRows, watched, rows, count) {
     ${sizes}
     ${curvatures}
     for (let w = 0, at = 0; w < count; w++, at += ${WATCHED_STRIDE}) {
@@ -216,7 +209,7 @@ return {
       watched[at + ${RANGE}] = ${sum(terms.map((t) => `h${t} * r${t}`))};
     }
   },
-  begin(z, bends, ranges, b, outputRows, windows, windowRows, guardCount, all, watched, rows, guards, side, spares) {
+  begin(z, strays, b, outputRows, windows, windowRows, guardCount, all, watched, rows, guards, side, spares) {
     ${Array.from({ length: coordinates }, (_, k) => `const z${k} = z[${k}];`).join(' ')}
     ${sizes}
     ${curvatures}

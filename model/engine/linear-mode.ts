@@ -35,18 +35,15 @@ export interface LinearMode {
   /** per output: its share of each real coordinate, then for each pair its shares of re and im and the size of the two together */
   readonly outputRows: Float64Array;
   readonly outputStride: number;
-  /** particular solution of the mains: x = driveCos * cos wt + driveSin * sin wt */
-  readonly driveCos: Float64Array;
-  readonly driveSin: Float64Array;
-  /** constants x states, and constants x outputs */
-  readonly constantStates: Float64Array;
-  readonly constantOutputs: Float64Array;
+  /** particular solution of the mains: x = drive[0..n) * cos wt + drive[n..2n) * sin wt */
+  readonly drive: Float64Array;
+  /** per constant: what the states and then the outputs answer to it */
+  readonly constantAnswers: Float64Array;
   /** levels x coordinates (a pair: re, im of its factor) */
   readonly factors: Float64Array;
-  /** levels x terms: curvature bound over 8 of a term of unit size where it is slow at that level, its whole range where it is fast; found
-   * by takeStrays for the levels whose bit is set in `strayLevels` */
-  readonly bends: Float64Array;
-  readonly ranges: Float64Array;
+  /** levels x terms: how far a term of unit size can stray, where it is slow at that level as a curvature bound over 8, where it is fast its
+   * whole range with a minus; found by takeStrays for the levels whose bit is set in `strayLevels` */
+  readonly strays: Float64Array;
   strayLevels: number;
   /** s */
   readonly shortest: number;
@@ -122,25 +119,18 @@ function answerConstants(modal: ModalBasis, constants: number): void {
   }
 }
 
-/** a column of the states' answers */
-function answerOf(n: number, column: number, width: number): Float64Array {
-  const made = numbers(n);
-  for (let r = 0; r < n; r++) made[r] = answers[r * width + column] as number;
-  return made;
-}
-
-/** finds the bends and ranges of a level; a mode is walked at few of them */
+/** finds the strays of a level; a mode is walked at few of them */
 export function takeStrays(linear: LinearMode, level: number): void {
   if ((linear.strayLevels & (1 << level)) !== 0) return;
   linear.strayLevels |= 1 << level;
-  const { terms, decay, rotation, speeds, bends, ranges } = linear;
+  const { terms, decay, rotation, speeds, strays } = linear;
   const h = linear.shortest * 2 ** level;
   for (let t = 0, at = level * terms; t < terms; t++, at++) {
     const d = decay[t] as number;
     const speed = speeds[t] as number;
     const growth = d > 0 ? Math.exp(d * h) : 1;
-    if (speed * h <= SLOW_LIMIT) bends[at] = (growth * speed * speed) / 8;
-    else ranges[at] = rotation[t] === 0 ? growth : 2 * growth;
+    if (speed * h <= SLOW_LIMIT) strays[at] = (growth * speed * speed) / 8;
+    else strays[at] = rotation[t] === 0 ? -growth : -2 * growth;
   }
 }
 
@@ -162,13 +152,17 @@ export function linearMode(system: ModeSystem, omega: number, shortest: number):
   product(basis, 0, n, n, modalAnswers, 0, 2 + constants, 2 + constants, answers, n, width);
   if (outputAnswers.length < outputs * width) outputAnswers = new Float64Array(outputs * width);
   product(rows, n * columns, columns, outputs, answers, 0, width, width, outputAnswers, 0, width);
-  const constantStates = numbers(constants * n);
-  for (let r = 0; r < n; r++)
-    for (let k = 0; k < constants; k++) constantStates[k * n + r] = answers[r * width + coordinates + k] as number;
+  const drive = numbers(2 * n);
+  const constantAnswers = numbers(constants * (n + outputs));
+  for (let r = 0; r < n; r++) {
+    const own = r * width;
+    drive[r] = answers[own + n] as number;
+    drive[n + r] = answers[own + n + 1] as number;
+    for (let k = 0; k < constants; k++) constantAnswers[k * (n + outputs) + r] = answers[own + coordinates + k] as number;
+  }
 
   const outputStride = reals + 3 * (pairs + 1);
   const outputRows = numbers(outputs * outputStride);
-  const constantOutputs = numbers(constants * outputs);
   for (let o = 0, at = 0; o < outputs; o++) {
     const row = (n + o) * columns;
     const own = o * width;
@@ -183,14 +177,11 @@ export function linearMode(system: ModeSystem, omega: number, shortest: number):
       outputRows[at++] = Math.sqrt(re * re + im * im);
     }
     for (let k = 0; k < constants; k++) {
-      constantOutputs[k * outputs + o] = (outputAnswers[own + coordinates + k] as number) + (rows[row + n + 1 + k] as number);
+      constantAnswers[k * (n + outputs) + n + o] = (outputAnswers[own + coordinates + k] as number) + (rows[row + n + 1 + k] as number);
     }
   }
 
-  const decay = numbers(terms);
-  const rotation = numbers(terms);
-  decay.set(modal.decay);
-  rotation.set(modal.rotation);
+  const { decay, rotation } = modal;
   rotation[terms - 1] = omega;
   const factors = numbers(LEVELS * coordinates);
   const speeds = numbers(terms);
@@ -233,13 +224,10 @@ export function linearMode(system: ModeSystem, omega: number, shortest: number):
     rotation,
     outputRows,
     outputStride,
-    driveCos: answerOf(n, n, width),
-    driveSin: answerOf(n, n + 1, width),
-    constantStates,
-    constantOutputs,
+    drive,
+    constantAnswers,
     factors,
-    bends: numbers(LEVELS * terms),
-    ranges: numbers(LEVELS * terms),
+    strays: numbers(LEVELS * terms),
     strayLevels: 0,
     shortest,
     speeds,

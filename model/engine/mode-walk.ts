@@ -90,14 +90,14 @@ export class ModeWalk {
 
   /** starts a visit: x in the mode's own (mirrored) coordinates, the mains' cosine and sine at this moment */
   enter(mode: Mode, x: Float64Array, cos: number, sin: number): void {
-    const { linear, restState } = mode;
+    const { linear, rest } = mode;
     const n = linear.states;
-    const { driveCos, driveSin } = linear;
+    const { drive } = linear;
     const { inverse } = linear.modal;
     const { z, zStart, zNext } = this;
     this.start(mode);
     for (let k = 0; k < n; k++) {
-      zNext[k] = (x[k] as number) - (restState[k] as number) - cos * (driveCos[k] as number) - sin * (driveSin[k] as number);
+      zNext[k] = (x[k] as number) - (rest[k] as number) - cos * (drive[k] as number) - sin * (drive[n + k] as number);
     }
     for (let r = 0, at = 0; r < n; r++) {
       let sum = 0;
@@ -128,22 +128,22 @@ export class ModeWalk {
 
   /** value of an output now */
   value(output: number): number {
-    const { linear, restOutput } = this.mode;
+    const { linear, rest } = this.mode;
     linear.kernels.value(slopes, this.z, linear.outputRows, output * linear.outputStride);
-    return (restOutput[output] as number) + (slopes[0] as number);
+    return (rest[linear.states + output] as number) + (slopes[0] as number);
   }
 
   /** the state now, in the mode's own coordinates */
   leave(x: Float64Array): void {
-    const { linear, restState } = this.mode;
+    const { linear, rest } = this.mode;
     const n = linear.states;
     const { basis } = linear.modal;
-    const { driveCos, driveSin } = linear;
+    const { drive } = linear;
     const { z } = this;
     const cos = z[n] as number;
     const sin = z[n + 1] as number;
     for (let r = 0, at = 0; r < n; r++) {
-      let sum = (restState[r] as number) + cos * (driveCos[r] as number) + sin * (driveSin[r] as number);
+      let sum = (rest[r] as number) + cos * (drive[r] as number) + sin * (drive[n + r] as number);
       for (let c = 0; c < n; c++, at++) sum += (basis[at] as number) * (z[c] as number);
       x[r] = sum;
     }

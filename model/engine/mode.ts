@@ -24,9 +24,8 @@ export interface Mode {
   readonly linear: LinearMode;
   readonly configuration: Configuration;
   readonly mapped: MappedConfiguration;
-  /** constant particular solution of the states, and the constant part of every output, with this mode's signs */
-  readonly restState: Float64Array;
-  readonly restOutput: Float64Array;
+  /** constant particular solution of the states, then the constant part of every output, with this mode's signs */
+  readonly rest: Float64Array;
   /** the lamp groups' guards come first, then there is room for the diac's and the triac's */
   readonly windows: Windows;
   /** the ways out, by ConfigurationMap's numbers, filled in as they are taken */
@@ -52,12 +51,12 @@ export const OTHER_GUARDS = 2;
 const FIRST_LEVEL = 6;
 
 /** sets one window of a mode; bounds in V or A */
-export function watchOutput({ linear, restOutput, windows }: Mode, guard: number, output: number, lower: number, upper: number): void {
+export function watchOutput({ linear, rest, windows }: Mode, guard: number, output: number, lower: number, upper: number): void {
   const at = guard * WINDOW_STRIDE;
   windows.rows[guard] = output * linear.outputStride;
   windows.records[at + WINDOW_LOWER] = lower;
   windows.records[at + WINDOW_UPPER] = upper;
-  windows.records[at + WINDOW_REST] = restOutput[output] as number;
+  windows.records[at + WINDOW_REST] = rest[linear.states + output] as number;
 }
 
 /** sum over the parts of sign * answer to that part's constant */
@@ -83,9 +82,9 @@ function passageBetween(from: Mode, to: Mode): Passage {
     const flip = (from.mapped.flips[r] as number) * (to.mapped.flips[r] as number);
     const at = r * width;
     for (let c = 0; c < n; c++) state[at + c] = flip * (basis[r * n + c] as number);
-    state[at + n] = flip * (from.linear.driveCos[r] as number) - (to.linear.driveCos[r] as number);
-    state[at + n + 1] = flip * (from.linear.driveSin[r] as number) - (to.linear.driveSin[r] as number);
-    state[at + n + 2] = flip * (from.restState[r] as number) - (to.restState[r] as number);
+    state[at + n] = flip * (from.linear.drive[r] as number) - (to.linear.drive[r] as number);
+    state[at + n + 1] = flip * (from.linear.drive[n + r] as number) - (to.linear.drive[n + r] as number);
+    state[at + n + 2] = flip * (from.rest[r] as number) - (to.rest[r] as number);
   }
   const matrix = numbers(n * width);
   productOf(n)(inverse, 0, n, n, state, 0, width, width, matrix, 0, width);
@@ -131,8 +130,7 @@ export class ModeShelf {
       linear,
       configuration: mapped.configuration,
       mapped,
-      restState: signedSum(linear.constantStates, mapped.signs, linear.states),
-      restOutput: signedSum(linear.constantOutputs, mapped.signs, linear.outputs),
+      rest: signedSum(linear.constantAnswers, mapped.signs, linear.states + linear.outputs),
       windows,
       passages: new Array(mapped.ways.length).fill(undefined),
       guardCount: guards.length,

@@ -75,8 +75,8 @@ export class Segment {
 
   /** the same for the output that was last taken apart as the first */
   private valueOf(output: number, s: number): number {
-    const { linear, restOutput } = this.mode;
-    return (restOutput[output] as number) + linear.kernels.valueAfter(firstParts, linear.decay, linear.rotation, s);
+    const { linear } = this.mode;
+    return this.constantOf(output) + linear.kernels.valueAfter(firstParts, linear.decay, linear.rotation, s);
   }
 
   /** an output at many times after the segment's start, into `values` */
@@ -84,6 +84,10 @@ export class Segment {
     this.takeApart(output, firstParts);
     values.length = 0;
     for (let k = 0; k < times.length; k++) values.push(this.valueOf(output, times[k] as number));
+  }
+
+  private constantOf(output: number): number {
+    return this.mode.rest[this.mode.linear.states + output] as number;
   }
 
   private takeFactors(): void {
@@ -99,7 +103,7 @@ export class Segment {
     const { duration } = this;
     this.takeApart(output, firstParts);
     this.takeFactors();
-    let sum = (this.mode.restOutput[output] as number) * duration;
+    let sum = this.constantOf(output) * duration;
     for (let t = 0; t < terms; t++) {
       const k = t < modal.reals ? t : 2 * t - modal.reals;
       const isPair = t >= modal.reals;
@@ -160,7 +164,7 @@ export class Segment {
       re[t] = parts[2 * t - reals] as number;
       im[t] = -(parts[2 * t - reals + 1] as number);
     }
-    re[terms] = this.mode.restOutput[output] as number;
+    re[terms] = this.constantOf(output);
     im[terms] = 0;
   }
 
@@ -219,7 +223,7 @@ export class Segment {
       sizes[t] = size;
       reach += size;
     }
-    if (!grows && sign * (this.mode.restOutput[output] as number) + reach <= least) return least;
+    if (!grows && sign * this.constantOf(output) + reach <= least) return least;
     return this.searchLargest(output, sign, least, from, to, sign * this.valueOf(output, from), sign * this.valueOf(output, to));
   }
 

@@ -105,7 +105,7 @@ export class Audit {
   private build(mode: Mode): AuditedMode {
     const { circuit, pairing } = this;
     const { dimmer } = pairing;
-    const { linear, configuration, restState } = mode;
+    const { linear, configuration, rest } = mode;
     const { flips } = mode.mapped;
     const n = linear.states;
     // columns: states, mains, one
@@ -176,9 +176,9 @@ export class Audit {
         const factor = ((row[state] ?? 0) * (flips[state] ?? 1)) / (this.run.network.scale[state] ?? 1);
         if (factor === 0) continue;
         for (let k = 0; k < n; k++) increase(k, factor * (linear.modal.basis[state * n + k] ?? 0));
-        increase(n, factor * (linear.driveCos[state] ?? 0));
-        increase(n + 1, factor * (linear.driveSin[state] ?? 0));
-        increase(n + 2, factor * (restState[state] ?? 0));
+        increase(n, factor * (linear.drive[state] ?? 0));
+        increase(n + 1, factor * (linear.drive[n + state] ?? 0));
+        increase(n + 2, factor * (rest[state] ?? 0));
       }
       increase(n + 1, (row[MAINS] ?? 0) * this.run.network.peak);
       increase(n + 2, row[ONE] ?? 0);
