@@ -65,6 +65,10 @@ export const REMEMBERED_PATHS = 16;
 /** condition of the eigenvector matrix above which the system matrix is nudged apart (see DEFECT_NUDGES); rounding errors reach about
  * 2e-16 times this */
 export const MODE_CONDITION = 1e8;
+/** a basis that was carried over to another timing resistance is kept where inverse times basis is 1 to this, and matrix times basis is basis times
+ * eigenvalues to this share of the matrix's largest entry (a decomposition does some 1e-15); else the matrix is decomposed */
+export const PORT_IDENTITY = 1e-10;
+export const PORT_RESIDUAL = 1e-14;
 /** relative change of the matrix entries that separates the eigenvalues of a defective matrix (critical damping, equal twins); the
  * smallest that brings the condition down is used, and it is an error of that size in the components */
 export const DEFECT_NUDGES: readonly number[] = [1e-11, 1e-9, 1e-7];

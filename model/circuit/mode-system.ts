@@ -227,6 +227,11 @@ export function openModeSystem(network: Network, dimmer: Dimmer, configuration: 
   return { states: n, outputs, constants, columns, rows, hasPort };
 }
 
+/** 1/Ohm: closed by a timing resistance, an open system's port adds this times its column times its row */
+export function portGain({ rows, columns, states, outputs }: OpenModeSystem, timingResistance: number): number {
+  return 1 / (timingResistance - (rows[(states + outputs) * columns + columns - 1] as number));
+}
+
 /** scratch: the rows of the system that was closed last */
 let closedRows = new Float64Array(0);
 
@@ -241,10 +246,10 @@ export function closeModeSystem(open: OpenModeSystem, timingResistance: number):
   const from = open.rows;
   const portColumn = open.columns - 1;
   const portRow = count * open.columns;
-  const divisor = timingResistance - (from[portRow + portColumn] as number);
+  const gain = portGain(open, timingResistance);
   for (let r = 0, at = 0; r < count; r++) {
     const own = r * open.columns;
-    const share = (from[own + portColumn] as number) / divisor;
+    const share = (from[own + portColumn] as number) * gain;
     for (let c = 0; c < columns; c++, at++) rows[at] = (from[own + c] as number) + share * (from[portRow + c] as number);
   }
   return { states, outputs, constants, columns, rows };

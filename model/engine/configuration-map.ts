@@ -7,6 +7,7 @@ import { GROUP_CONSTANTS, type OpenModeSystem, openModeSystem } from '../circuit
 import type { Network } from '../circuit/network.ts';
 import { numbers } from '../numbers.ts';
 import type { Dimmer } from '../pairing.ts';
+import type { PortModes } from './port-modes.ts';
 
 /** what the triac or the diac can switch to */
 const SWITCHINGS = [
@@ -37,6 +38,8 @@ export const wayByGuard = (guard: number, side: 0 | 1): number => SWITCHINGS.len
 export interface MappedSystem {
   readonly number: number;
   readonly open: OpenModeSystem;
+  /** its modes at the dial position where they were decomposed last */
+  port: PortModes | null;
 }
 
 export interface MappedConfiguration {
@@ -66,7 +69,7 @@ export class ConfigurationMap {
   private system(configuration: Configuration, key: string): MappedSystem {
     const known = this.systems.get(key);
     if (known !== undefined) return known;
-    const made = { number: this.systems.size, open: openModeSystem(this.network, this.dimmer, configuration) };
+    const made: MappedSystem = { number: this.systems.size, open: openModeSystem(this.network, this.dimmer, configuration), port: null };
     this.systems.set(key, made);
     return made;
   }

@@ -267,6 +267,11 @@ function norm(matrix: Float64Array, n: number): number {
   return Math.sqrt(sum);
 }
 
+/** Frobenius condition of a basis over n */
+export function conditionOf(basis: Float64Array, inverse: Float64Array, n: number): number {
+  return (norm(basis, n) * norm(inverse, n)) / n;
+}
+
 /** eigenvector of the triangular (re, im) for its k-th diagonal entry, in the original coordinates, into vRe and vIm, largest entry real */
 function eigenvector(re: Float64Array, im: Float64Array, n: number, k: number, smallest: number): void {
   yRe[k] = 1;
@@ -372,7 +377,7 @@ function decompose(matrix: Float64Array, n: number): ModalBasis {
     }
   }
   const inverse = invert(basis, n);
-  return { reals, pairs, decay, rotation, basis, inverse, condition: (norm(basis, n) * norm(inverse, n)) / n };
+  return { reals, pairs, decay, rotation, basis, inverse, condition: conditionOf(basis, inverse, n) };
 }
 
 /** a fixed pattern of numbers between -1 and 1 without structure of its own, so that a nudge by it splits any defect */

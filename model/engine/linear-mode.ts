@@ -134,11 +134,14 @@ export function takeStrays(linear: LinearMode, level: number): void {
   }
 }
 
-export function linearMode(system: ModeSystem, omega: number, shortest: number): LinearMode {
+/** how the modal basis of a system's matrix (n x n) is come by */
+export type Decomposition = (matrix: Float64Array, n: number) => ModalBasis;
+
+export function linearMode(system: ModeSystem, omega: number, shortest: number, decompose: Decomposition = modalBasis): LinearMode {
   const n = system.states;
   const { columns, outputs, constants, rows } = system;
   for (let r = 0; r < n; r++) for (let c = 0; c < n; c++) matrix[r * n + c] = rows[r * columns + c] as number;
-  const modal = modalBasis(matrix, n);
+  const modal = decompose(matrix, n);
   const { reals, pairs, basis } = modal;
   const terms = reals + pairs + 1;
   const coordinates = n + 2;

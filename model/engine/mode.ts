@@ -3,15 +3,16 @@
  * met, with the ways from one to the next.
  */
 import type { Configuration } from '../circuit/configuration.ts';
-import { closeModeSystem } from '../circuit/mode-system.ts';
+import { closeModeSystem, portGain } from '../circuit/mode-system.ts';
 import type { Network } from '../circuit/network.ts';
 import { numbers } from '../numbers.ts';
 import { GUARD_SLACK, LADDER_LEVELS } from '../tolerances.ts';
 import type { ConfigurationMap, MappedConfiguration, MappedSystem } from './configuration-map.ts';
-import { MOST_STATES } from './eigen.ts';
+import { MOST_STATES, type ModalBasis, modalBasis } from './eigen.ts';
 import { WINDOW_LOWER, WINDOW_REST, WINDOW_SLACK, WINDOW_STRIDE, WINDOW_UPPER } from './kernels.ts';
 import { type LinearMode, linearMode } from './linear-mode.ts';
 import { productOf } from './matrix-product.ts';
+import { modesAtGain, portModes } from './port-modes.ts';
 
 /** windows on outputs, one per guard: where the output's row begins, and a record of WINDOW_STRIDE numbers. The slack is how far outside
  * its window a guard may be before it counts as outside: rounding of the quantity, V or A */
@@ -91,6 +92,18 @@ function passageBetween(from: Mode, to: Mode): Passage {
   return { to, matrix };
 }
 
+/** carried over from where the system was decomposed last if that can be done, else decomposed */
+function modesAtResistance(system: MappedSystem, timingResistance: number, matrix: Float64Array, n: number): ModalBasis {
+  const { open, port } = system;
+  if (!open.hasPort) return modalBasis(matrix, n);
+  const gain = portGain(open, timingResistance);
+  const carried = port === null ? null : modesAtGain(port, gain, matrix, n);
+  if (carried !== null) return carried;
+  const modal = modalBasis(matrix, n);
+  system.port = portModes(modal, gain, open);
+  return modal;
+}
+
 /** The modes of one circuit at one dial position, built when first met. */
 export class ModeShelf {
   private readonly network: Network;
@@ -106,11 +119,14 @@ export class ModeShelf {
     this.timingResistance = timingResistance;
   }
 
-  private linearFor({ number, open }: MappedSystem): LinearMode {
+  private linearFor(system: MappedSystem): LinearMode {
+    const { number, open } = system;
     const known = this.linear[number];
     if (known !== undefined) return known;
     const { omega } = this.network;
-    const made = linearMode(closeModeSystem(open, this.timingResistance), omega, Math.PI / omega / 2 ** LADDER_LEVELS);
+    const made = linearMode(closeModeSystem(open, this.timingResistance), omega, Math.PI / omega / 2 ** LADDER_LEVELS, (matrix, n) =>
+      modesAtResistance(system, this.timingResistance, matrix, n),
+    );
     this.linear[number] = made;
     this.built++;
     return made;
