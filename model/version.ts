@@ -1,2 +1,2 @@
 /** Changes whenever the same pairing could get another verdict: verdicts are stored under it and never mixed. */
-export const MODEL_VERSION = '3';
+export const MODEL_VERSION = '4';

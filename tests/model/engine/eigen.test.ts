@@ -72,7 +72,7 @@ describe('the modal basis', () => {
     const n = decays.length;
     const diagonal = square(decays.map((d, r) => decays.map((_, c) => (r === c ? d : 0))));
     const turn = mirror([1, -2, 0.5, 3, -1]);
-    const found = [...modalBasis(multiply(multiply(turn, diagonal, n), turn, n), n).decay].sort((a, b) => b - a);
+    const found = [...modalBasis(multiply(multiply(turn, diagonal, n), turn, n), n).decay.subarray(0, n)].sort((a, b) => b - a);
     // a slow decay beside a fast one is found to rounding of the fast one
     found.forEach((d, k) => {
       expect(Math.abs(d - (decays[k] ?? 0))).toBeLessThan(1e-6);
