@@ -66,8 +66,9 @@ export const REMEMBERED_PATHS = 16;
  * 2e-16 times this */
 export const MODE_CONDITION = 1e8;
 /** a basis that was carried over to another timing resistance is kept where inverse times basis is 1 to this, and matrix times basis is basis times
- * eigenvalues to this share of the matrix's largest entry (a decomposition does some 1e-15); else the matrix is decomposed */
-export const PORT_IDENTITY = 1e-10;
+ * eigenvalues to this share of the matrix's largest entry (a decomposition does some 1e-15 of either); else the matrix is decomposed. The first is
+ * by how much a state may jump from mode to mode */
+export const PORT_IDENTITY = 1e-12;
 export const PORT_RESIDUAL = 1e-14;
 /** relative change of the matrix entries that separates the eigenvalues of a defective matrix (critical damping, equal twins); the
  * smallest that brings the condition down is used, and it is an error of that size in the components */

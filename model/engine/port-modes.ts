@@ -29,7 +29,7 @@ export interface PortModes {
 
 /** iterations of Newton's on an eigenvalue; share of its distance to the nearest known one within which it is found */
 const MOST_TRIES = 12;
-const FOUND = 1e-12;
+const FOUND = 1e-13;
 /** share of the largest below which an eigenvalue's part in the port, or the port's in it, is rounding; and what stands for such a part where only one
  * of the two is: next to nothing, so that the formulas come to their limits by themselves */
 const UNREACHED = 1e-13;
@@ -111,6 +111,22 @@ const checked = new Float64Array(MOST_STATES * MOST_STATES);
 const isCoupled = (port: PortModes, t: number): boolean =>
   port.inRe[t] !== 0 || port.inIm[t] !== 0 || port.outRe[t] !== 0 || port.outIm[t] !== 0;
 
+/** the known eigenvalue nearest to one of the same sort; -1 for none */
+function nearestTo(port: PortModes, re: number, im: number, isPair: boolean): number {
+  const { reals, pairs, decay, rotation } = port.modal;
+  let nearest = -1;
+  let least = Number.POSITIVE_INFINITY;
+  for (let t = isPair ? reals : 0; t < (isPair ? reals + pairs : reals); t++) {
+    if (!isCoupled(port, t)) continue;
+    const distance = Math.abs((decay[t] as number) - re) + Math.abs((rotation[t] as number) - im);
+    if (distance < least) {
+      least = distance;
+      nearest = t;
+    }
+  }
+  return nearest;
+}
+
 /**
  * Newton's iteration from the eigenvalue before, on the secular equation times the distance to the nearest known eigenvalue, which makes it
  * smooth there. Leaves the eigenvalue and the reciprocal distances to it; false where it is not found.
@@ -119,28 +135,28 @@ function findRoot(port: PortModes, change: number, term: number, isPair: boolean
   const { modal, inRe, inIm, outRe, outIm } = port;
   const { reals, pairs, decay, rotation } = modal;
   const count = reals + pairs;
-  const startRe = port.decay[term] as number;
-  const startIm = isPair ? (port.rotation[term] as number) : 0;
-  // the nearest known eigenvalue of the same sort
+  rootRe = port.decay[term] as number;
+  rootIm = isPair ? (port.rotation[term] as number) : 0;
   let nearest = -1;
-  let least = Number.POSITIVE_INFINITY;
-  for (let t = isPair ? reals : 0; t < (isPair ? count : reals); t++) {
-    if (!isCoupled(port, t)) continue;
-    const distance = Math.abs((decay[t] as number) - startRe) + Math.abs((rotation[t] as number) - startIm);
-    if (distance < least) {
-      least = distance;
-      nearest = t;
-    }
-  }
-  if (nearest < 0) return false;
-  const poleRe = decay[nearest] as number;
-  const poleIm = isPair ? (rotation[nearest] as number) : 0;
-  const ownRe = change * ((inRe[nearest] as number) * (outRe[nearest] as number) - (inIm[nearest] as number) * (outIm[nearest] as number));
-  const ownIm = change * ((inRe[nearest] as number) * (outIm[nearest] as number) + (inIm[nearest] as number) * (outRe[nearest] as number));
-  if (ownRe === 0 && ownIm === 0) return false;
-  let muRe = startRe - poleRe;
-  let muIm = startIm - poleIm;
+  let nearer = nearestTo(port, rootRe, rootIm, isPair);
+  if (nearer < 0) return false;
+  let poleRe = 0;
+  let poleIm = 0;
+  let ownRe = 0;
+  let ownIm = 0;
+  let muRe = 0;
+  let muIm = 0;
   for (let tries = 0; tries < MOST_TRIES; tries++) {
+    if (nearer !== nearest) {
+      nearest = nearer;
+      poleRe = decay[nearest] as number;
+      poleIm = isPair ? (rotation[nearest] as number) : 0;
+      ownRe = change * ((inRe[nearest] as number) * (outRe[nearest] as number) - (inIm[nearest] as number) * (outIm[nearest] as number));
+      ownIm = change * ((inRe[nearest] as number) * (outIm[nearest] as number) + (inIm[nearest] as number) * (outRe[nearest] as number));
+      if (ownRe === 0 && ownIm === 0) return false;
+      muRe = rootRe - poleRe;
+      muIm = rootIm - poleIm;
+    }
     // g = 1 + change * sum over the others, and its slope
     let gRe = 1;
     let gIm = 0;
@@ -195,9 +211,10 @@ function findRoot(port: PortModes, change: number, term: number, isPair: boolean
     const square = steepRe * steepRe + steepIm * steepIm;
     const byRe = (hRe * steepRe + hIm * steepIm) / square;
     const byIm = (hIm * steepRe - hRe * steepIm) / square;
-    rootRe = poleRe + muRe;
-    rootIm = poleIm + muIm;
     if (Math.abs(byRe) + Math.abs(byIm) <= FOUND * (Math.abs(muRe) + Math.abs(muIm))) {
+      // measured from elsewhere, the distance to the one it has come closest to would have that much more rounding
+      nearer = nearestTo(port, rootRe, rootIm, isPair);
+      if (nearer !== nearest) continue;
       const length = muRe * muRe + muIm * muIm;
       nearRe[nearest] = -muRe / length;
       nearIm[nearest] = muIm / length;
@@ -205,6 +222,8 @@ function findRoot(port: PortModes, change: number, term: number, isPair: boolean
     }
     muRe -= byRe;
     muIm -= byIm;
+    rootRe = poleRe + muRe;
+    rootIm = poleIm + muIm;
   }
   return false;
 }
