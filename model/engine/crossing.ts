@@ -7,8 +7,9 @@ import { MOST_COORDINATES } from './eigen.ts';
 import type { LinearMode } from './linear-mode.ts';
 import { ends, quinticRoot } from './quintic-root.ts';
 
-/** share of a step over which the factors that count turn and decay so little that four terms of their series are exact to rounding */
-export const NUDGE = 1e-3;
+/** |lambda| times a time in which a factor turns and decays so little that four terms of its series are exact to rounding. The fastest decides,
+ * for what does not show in the output that crosses is moved to the crossing too */
+export const NUDGE = 2e-3;
 
 /** scratch of the crossing that is being located: the output's parts, value and slope (or slope and curvature) */
 export const parts = new Float64Array(3 * MOST_COORDINATES);
@@ -51,7 +52,7 @@ export function locateCrossing(linear: LinearMode, z: Float64Array, row: number,
   let hi = span;
   // where the factors in `moved` belong
   let probed = Number.POSITIVE_INFINITY;
-  const near = NUDGE * span;
+  const near = NUDGE / linear.fastest;
   for (let tries = 0; tries < 60; tries++) {
     if (!(at > lo && at < hi)) at = tries < 6 ? lo + ((hi - lo) * f0) / (f0 - f1) : (lo + hi) / 2;
     if (Math.abs(at - probed) < near) kernels.nudge(slopes, moved, parts, decay, rotation, at - probed);

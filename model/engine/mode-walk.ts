@@ -219,7 +219,7 @@ export class ModeWalk {
     const offset = (windows.records[window + WINDOW_REST] as number) - bound;
     const enough = ROOT_SHARE * (windows.records[window + WINDOW_SLACK] as number);
     const factors = record + memory.factorsFrom;
-    const near = NUDGE * (proven - from);
+    const near = NUDGE / linear.fastest;
     let at = known[record + WALK_CROSSING] as number;
     let asKnown = known[record + WALK_FACTORED] === 1;
     kernels.takeApart(parts, slopes, z, decay, rotation, linear.outputRows, windows.rows[guard] as number);

@@ -268,6 +268,48 @@ test('a walk taken again keeps every output within its window up to the first cr
   expect(counts.crossed).toBeGreaterThan(counts.takenAgain / 4);
 });
 
+/** length of a mode's very first step */
+const FIRST_STEP = SHORTEST * 2 ** 6;
+
+test('a slope is not relied on where the difference between the walks can turn it round', () => {
+  // the output rises (or falls) by 100 a second from a bound, or towards one; a swing may be added that turns by up to 2.8 in the first step
+  const slow = 100;
+  const rotation = 2.8 / FIRST_STEP;
+  const rows = Float64Array.from([-1, 0, 0, 0, slow, 0, -1, -rotation, 0, 0, 0, rotation, -1, 0, 0, 1, 1, 0, 0, 0]);
+  const linear = linearMode({ states: 3, outputs: 1, constants: 1, columns: 5, rows }, OMEGA, SHORTEST);
+  let again = 0;
+  for (const distance of [0, 0.3, 0.6, 0.88]) {
+    const windows = { rows: new Int32Array(1), records: new Float64Array(WINDOW_STRIDE) };
+    const mode = { linear, rest: linear.constantAnswers, windows, guardCount: 1, startLevel: 6 } as unknown as Mode;
+    const isEntering = distance === 0;
+    watchOutput(
+      mode,
+      0,
+      0,
+      isEntering ? 0 : Number.NEGATIVE_INFINITY,
+      isEntering ? Number.POSITIVE_INFINITY : distance * slow * FIRST_STEP,
+    );
+    windows.records[WINDOW_SLACK] = GUARD_SLACK;
+    for (let phase = 0; phase < 6.3; phase += 0.1) {
+      for (let size = slow * FIRST_STEP; size > 1e-3 * slow * FIRST_STEP; size *= 0.8) {
+        const swing = [size * Math.cos(phase), size * Math.sin(phase)] as const;
+        // what begins on its bound begins on it again
+        const second = Float64Array.of(isEntering ? -swing[0] : 0, ...swing);
+        const walk = new ModeWalk(SHORTEST, 3, 1);
+        take(walk, mode, { x: new Float64Array(3), angle: 0 }, 4 * FIRST_STEP);
+        const { steps } = walk;
+        mode.startLevel = 6;
+        if (take(walk, mode, { x: second, angle: 0 }, 4 * FIRST_STEP) === null || walk.steps !== steps + 1) continue;
+        again++;
+        const z = new Float64Array(linear.coordinates);
+        walk.startCoordinates(z);
+        expect(worstExcess(mode, z, walk.elapsed)).toBeLessThan(2 * GUARD_SLACK + ROUNDING);
+      }
+    }
+  }
+  expect(again).toBeGreaterThan(1000);
+});
+
 test('a walk in the place of a forgotten one is taken again with its own crossing', () => {
   // two decays, the slower of which the window's output falls with
   const rows = Float64Array.from([-3000, 0, 0, 0, 0, -200, 0, 0, 0.3, 1, 0, 0]);
