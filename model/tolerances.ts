@@ -59,12 +59,24 @@ export const GUARD_SLACK = 1e-9;
 /** walks and half-cycles that are remembered: eight half-cycles of each polarity (LONGEST_PERIOD), of some thirty walks each */
 export const REMEMBERED_WALKS = 512;
 export const REMEMBERED_PATHS = 16;
+/** half-cycles that may pass without half of one being walked again, before remembering rests for twice, four times, ... as long: more than it
+ * takes to see a pattern of LONGEST_PERIOD twice */
+export const REMEMBERED_IN_VAIN = 24;
+/** share of ROOT_SHARE within which a remembered crossing is taken where it was; elsewhere at least one step of Newton's makes it as exact as one
+ * that is located from nothing, for a falling lamp curve multiplies what is left */
+export const AS_KNOWN_SHARE = 1e-4;
 
 // --- decomposition --------------------------------------------------------------------------------------------------------------
 
 /** condition of the eigenvector matrix above which the system matrix is nudged apart (see DEFECT_NUDGES); rounding errors reach about
  * 2e-16 times this */
 export const MODE_CONDITION = 1e8;
+/** Newton's iterations on an eigenvalue at another timing resistance (three to five are usual), and the share of its distance to the nearest known
+ * one within which it is found */
+export const PORT_TRIES = 12;
+export const PORT_FOUND = 1e-13;
+/** share of the largest part in the port below which another is rounding */
+export const PORT_UNREACHED = 1e-13;
 /** a basis that was carried over to another timing resistance is kept where inverse times basis is 1 to this, and matrix times basis is basis times
  * eigenvalues to this share of the matrix's largest entry (a decomposition does some 1e-15 of either); else the matrix is decomposed. The first is
  * by how much a state may jump from mode to mode */

@@ -7,7 +7,7 @@
  * How far the next step may reach follows from this one: how far a guard strays grows with h^2, how far it gets with h.
  */
 import { numbers } from '../numbers.ts';
-import { ROOT_SHARE } from '../tolerances.ts';
+import { AS_KNOWN_SHARE, ROOT_SHARE } from '../tolerances.ts';
 import { asked, END, ENOUGH, INSIDE, locateCrossing, moved, NUDGE, OFFSET, parts, SPAN, START, slopes } from './crossing.ts';
 import { GuardWatch, MOST_RESERVE } from './guard-watch.ts';
 import {
@@ -42,10 +42,6 @@ export type WalkOutcome = 'reached' | 'crossed' | 'out-of-steps';
 
 /** tries at a remembered crossing before it is located from nothing */
 const RETRACE_TRIES = 8;
-/** share of what is near enough within which a remembered crossing is taken as it is: elsewhere one step of Newton's makes it as exact as one
- * that is located from nothing, for unstable parts of a lamp's curve multiply what is left */
-const AS_KNOWN_SHARE = 1e-4;
-
 /** how often 4 goes into a number: how many levels a step may be longer or shorter by; 0 where the number is below 4, or not one */
 function powersOfFour(x: number): number {
   return x >= 4 ? (31 - Math.clz32(Math.min(x, MOST_RESERVE))) >> 1 : 0;

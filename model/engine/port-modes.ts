@@ -9,7 +9,7 @@
  */
 import type { OpenModeSystem } from '../circuit/mode-system.ts';
 import { numbers } from '../numbers.ts';
-import { MODE_CONDITION, PORT_IDENTITY, PORT_RESIDUAL } from '../tolerances.ts';
+import { MODE_CONDITION, PORT_FOUND, PORT_IDENTITY, PORT_RESIDUAL, PORT_TRIES, PORT_UNREACHED } from '../tolerances.ts';
 import { conditionOf, MOST_STATES, type ModalBasis } from './eigen.ts';
 import { productOf } from './matrix-product.ts';
 
@@ -27,12 +27,8 @@ export interface PortModes {
   rotation: Float64Array;
 }
 
-/** iterations of Newton's on an eigenvalue; share of its distance to the nearest known one within which it is found */
-const MOST_TRIES = 12;
-const FOUND = 1e-13;
-/** share of the largest below which an eigenvalue's part in the port, or the port's in it, is rounding; and what stands for such a part where only one
- * of the two is: next to nothing, so that the formulas come to their limits by themselves */
-const UNREACHED = 1e-13;
+/** stands for the part that an eigenvalue has in the port, or the port in it, where only one of the two is there: so the formulas come to their
+ * limits by themselves */
 const NEXT_TO_NOTHING = 1e-40;
 
 /** from the basis of the system closed with that gain */
@@ -81,8 +77,8 @@ function forgetUnreached({ inRe, inIm, outRe, outIm }: PortModes, count: number)
     mostOut = Math.max(mostOut, Math.abs(outRe[t] as number) + Math.abs(outIm[t] as number));
   }
   for (let t = 0; t < count; t++) {
-    const reached = Math.abs(inRe[t] as number) + Math.abs(inIm[t] as number) > UNREACHED * mostIn;
-    const reaches = Math.abs(outRe[t] as number) + Math.abs(outIm[t] as number) > UNREACHED * mostOut;
+    const reached = Math.abs(inRe[t] as number) + Math.abs(inIm[t] as number) > PORT_UNREACHED * mostIn;
+    const reaches = Math.abs(outRe[t] as number) + Math.abs(outIm[t] as number) > PORT_UNREACHED * mostOut;
     if (!reached) {
       inRe[t] = reaches ? NEXT_TO_NOTHING * mostIn : 0;
       inIm[t] = 0;
@@ -146,7 +142,7 @@ function findRoot(port: PortModes, change: number, term: number, isPair: boolean
   let ownIm = 0;
   let muRe = 0;
   let muIm = 0;
-  for (let tries = 0; tries < MOST_TRIES; tries++) {
+  for (let tries = 0; tries < PORT_TRIES; tries++) {
     if (nearer !== nearest) {
       nearest = nearer;
       poleRe = decay[nearest] as number;
@@ -211,7 +207,7 @@ function findRoot(port: PortModes, change: number, term: number, isPair: boolean
     const square = steepRe * steepRe + steepIm * steepIm;
     const byRe = (hRe * steepRe + hIm * steepIm) / square;
     const byIm = (hIm * steepRe - hRe * steepIm) / square;
-    if (Math.abs(byRe) + Math.abs(byIm) <= FOUND * (Math.abs(muRe) + Math.abs(muIm))) {
+    if (Math.abs(byRe) + Math.abs(byIm) <= PORT_FOUND * (Math.abs(muRe) + Math.abs(muIm))) {
       // measured from elsewhere, the distance to the one it has come closest to would have that much more rounding
       nearer = nearestTo(port, rootRe, rootIm, isPair);
       if (nearer !== nearest) continue;

@@ -8,7 +8,7 @@
  * and a walk that was certain by more than that for every guard makes the other one certain too.
  */
 import { numbers } from '../numbers.ts';
-import { REMEMBERED_PATHS, REMEMBERED_WALKS } from '../tolerances.ts';
+import { REMEMBERED_IN_VAIN, REMEMBERED_PATHS, REMEMBERED_WALKS } from '../tolerances.ts';
 import type { GuardWatch } from './guard-watch.ts';
 import type { Mode } from './mode.ts';
 
@@ -34,9 +34,6 @@ interface Path {
 /** how far ahead in the remembered half-cycle the next walk is looked for: an event more or less loses the thread only for a moment */
 const AHEAD = 3;
 
-/** half-cycles that may pass without half of one being walked again: more than a pattern of LONGEST_PERIOD takes to be seen twice */
-const IN_VAIN = 24;
-
 export class WalkMemory {
   /** the walks' records, each from `at(walk)` on: the fields below, its coordinates at its start from WALK_START on, then the factors to its
    * crossing, then per guard what it had to spare */
@@ -59,7 +56,7 @@ export class WalkMemory {
   private retracedCount = 0;
   /** half-cycles since the last one that was worth remembering; what wanders is left alone for a while */
   private inVain = 0;
-  private rest = IN_VAIN;
+  private rest = REMEMBERED_IN_VAIN;
   private resting = 0;
 
   constructor(coordinates: number, mostGuards: number) {
@@ -82,7 +79,7 @@ export class WalkMemory {
     this.running.mode = null;
     this.compared = null;
     this.inVain = 0;
-    this.rest = IN_VAIN;
+    this.rest = REMEMBERED_IN_VAIN;
     this.resting = 0;
   }
 
@@ -119,7 +116,7 @@ export class WalkMemory {
       return;
     }
     this.inVain = 2 * this.retracedCount >= running.walks.length ? 0 : this.inVain + 1;
-    if (this.inVain >= IN_VAIN) {
+    if (this.inVain >= REMEMBERED_IN_VAIN) {
       paths.length = 0;
       this.nextPath = 0;
       this.inVain = 0;
