@@ -215,37 +215,48 @@ export class ModeWalk {
     const offset = (windows.records[window + WINDOW_REST] as number) - bound;
     const enough = ROOT_SHARE * (windows.records[window + WINDOW_SLACK] as number);
     const factors = record + memory.factorsFrom;
-    const near = NUDGE / linear.fastest;
+    const row = windows.rows[guard] as number;
     let at = known[record + WALK_CROSSING] as number;
-    let asKnown = known[record + WALK_FACTORED] === 1;
-    kernels.takeApart(parts, slopes, z, decay, rotation, linear.outputRows, windows.rows[guard] as number);
-    if (asKnown) kernels.recall(slopes, moved, parts, known, factors);
+    this.crossedGuard = guard;
+    this.crossedSide = side;
+    const isFactored = known[record + WALK_FACTORED] === 1;
+    if (isFactored) {
+      // what has settled crosses just where it did
+      kernels.move(this.zNext, z, known, factors);
+      kernels.value(slopes, this.zNext, linear.outputRows, row);
+      if (Math.abs((slopes[0] as number) + offset) <= AS_KNOWN_SHARE * enough) return this.retraced(end, at);
+    }
+    const near = NUDGE / linear.fastest;
+    kernels.takeApart(parts, slopes, z, decay, rotation, linear.outputRows, row);
+    if (isFactored) kernels.recall(slopes, moved, parts, known, factors);
     else kernels.probe(slopes, moved, parts, decay, rotation, at);
-    for (let k = 0; k < RETRACE_TRIES; k++) {
+    for (let tries = 0; tries < RETRACE_TRIES; tries++) {
       const f = (slopes[0] as number) + offset;
-      if (Math.abs(f) <= (k === 0 ? AS_KNOWN_SHARE * enough : enough)) {
+      if (Math.abs(f) <= (tries === 0 ? AS_KNOWN_SHARE * enough : enough)) {
         // the next one will cross about here
-        if (!asKnown) memory.noteCrossing(this.followed, at, moved);
-        memory.retraced(this.followed);
-        if (at >= remaining) {
-          this.settleAt(end);
-          return 'reached';
-        }
+        memory.noteCrossing(this.followed, at, moved);
         kernels.move(this.zNext, z, moved, 0);
-        this.takeNext();
-        this.elapsed += at;
-        this.crossedGuard = guard;
-        this.crossedSide = side;
-        return 'crossed';
+        return this.retraced(end, at);
       }
       const by = -f / (slopes[1] as number);
       at += by;
       if (!(at > from && at <= proven)) return null;
-      asKnown = false;
       if (Math.abs(by) < near) kernels.nudge(slopes, moved, parts, decay, rotation, by);
       else kernels.probe(slopes, moved, parts, decay, rotation, at);
     }
     return null;
+  }
+
+  /** ends a walk that was taken again so long after its start, at the coordinates in zNext, or at `end` if that comes first */
+  private retraced(end: number, at: number): WalkOutcome {
+    this.memory.retraced(this.followed);
+    if (this.elapsed + at >= end) {
+      this.settleAt(end);
+      return 'reached';
+    }
+    this.takeNext();
+    this.elapsed += at;
+    return 'crossed';
   }
 
   private takeNext(): void {
