@@ -1,8 +1,7 @@
 /**
  * Measures the engine: half-cycles per second on one core for each load kind, as they come and with every walk proven anew, its steps and
- * events, the arithmetic of its steps alone,
- * what building the modes of a new dial position costs, how a sweep grows with lamp groups, and, alternately in the same call, what
- * ngspice makes of the same circuits. Every figure is the median of several runs with its least and most.
+ * events, the arithmetic of its steps alone, what building the modes of a new dial position costs, how a sweep grows with lamp groups, and,
+ * alternately in the same call, what ngspice makes of the same circuits. Every figure is the median of several runs with its least and most.
  *
  *   npm run bench:engine [-- --runs 5] [--no-ngspice] [--grid]
  *

@@ -198,8 +198,7 @@ export class GuardWatch {
       const after = records[at + AFTER] as number;
       const toFar = after > before ? (records[at + UPPER] as number) - after : after - (records[at + LOWER] as number);
       this.takeSteepest();
-      const steep = Math.abs(after - before) - 4 * (records[at + BEND] as number) * this.tried * this.tried;
-      const bySlope = Math.min(steep / this.steepest, toFar);
+      const bySlope = Math.min(this.steep(at) / this.steepest, toFar);
       if (bySlope <= plain) continue;
       this.entering = w;
       records[at + SPARE] = bySlope;
@@ -224,7 +223,7 @@ export class GuardWatch {
       const before = records[record + BEFORE] as number;
       const fast = records[record + RANGE] as number;
       const slack = records[record + SLACK] as number;
-      const steep = Math.abs((records[record + AFTER] as number) - before) - 4 * (records[record + BEND] as number) * tried * tried;
+      const steep = this.steep(record);
       const inside = Math.min(before - (records[record + LOWER] as number), (records[record + UPPER] as number) - before);
       let spare = steep / this.steepest;
       if (inside > slack) spare = Math.min(spare, inside);
@@ -237,6 +236,15 @@ export class GuardWatch {
     this.proven = since + until;
     this.aloneFrom = since;
     this.crossing = since + at;
+  }
+
+  /** how far a guard's |d| is above what monotony needs */
+  private steep(record: number): number {
+    const { records, tried } = this;
+    return (
+      Math.abs((records[record + AFTER] as number) - (records[record + BEFORE] as number)) -
+      4 * (records[record + BEND] as number) * tried * tried
+    );
   }
 
   private takeSteepest(): void {

@@ -42,6 +42,7 @@ export type WalkOutcome = 'reached' | 'crossed' | 'out-of-steps';
 
 /** tries at a remembered crossing before it is located from nothing */
 const RETRACE_TRIES = 8;
+
 /** how often 4 goes into a number: how many levels a step may be longer or shorter by; 0 where the number is below 4, or not one */
 function powersOfFour(x: number): number {
   return x >= 4 ? (31 - Math.clz32(Math.min(x, MOST_RESERVE))) >> 1 : 0;

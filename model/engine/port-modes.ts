@@ -1,11 +1,13 @@
 /**
- * The modal basis of a system whose timing resistor has changed, from the basis at another resistance. The resistor is a port, so its change adds
- * a matrix of rank one: A' = A + change * u v. With the known eigenvalues l_i, left and right eigenvectors, b_i = (left_i u) and c_i = (v right_i),
- * the new eigenvalues are the roots of the secular equation
- *   1 + change * sum of b_i c_i / (l_i - l) = 0
- * and the new eigenvectors have the coordinates b_i / (l_i - l) on the right, c_i / (l_i - l) on the left (Golub & Van Loan, Matrix
- * Computations, on rank-one changes of eigenproblems). That is a fraction of the work of a decomposition. What comes out is held against the matrix; where it is
- * not as good as a decomposition, null says so.
+ * The modal basis of a system whose timing resistor has changed, from the basis at another resistance. The resistor is a port, so its change
+ * adds a matrix of rank one: A' = A + change * u v. With the known eigenvalues l_k, left and right eigenvectors, b_k = (left_k u) and c_k =
+ * (v right_k), the new eigenvalues are the roots of the secular equation
+ *   1 + change * sum of b_k c_k / (l_k - l) = 0
+ * and the new eigenvectors have the coordinates b_k / (l_k - l) on the right, c_k / (l_k - l) on the left (Golub & Van Loan, Matrix
+ * Computations, on rank-one changes of eigenproblems). That is a fraction of the work of a decomposition. What comes out is held against the
+ * matrix; where it is not as good as a decomposition, null says so.
+ *
+ * Eigenvalues are numbered as in ModalBasis, a pair by the one with the positive imaginary part; the conjugates follow as many places later.
  */
 import type { OpenModeSystem } from '../circuit/mode-system.ts';
 import { numbers } from '../numbers.ts';
@@ -17,11 +19,16 @@ export interface PortModes {
   readonly modal: ModalBasis;
   /** 1/Ohm: what multiplies u v in the matrix that was decomposed */
   readonly gain: number;
-  /** b_i and c_i of each eigenvalue, of a pair the one with the positive imaginary part */
+  /** of each eigenvalue and each conjugate: itself, its b, its c, and b times c; nothing where the port does not reach it, or where there is no
+   * conjugate */
+  readonly knownRe: Float64Array;
+  readonly knownIm: Float64Array;
   readonly inRe: Float64Array;
   readonly inIm: Float64Array;
   readonly outRe: Float64Array;
   readonly outIm: Float64Array;
+  readonly weightRe: Float64Array;
+  readonly weightIm: Float64Array;
   /** eigenvalues at the resistance before: where the search for the next ones begins */
   decay: Float64Array;
   rotation: Float64Array;
@@ -38,10 +45,14 @@ export function portModes(modal: ModalBasis, gain: number, { rows, columns, stat
   const made = {
     modal,
     gain,
-    inRe: numbers(count),
-    inIm: numbers(count),
-    outRe: numbers(count),
-    outIm: numbers(count),
+    knownRe: numbers(2 * count),
+    knownIm: numbers(2 * count),
+    inRe: numbers(2 * count),
+    inIm: numbers(2 * count),
+    outRe: numbers(2 * count),
+    outIm: numbers(2 * count),
+    weightRe: numbers(2 * count),
+    weightIm: numbers(2 * count),
     decay: modal.decay,
     rotation: modal.rotation,
   };
@@ -65,6 +76,7 @@ export function portModes(modal: ModalBasis, gain: number, { rows, columns, stat
     made.outIm[t] = isPair ? -output(k + 1) / 2 : 0;
   }
   forgetUnreached(made, count);
+  putConjugates(made, count);
   return made;
 }
 
@@ -90,11 +102,23 @@ function forgetUnreached({ inRe, inIm, outRe, outIm }: PortModes, count: number)
   }
 }
 
-/** scratch: of the root that is sought, 1/(l_i - l) for each eigenvalue, and for the conjugates of the pairs */
-const nearRe = new Float64Array(MOST_STATES);
-const nearIm = new Float64Array(MOST_STATES);
-const farRe = new Float64Array(MOST_STATES);
-const farIm = new Float64Array(MOST_STATES);
+function putConjugates(port: PortModes, count: number): void {
+  const { modal, knownRe, knownIm, inRe, inIm, outRe, outIm, weightRe, weightIm } = port;
+  for (let t = 0; t < count; t++) {
+    const isPair = t >= modal.reals;
+    knownRe[t] = modal.decay[t] as number;
+    knownIm[t] = isPair ? (modal.rotation[t] as number) : 0;
+    weightRe[t] = (inRe[t] as number) * (outRe[t] as number) - (inIm[t] as number) * (outIm[t] as number);
+    weightIm[t] = (inRe[t] as number) * (outIm[t] as number) + (inIm[t] as number) * (outRe[t] as number);
+    if (!isPair) continue;
+    for (const part of [knownRe, inRe, outRe, weightRe]) part[count + t] = part[t] as number;
+    for (const part of [knownIm, inIm, outIm, weightIm]) part[count + t] = -(part[t] as number);
+  }
+}
+
+/** scratch: of the root that is sought, 1/(l_k - l) for each known eigenvalue and each conjugate */
+const gapRe = new Float64Array(2 * MOST_STATES);
+const gapIm = new Float64Array(2 * MOST_STATES);
 /** the eigenvalue found */
 let rootRe = 0;
 let rootIm = 0;
@@ -104,17 +128,17 @@ const turnBack = new Float64Array(MOST_STATES * MOST_STATES);
 const checked = new Float64Array(MOST_STATES * MOST_STATES);
 
 /** whether the port reaches an eigenvalue, or it the port */
-const isCoupled = (port: PortModes, t: number): boolean =>
-  port.inRe[t] !== 0 || port.inIm[t] !== 0 || port.outRe[t] !== 0 || port.outIm[t] !== 0;
+const isCoupled = ({ weightRe, weightIm }: PortModes, k: number): boolean => weightRe[k] !== 0 || weightIm[k] !== 0;
 
 /** the known eigenvalue nearest to one of the same sort; -1 for none */
 function nearestTo(port: PortModes, re: number, im: number, isPair: boolean): number {
-  const { reals, pairs, decay, rotation } = port.modal;
+  const { modal, knownRe, knownIm } = port;
+  const { reals, pairs } = modal;
   let nearest = -1;
   let least = Number.POSITIVE_INFINITY;
   for (let t = isPair ? reals : 0; t < (isPair ? reals + pairs : reals); t++) {
     if (!isCoupled(port, t)) continue;
-    const distance = Math.abs((decay[t] as number) - re) + Math.abs((rotation[t] as number) - im);
+    const distance = Math.abs((knownRe[t] as number) - re) + Math.abs((knownIm[t] as number) - im);
     if (distance < least) {
       least = distance;
       nearest = t;
@@ -128,9 +152,8 @@ function nearestTo(port: PortModes, re: number, im: number, isPair: boolean): nu
  * smooth there. Leaves the eigenvalue and the reciprocal distances to it; false where it is not found.
  */
 function findRoot(port: PortModes, change: number, term: number, isPair: boolean): boolean {
-  const { modal, inRe, inIm, outRe, outIm } = port;
-  const { reals, pairs, decay, rotation } = modal;
-  const count = reals + pairs;
+  const { modal, knownRe, knownIm, weightRe, weightIm } = port;
+  const count = modal.reals + modal.pairs;
   rootRe = port.decay[term] as number;
   rootIm = isPair ? (port.rotation[term] as number) : 0;
   let nearest = -1;
@@ -145,11 +168,10 @@ function findRoot(port: PortModes, change: number, term: number, isPair: boolean
   for (let tries = 0; tries < PORT_TRIES; tries++) {
     if (nearer !== nearest) {
       nearest = nearer;
-      poleRe = decay[nearest] as number;
-      poleIm = isPair ? (rotation[nearest] as number) : 0;
-      ownRe = change * ((inRe[nearest] as number) * (outRe[nearest] as number) - (inIm[nearest] as number) * (outIm[nearest] as number));
-      ownIm = change * ((inRe[nearest] as number) * (outIm[nearest] as number) + (inIm[nearest] as number) * (outRe[nearest] as number));
-      if (ownRe === 0 && ownIm === 0) return false;
+      poleRe = knownRe[nearest] as number;
+      poleIm = knownIm[nearest] as number;
+      ownRe = change * (weightRe[nearest] as number);
+      ownIm = change * (weightIm[nearest] as number);
       muRe = rootRe - poleRe;
       muIm = rootIm - poleIm;
     }
@@ -158,42 +180,23 @@ function findRoot(port: PortModes, change: number, term: number, isPair: boolean
     let gIm = 0;
     let slopeRe = 0;
     let slopeIm = 0;
-    for (let t = 0; t < count; t++) {
-      if (!isCoupled(port, t)) continue;
-      const a = inRe[t] as number;
-      const b = inIm[t] as number;
-      const c = outRe[t] as number;
-      const d = outIm[t] as number;
-      const weightRe = change * (a * c - b * d);
-      const weightIm = change * (a * d + b * c);
-      const dRe = (decay[t] as number) - poleRe - muRe;
-      if (t !== nearest) {
-        const dIm = (t < reals ? 0 : (rotation[t] as number)) - poleIm - muIm;
-        const square = dRe * dRe + dIm * dIm;
-        const re = dRe / square;
-        const im = -dIm / square;
-        const partRe = weightRe * re - weightIm * im;
-        const partIm = weightRe * im + weightIm * re;
-        gRe += partRe;
-        gIm += partIm;
-        slopeRe += partRe * re - partIm * im;
-        slopeIm += partRe * im + partIm * re;
-        nearRe[t] = re;
-        nearIm[t] = im;
-      }
-      if (t < reals) continue;
-      const dIm = -(rotation[t] as number) - poleIm - muIm;
+    for (let k = 0; k < 2 * count; k++) {
+      if (k === nearest || !isCoupled(port, k)) continue;
+      const dRe = (knownRe[k] as number) - poleRe - muRe;
+      const dIm = (knownIm[k] as number) - poleIm - muIm;
       const square = dRe * dRe + dIm * dIm;
       const re = dRe / square;
       const im = -dIm / square;
-      const partRe = weightRe * re + weightIm * im;
-      const partIm = weightRe * im - weightIm * re;
+      gapRe[k] = re;
+      gapIm[k] = im;
+      const a = change * (weightRe[k] as number);
+      const b = change * (weightIm[k] as number);
+      const partRe = a * re - b * im;
+      const partIm = a * im + b * re;
       gRe += partRe;
       gIm += partIm;
       slopeRe += partRe * re - partIm * im;
       slopeIm += partRe * im + partIm * re;
-      farRe[t] = re;
-      farIm[t] = im;
     }
     if (!isPair) {
       // the conjugates' parts have cancelled the imaginary ones but for rounding
@@ -212,8 +215,8 @@ function findRoot(port: PortModes, change: number, term: number, isPair: boolean
       nearer = nearestTo(port, rootRe, rootIm, isPair);
       if (nearer !== nearest) continue;
       const length = muRe * muRe + muIm * muIm;
-      nearRe[nearest] = -muRe / length;
-      nearIm[nearest] = muIm / length;
+      gapRe[nearest] = -muRe / length;
+      gapIm[nearest] = muIm / length;
       return length > 0 && (!isPair || rootIm > 0);
     }
     muRe -= byRe;
@@ -224,7 +227,7 @@ function findRoot(port: PortModes, change: number, term: number, isPair: boolean
   return false;
 }
 
-/** right and left coordinates of the root that was found, per eigenvalue and per conjugate: b_i/(l_i - l), c_i/(l_i - l) */
+/** right and left coordinates of the root that was found, per eigenvalue and per conjugate: b_k/(l_k - l), c_k/(l_k - l) */
 const rightRe = new Float64Array(2 * MOST_STATES);
 const rightIm = new Float64Array(2 * MOST_STATES);
 const leftRe = new Float64Array(2 * MOST_STATES);
@@ -238,26 +241,13 @@ function takeVectors(port: PortModes): void {
   let sumRe = 0;
   let sumIm = 0;
   for (let k = 0; k < 2 * count; k++) {
-    const isFar = k >= count;
-    const t = isFar ? k - count : k;
-    if (!isCoupled(port, t) || (isFar && t < modal.reals)) {
-      rightRe[k] = 0;
-      rightIm[k] = 0;
-      leftRe[k] = 0;
-      leftIm[k] = 0;
-      continue;
-    }
-    const re = (isFar ? farRe[t] : nearRe[t]) as number;
-    const im = (isFar ? farIm[t] : nearIm[t]) as number;
-    const sign = isFar ? -1 : 1;
-    const a = inRe[t] as number;
-    const b = sign * (inIm[t] as number);
-    const c = outRe[t] as number;
-    const d = sign * (outIm[t] as number);
-    const yRe = a * re - b * im;
-    const yIm = a * im + b * re;
-    const zRe = c * re - d * im;
-    const zIm = c * im + d * re;
+    // nothing where the port does not reach
+    const re = isCoupled(port, k) ? (gapRe[k] as number) : 0;
+    const im = isCoupled(port, k) ? (gapIm[k] as number) : 0;
+    const yRe = (inRe[k] as number) * re - (inIm[k] as number) * im;
+    const yIm = (inRe[k] as number) * im + (inIm[k] as number) * re;
+    const zRe = (outRe[k] as number) * re - (outIm[k] as number) * im;
+    const zIm = (outRe[k] as number) * im + (outIm[k] as number) * re;
     rightRe[k] = yRe;
     rightIm[k] = yIm;
     leftRe[k] = zRe;

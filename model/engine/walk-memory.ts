@@ -52,7 +52,6 @@ export class WalkMemory {
   private running: Path;
   private compared: Path | null = null;
   private along = 0;
-  private strayed = false;
   private retracedCount = 0;
   /** half-cycles since the last one that was worth remembering; what wanders is left alone for a while */
   private inVain = 0;
@@ -92,7 +91,6 @@ export class WalkMemory {
     running.mode = mode;
     this.compared = null;
     this.along = 0;
-    this.strayed = false;
     this.retracedCount = 0;
     let least = Number.POSITIVE_INFINITY;
     for (let p = 0; p < paths.length; p++) {
@@ -125,7 +123,7 @@ export class WalkMemory {
       running.walks.length = 0;
       return;
     }
-    if (running.mode !== null && this.strayed) {
+    if (running.mode !== null && running.walks.length > this.retracedCount) {
       if (paths.length < REMEMBERED_PATHS) {
         paths.push(running);
         this.running = { mode: null, start: numbers(running.start.length), walks: [] };
@@ -182,7 +180,6 @@ export class WalkMemory {
     this.modes[slot] = mode;
     this.logics[slot] = logic;
     this.running.walks.push(walk);
-    this.strayed = true;
     return walk;
   }
 
